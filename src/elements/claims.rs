@@ -1,0 +1,101 @@
+//! What an element asks for when the unknowns are numbered.
+
+use super::element::{Quantity, Unknown};
+
+/// What an unknown measures; its tolerance is scaled among its own kind.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
+pub enum Measure {
+    /// Volts.
+    Voltage,
+    /// Amperes.
+    Current,
+    /// Webers.
+    FluxLinkage,
+    /// Coulombs.
+    Charge,
+    /// Metres.
+    Length,
+    /// Metres per second.
+    Speed,
+    /// Kelvins.
+    Temperature,
+    /// Amperes per metre.
+    Magnetization,
+    /// Anything without a unit.
+    Number,
+}
+
+/// One numbered unknown: whose it is and what it measures.
+#[derive(Clone, Debug)]
+pub struct Claimed {
+    /// Index of the element; None for the potential of a named node.
+    pub element: Option<usize>,
+    /// What it is, in words: `current`, `junction voltage`, `flux linkage`.
+    pub what: &'static str,
+    /// Its unit's kind.
+    pub measure: Measure,
+}
+
+/// The ledger of numbers while one element claims its own.
+pub struct Claims<'a> {
+    /// Index of the claiming element.
+    pub element: usize,
+    /// Unknowns of its terminals.
+    pub terminals: &'a [Unknown],
+    /// True where the currents into its terminals are asked for (a phrase, the ledger).
+    pub probed: bool,
+    /// Quantities that other elements follow: the element must offer an unknown for each. A current is
+    /// asked for by `Wanted::Current(terminal)`.
+    pub wanted: &'a [Wanted],
+    /// All unknowns so far.
+    pub unknowns: &'a mut Vec<Claimed>,
+    /// Unknowns offered to followers.
+    pub offered: &'a mut Vec<(usize, Wanted, Unknown)>,
+    /// Number of mode values so far.
+    pub modes: &'a mut usize,
+    /// Number of guards so far.
+    pub guards: &'a mut usize,
+}
+
+/// A signal of one element that another one follows.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
+pub enum Wanted {
+    /// The current into a terminal.
+    Current(usize),
+    /// A quantity of a winding (0 where there is one).
+    Of(Quantity, usize),
+}
+
+impl Claims<'_> {
+    /// Unknown of terminal `k`.
+    pub fn terminal(&self, k: usize) -> Unknown {
+        self.terminals[k]
+    }
+
+    /// A new unknown with the row of the same number.
+    pub fn unknown(&mut self, what: &'static str, measure: Measure) -> Unknown {
+        let number = Unknown(self.unknowns.len() as u32);
+        self.unknowns.push(Claimed { element: Some(self.element), what, measure });
+        number
+    }
+
+    /// Reserves `count` modes; returns the first one's place.
+    pub fn modes(&mut self, count: usize) {
+        *self.modes += count;
+    }
+
+    /// Reserves `count` guards.
+    pub fn guards(&mut self, count: usize) {
+        *self.guards += count;
+    }
+
+    /// True where another element follows this signal.
+    pub fn wants(&self, wanted: Wanted) -> bool {
+        self.wanted.contains(&wanted)
+    }
+
+    /// Offers an unknown that carries a wanted signal.
+    pub fn offer(&mut self, wanted: Wanted, unknown: Unknown) {
+        self.offered.push((self.element, wanted, unknown));
+    }
+}

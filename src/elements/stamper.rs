@@ -1,0 +1,112 @@
+//! Adds an element's share to f, q and their slopes: no look-ups in the inner loop.
+//!
+//! Every element touches the same (row, column) positions in the same order at every call, so the positions
+//! are recorded once and turned into a list of slots; afterwards each `df` or `dq` takes the next slot.
+
+use super::element::Unknown;
+use crate::dae::Evaluation;
+
+/// Slot of a position that belongs to ground and is dropped.
+pub const NOWHERE: u32 = u32::MAX;
+
+/// Where shares go; made anew for each evaluation of the whole circuit.
+pub struct Stamper<'a> {
+    goal: Goal<'a>,
+}
+
+enum Goal<'a> {
+    Record(&'a mut Vec<(Unknown, Unknown)>),
+    Fill { out: &'a mut Evaluation, slots: &'a [u32], next: usize, slopes: bool },
+}
+
+impl<'a> Stamper<'a> {
+    /// Records the positions only; values are dropped.
+    pub fn recording(positions: &'a mut Vec<(Unknown, Unknown)>) -> Self {
+        Stamper { goal: Goal::Record(positions) }
+    }
+
+    /// Adds to `out`, whose vectors are sized and zeroed; `slots` is one number per recorded position.
+    pub fn filling(out: &'a mut Evaluation, slots: &'a [u32], slopes: bool) -> Self {
+        Stamper { goal: Goal::Fill { out, slots, next: 0, slopes } }
+    }
+
+    /// Adds `value` to f of a row.
+    #[inline]
+    pub fn f(&mut self, row: Unknown, value: f64) {
+        if let Goal::Fill { out, .. } = &mut self.goal
+            && let Some(f) = out.f.get_mut(row.0 as usize)
+        {
+            *f += value;
+        }
+    }
+
+    /// Adds `value` to q of a row.
+    #[inline]
+    pub fn q(&mut self, row: Unknown, value: f64) {
+        if let Goal::Fill { out, .. } = &mut self.goal
+            && let Some(q) = out.q.get_mut(row.0 as usize)
+        {
+            *q += value;
+        }
+    }
+
+    /// Adds `slope` to df(row)/dx(column).
+    #[inline]
+    pub fn df(&mut self, row: Unknown, column: Unknown, slope: f64) {
+        self.slope(row, column, slope, false);
+    }
+
+    /// Adds `slope` to dq(row)/dx(column).
+    #[inline]
+    pub fn dq(&mut self, row: Unknown, column: Unknown, slope: f64) {
+        self.slope(row, column, slope, true);
+    }
+
+    #[inline]
+    fn slope(&mut self, row: Unknown, column: Unknown, slope: f64, charge: bool) {
+        match &mut self.goal {
+            Goal::Record(positions) => positions.push((row, column)),
+            Goal::Fill { out, slots, next, slopes } => {
+                if *slopes {
+                    let slot = slots[*next] as usize;
+                    *next += 1;
+                    let into = if charge { &mut out.dq } else { &mut out.df };
+                    if let Some(value) = into.get_mut(slot) {
+                        *value += slope;
+                    }
+                }
+            }
+        }
+    }
+
+    /// A two-terminal current from `a` to `b`: `value` [A] with `slope` [S] over the voltage between them.
+    #[inline]
+    pub fn branch(&mut self, a: Unknown, b: Unknown, value: f64, slope: f64) {
+        self.f(a, value);
+        self.f(b, -value);
+        self.df(a, a, slope);
+        self.df(a, b, -slope);
+        self.df(b, a, -slope);
+        self.df(b, b, slope);
+    }
+
+    /// A two-terminal charge between `a` and `b`: `value` [C] with `slope` [F] over the voltage between them.
+    #[inline]
+    pub fn store(&mut self, a: Unknown, b: Unknown, value: f64, slope: f64) {
+        self.q(a, value);
+        self.q(b, -value);
+        self.dq(a, a, slope);
+        self.dq(a, b, -slope);
+        self.dq(b, a, -slope);
+        self.dq(b, b, slope);
+    }
+
+    /// A current unknown `i` that flows from `a` to `b`: adds it to both current laws.
+    #[inline]
+    pub fn carry(&mut self, a: Unknown, b: Unknown, i: Unknown, value: f64) {
+        self.f(a, value);
+        self.f(b, -value);
+        self.df(a, i, 1.0);
+        self.df(b, i, -1.0);
+    }
+}

@@ -1,0 +1,3 @@
+//! coilbreak.
+
+pub mod dae;

@@ -1,3 +1,5 @@
 //! coilbreak.
 
 pub mod dae;
+pub mod report;
+pub mod sizing;

@@ -1,0 +1,7 @@
+//! What people look at: tables, plots, waveforms as CSV, JSON, files. Values come in, texts and bytes go out.
+
+pub mod csv;
+pub mod engineering;
+pub mod files;
+pub mod json;
+pub mod tables;

@@ -1,0 +1,3 @@
+//! The integration tests, one module per theme.
+
+mod e_series;

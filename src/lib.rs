@@ -1,5 +1,8 @@
 //! coilbreak.
 
 pub mod dae;
+pub mod diag;
+pub mod netlist;
 pub mod report;
 pub mod sizing;
+pub mod units;

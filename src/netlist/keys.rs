@@ -58,14 +58,34 @@ pub enum Need {
 impl Key {
     /// A key that must be there.
     pub const fn required(name: &'static str, takes: Takes, about: &'static str) -> Self {
-        Key { name, takes, need: Need::Required, about }
+        Key {
+            name,
+            takes,
+            need: Need::Required,
+            about,
+        }
     }
     /// A key that may be absent.
     pub const fn optional(name: &'static str, takes: Takes, about: &'static str) -> Self {
-        Key { name, takes, need: Need::Optional, about }
+        Key {
+            name,
+            takes,
+            need: Need::Optional,
+            about,
+        }
     }
     /// A key with a value of its own where it is absent, written as in a netlist: `0 Ω`.
-    pub const fn default(name: &'static str, takes: Takes, default: &'static str, about: &'static str) -> Self {
-        Key { name, takes, need: Need::Default(default), about }
+    pub const fn default(
+        name: &'static str,
+        takes: Takes,
+        default: &'static str,
+        about: &'static str,
+    ) -> Self {
+        Key {
+            name,
+            takes,
+            need: Need::Default(default),
+            about,
+        }
     }
 }

@@ -64,12 +64,17 @@ impl Parameters {
 
     /// All entries with their handles, in the order of reading.
     pub fn iter(&self) -> impl Iterator<Item = (Value, &Parameter)> {
-        self.entries.iter().enumerate().map(|(k, entry)| (Value(k as u32), entry))
+        self.entries
+            .iter()
+            .enumerate()
+            .map(|(k, entry)| (Value(k as u32), entry))
     }
 
     /// The nominal values.
     pub fn nominal(&self) -> Values {
-        Values { numbers: self.entries.iter().map(|entry| entry.nominal).collect() }
+        Values {
+            numbers: self.entries.iter().map(|entry| entry.nominal).collect(),
+        }
     }
 }
 

@@ -7,6 +7,7 @@ use super::claims::Claims;
 use super::stamper::Stamper;
 use crate::netlist::parameters::Values;
 pub use crate::dae::Point;
+pub use crate::signals::{Happening, Quantity};
 
 /// An unknown of the equations and the row of the same number. Ground is `Unknown::GROUND`, always 0.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
@@ -21,29 +22,6 @@ impl Unknown {
     pub fn of(self, x: &[f64]) -> f64 {
         x.get(self.0 as usize).copied().unwrap_or(0.0)
     }
-}
-
-/// What can be asked of an element besides voltages and currents at its terminals.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
-pub enum Quantity {
-    /// Current that makes the flux [A]; self-capacitance excluded.
-    WindingCurrent,
-    /// Flux linkage [Wb].
-    FluxLinkage,
-    /// Flux density in the core [T].
-    FluxDensity,
-    /// Field strength in the core [A/m].
-    FieldStrength,
-    /// Incremental inductance [H].
-    Inductance,
-    /// 1 less incremental over initial inductance.
-    Saturation,
-    /// Position of an armature [m].
-    Position,
-    /// Pull on an armature [N].
-    Pull,
-    /// Temperature [K].
-    Temperature,
 }
 
 /// An element of the circuit. It is immutable while the circuit is solved; memory lives in unknowns and modes.
@@ -104,13 +82,4 @@ pub trait Switching {
     fn at_guard(&self, _which: usize, _time: f64, _x: &mut [f64], _mode: &mut [f64]) -> Option<Happening> {
         None
     }
-}
-
-/// An event that a person can name: `k1_driver opens`.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub enum Happening {
-    /// A contact or switch begins to open.
-    Opens,
-    /// A contact or switch begins to close.
-    Closes,
 }

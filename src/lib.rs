@@ -4,5 +4,6 @@ pub mod dae;
 pub mod diag;
 pub mod netlist;
 pub mod report;
+pub mod signals;
 pub mod sizing;
 pub mod units;

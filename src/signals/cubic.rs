@@ -46,8 +46,8 @@ impl Cubic {
         let [_, c, c2, c3] = self.c;
         let (a, b) = (3.0 * c3, 2.0 * c2);
         let discriminant = b * b - 4.0 * a * c;
-        // A double root is an inflexion, where the slope keeps its sign. NaN ends here too.
-        if !(discriminant > 0.0) {
+        // A double root is an inflexion, where the slope keeps its sign.
+        if discriminant.is_nan() || discriminant <= 0.0 {
             return [None; 2];
         }
         let q = -0.5 * (b + discriminant.sqrt().copysign(b));

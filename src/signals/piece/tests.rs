@@ -106,7 +106,7 @@ fn zeros_and_turning_points_of_a_known_cubic() {
 #[test]
 fn touches_inflexions_and_rest() {
     let touch = Piece::sampled(0.0, 1.0, |s| (s - 0.5) * (s - 0.5));
-    assert!(touch.crossings(0.0).count() % 2 == 0);
+    assert!(touch.crossings(0.0).count().is_multiple_of(2));
     assert_eq!(touch.crossings(1e-9).count(), 2);
     assert_eq!(touch.crossings(-1e-9).count(), 0);
     let triple = Piece::sampled(0.0, 1.0, |s| (s - 0.375).powi(3));

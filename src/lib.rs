@@ -2,6 +2,7 @@
 
 pub mod dae;
 pub mod diag;
+pub mod math;
 pub mod netlist;
 pub mod report;
 pub mod signals;

@@ -1,7 +1,34 @@
 //! Differential-algebraic systems d/dt q(x) + f(x, t) = 0: it knows vectors, modes and events, and `math` alone.
+//!
+//! ```text
+//! System -> operating_point | consistent_start -> State -> March (Method, Tolerances) -> Advance -> observer
+//! ```
 
+pub mod advance;
+mod control;
+mod crossing;
+pub mod dense;
+mod event;
+pub mod march;
+pub mod methods;
+mod newton;
 pub mod pattern;
+pub mod start;
+pub mod statistics;
 pub mod system;
+pub mod tolerances;
+pub mod trouble;
 
+pub use advance::{Advance, Step};
+pub use dense::Dense;
+pub use march::{Ending, March, Observer, Span, State};
+pub use methods::{METHODS, Method};
 pub use pattern::Pattern;
+pub use start::{consistent_start, operating_point};
+pub use statistics::Statistics;
 pub use system::{Cause, Evaluation, Point, System};
+pub use tolerances::Tolerances;
+pub use trouble::{MarchError, StartError, Trouble};
+
+#[cfg(test)]
+mod tests;

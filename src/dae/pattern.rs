@@ -28,7 +28,11 @@ impl Pattern {
         for column in 0..size {
             starts[column + 1] += starts[column];
         }
-        Pattern { size, starts, rows: sorted.into_iter().map(|(_, row)| row).collect() }
+        Pattern {
+            size,
+            starts,
+            rows: sorted.into_iter().map(|(_, row)| row).collect(),
+        }
     }
 
     /// Number of stored positions.
@@ -44,6 +48,9 @@ impl Pattern {
     /// Index of a position among the stored ones.
     pub fn slot(&self, row: usize, column: usize) -> Option<usize> {
         let range = *self.starts.get(column)?..*self.starts.get(column + 1)?;
-        self.rows[range.clone()].binary_search(&row).ok().map(|k| range.start + k)
+        self.rows[range.clone()]
+            .binary_search(&row)
+            .ok()
+            .map(|k| range.start + k)
     }
 }

@@ -47,6 +47,17 @@ pub trait System {
     fn pattern(&self) -> &Pattern;
     /// Fills `out.f` and `out.q`, and with `slopes` also `out.df` and `out.dq` (each is overwritten).
     fn evaluate(&self, at: Point<'_>, slopes: bool, out: &mut Evaluation);
+    /// As `evaluate` with every independent source multiplied by `share` (0 to 1); false, with `out` untouched,
+    /// where the system cannot: then the search for an operating point does without.
+    fn evaluate_raised(
+        &self,
+        _at: Point<'_>,
+        _share: f64,
+        _slopes: bool,
+        _out: &mut Evaluation,
+    ) -> bool {
+        false
+    }
     /// Shortens a Newton step `dx` taken from `x` where an exponential law would be overshot; true if it did.
     fn limit(&self, _x: &[f64], _dx: &mut [f64]) -> bool {
         false

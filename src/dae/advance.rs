@@ -1,0 +1,82 @@
+//! What an observer of the march is shown.
+
+use super::dense::Dense;
+use super::system::Cause;
+
+/// One thing that happened, in the order of time.
+#[derive(Clone, Copy, Debug)]
+pub enum Advance<'a> {
+    /// The march begins.
+    Start {
+        /// Instant [s].
+        time: f64,
+        /// Unknowns.
+        x: &'a [f64],
+        /// Modes.
+        mode: &'a [f64],
+    },
+    /// A step was kept.
+    Step(&'a Step<'a>),
+    /// An event was taken; the clock stands.
+    Event {
+        /// Instant [s].
+        time: f64,
+        /// What made it, in the order in which it was taken.
+        causes: &'a [Cause],
+        /// Unknowns before it.
+        x_before: &'a [f64],
+        /// Consistent unknowns after it.
+        x_after: &'a [f64],
+        /// Modes before it.
+        mode_before: &'a [f64],
+        /// Modes after it.
+        mode_after: &'a [f64],
+    },
+}
+
+/// A step that was kept, with the method's own polynomial through it.
+#[derive(Clone, Copy, Debug)]
+pub struct Step<'a> {
+    /// Start [s].
+    pub from: f64,
+    /// End [s].
+    pub to: f64,
+    /// Modes, constant over the step.
+    pub mode: &'a [f64],
+    /// Unknowns at the start.
+    pub x0: &'a [f64],
+    /// Unknowns at the end.
+    pub x1: &'a [f64],
+    /// The polynomial of all unknowns.
+    pub dense: Dense<'a>,
+}
+
+impl Step<'_> {
+    fn share(&self, time: f64) -> f64 {
+        (time - self.from) / (self.to - self.from)
+    }
+
+    /// Unknowns at a time [s] within the step.
+    pub fn at(&self, time: f64, x: &mut [f64]) {
+        if time == self.to {
+            x.copy_from_slice(self.x1);
+        } else {
+            self.dense.at(self.share(time), x);
+        }
+    }
+
+    /// Time derivative [1/s] of all unknowns at a time [s] within the step.
+    pub fn slope_at(&self, time: f64, slope: &mut [f64]) {
+        let share = self.share(time);
+        let n = self.x0.len();
+        for (which, slope) in slope.iter_mut().enumerate() {
+            *slope = self.dense.one(share, which, n).1 / (self.to - self.from);
+        }
+    }
+
+    /// Value and time derivative [1/s] of one unknown at a time [s] within the step.
+    pub fn one_at(&self, time: f64, which: usize) -> (f64, f64) {
+        let (value, slope) = self.dense.one(self.share(time), which, self.x0.len());
+        (value, slope / (self.to - self.from))
+    }
+}

@@ -1,0 +1,54 @@
+//! The length of the next step from the errors of the last ones.
+//!
+//! Predictive (PI) control: with the error of the step before, the trend of the error is followed and not only its
+//! size. Gustafsson, *ACM Trans. Math. Software* 20 (1994) 496; Hairer & Wanner II, IV.8 (both from memory).
+
+/// Aim below the tolerance by this factor of the length, so that few steps are lost.
+const CAUTION: f64 = 0.9;
+/// The next step is at most so many times longer,
+const GROWTH: f64 = 6.0;
+/// and a step that was too inaccurate is tried again at least this share as long.
+const SHRINKAGE: f64 = 0.1;
+
+/// Memory of the control.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Control {
+    /// Order of the error estimate.
+    order: f64,
+    /// Length and error of the last kept step; none after an event.
+    last: Option<(f64, f64)>,
+}
+
+impl Control {
+    pub fn new(order: u32) -> Self {
+        Control {
+            order: f64::from(order),
+            last: None,
+        }
+    }
+
+    /// An event: the errors so far tell nothing about the steps to come.
+    pub fn restart(&mut self) {
+        self.last = None;
+    }
+
+    /// Factor for the step after a kept one of this length and error.
+    pub fn next(&mut self, length: f64, error: f64) -> f64 {
+        let error = error.max(1e-10);
+        let plain = CAUTION * error.powf(-1.0 / self.order);
+        let factor = match self.last {
+            Some((before, error_before)) => {
+                let trend = (error_before / error).powf(1.0 / self.order) * length / before;
+                plain.min(plain * trend)
+            }
+            None => plain,
+        };
+        self.last = Some((length, error.max(1e-2)));
+        factor.clamp(SHRINKAGE, GROWTH)
+    }
+
+    /// Factor for trying a step again that had this error.
+    pub fn again(&self, error: f64) -> f64 {
+        (CAUTION * error.powf(-1.0 / self.order)).clamp(SHRINKAGE, 0.9)
+    }
+}

@@ -1,0 +1,212 @@
+//! What happens at an event: transitions at one instant, charges kept, the rest solved anew.
+
+use super::advance::Advance;
+use super::crossing::Watch;
+use super::march::State;
+use super::newton::{Newton, evaluation};
+use super::start::instant;
+use super::statistics::Statistics;
+use super::system::{Cause, Evaluation, Point, System};
+use super::trouble::{MarchError, Trouble};
+use crate::math::Elimination;
+
+/// So many events at one instant are taken for a circle.
+const MOST_AT_ONCE: usize = 200;
+/// So many guards' events in a row ...
+const MOST_IN_HASTE: usize = 100;
+/// ... within this share of the instant itself are chattering.
+const HASTE: f64 = 1e-10;
+
+/// Memory of the last event.
+#[derive(Debug)]
+pub(crate) struct Events {
+    causes: Vec<Cause>,
+    time: f64,
+    x_before: Vec<f64>,
+    mode_before: Vec<f64>,
+    charge: Vec<f64>,
+    newton: Newton,
+    out: Evaluation,
+    /// Guards' events in a row, and when the row began.
+    row: usize,
+    row_since: f64,
+}
+
+impl Events {
+    pub fn new<S: System + ?Sized>(system: &S, elimination: Elimination) -> Self {
+        let size = system.size();
+        Events {
+            causes: Vec::with_capacity(8),
+            time: 0.0,
+            x_before: vec![0.0; size],
+            mode_before: vec![0.0; system.mode_size()],
+            charge: vec![0.0; size],
+            newton: Newton::new(system, elimination),
+            out: evaluation(size, system.pattern().len()),
+            row: 0,
+            row_since: 0.0,
+        }
+    }
+
+    /// The event as an observer sees it.
+    pub fn advance<'a>(&'a self, state: &'a State) -> Advance<'a> {
+        Advance::Event {
+            time: self.time,
+            causes: &self.causes,
+            x_before: &self.x_before,
+            x_after: &state.x,
+            mode_before: &self.mode_before,
+            mode_after: &state.mode,
+        }
+    }
+
+    /// Takes the event of `cause` and all that follow at the same instant; true where something changed.
+    pub fn take<S: System + ?Sized>(
+        &mut self,
+        system: &S,
+        cause: Cause,
+        state: &mut State,
+        weights: &[f64],
+        watch: &mut Watch,
+        counted: &mut Statistics,
+    ) -> Result<bool, MarchError> {
+        self.causes.clear();
+        self.time = state.time;
+        self.x_before.copy_from_slice(&state.x);
+        self.mode_before.copy_from_slice(&state.mode);
+        self.haste(cause, state.time)?;
+        let mut changed = false;
+        let mut next = Some(cause);
+        while let Some(cause) = next {
+            changed |= self.one(system, cause, state, weights, counted)?;
+            let fired = if let Cause::Guard(guard) = cause {
+                Some(guard)
+            } else {
+                None
+            };
+            let at = Point {
+                time: state.time,
+                x: &state.x,
+                mode: &state.mode,
+            };
+            next = watch.renew(system, at, fired).map(Cause::Guard);
+            if self.causes.len() > MOST_AT_ONCE {
+                return Err(self.chattering(state.time, cause));
+            }
+        }
+        Ok(changed)
+    }
+
+    /// One transition (and the clock's next ones where they fall at the same instant), then consistent values.
+    fn one<S: System + ?Sized>(
+        &mut self,
+        system: &S,
+        cause: Cause,
+        state: &mut State,
+        weights: &[f64],
+        counted: &mut Statistics,
+    ) -> Result<bool, MarchError> {
+        let before = Point {
+            time: state.time,
+            x: &state.x,
+            mode: &state.mode,
+        };
+        system.evaluate(before, false, &mut self.out);
+        counted.evaluations += 1;
+        self.charge.copy_from_slice(&self.out.q);
+        let mut x = std::mem::take(&mut state.x);
+        let mode_held = state.mode.clone();
+        let mut changed = self.transition(system, cause, &mut x, state, counted);
+        if cause == Cause::Time {
+            loop {
+                let next = system.next_event(state.time, &state.mode);
+                if next - state.time > 8.0 * f64::EPSILON * state.time.abs() {
+                    break;
+                }
+                state.time = next.max(state.time);
+                changed |= self.transition(system, Cause::Time, &mut x, state, counted);
+                if self.causes.len() > MOST_AT_ONCE {
+                    return Err(self.chattering(state.time, cause));
+                }
+            }
+        }
+        self.time = state.time;
+        state.x = x;
+        if !changed {
+            return Ok(false);
+        }
+        // A jump in x carries the charges of the rows that depend on it along; all other rows keep theirs.
+        let after = Point {
+            time: state.time,
+            x: &state.x,
+            mode: &mode_held,
+        };
+        let still = std::mem::take(&mut self.out.q);
+        self.out.q = vec![0.0; still.len()];
+        system.evaluate(after, false, &mut self.out);
+        counted.evaluations += 1;
+        for ((charge, jumped), still) in self.charge.iter_mut().zip(&self.out.q).zip(&still) {
+            *charge += jumped - still;
+        }
+        let at = Point {
+            time: state.time,
+            x: &[],
+            mode: &state.mode,
+        };
+        instant(
+            system,
+            &mut self.newton,
+            at,
+            weights,
+            &mut self.charge,
+            &mut state.x,
+            counted,
+        )
+        .map_err(|failure| MarchError {
+            time: state.time,
+            unknown: Some(failure.unknown),
+            cause: failure.cause,
+        })?;
+        Ok(true)
+    }
+
+    fn transition<S: System + ?Sized>(
+        &mut self,
+        system: &S,
+        cause: Cause,
+        x: &mut [f64],
+        state: &mut State,
+        counted: &mut Statistics,
+    ) -> bool {
+        self.causes.push(cause);
+        counted.events += 1;
+        system.transition(cause, state.time, x, &mut state.mode)
+    }
+
+    /// Counts guards' events that follow one another without time going on.
+    fn haste(&mut self, cause: Cause, time: f64) -> Result<(), MarchError> {
+        if cause == Cause::Time || time - self.row_since > HASTE * time.abs() {
+            self.row = 0;
+            self.row_since = time;
+        }
+        self.row += 1;
+        if self.row > MOST_IN_HASTE {
+            Err(self.chattering(time, cause))
+        } else {
+            Ok(())
+        }
+    }
+
+    fn chattering(&self, time: f64, cause: Cause) -> MarchError {
+        let guard = if let Cause::Guard(guard) = cause {
+            Some(guard)
+        } else {
+            None
+        };
+        MarchError {
+            time,
+            unknown: None,
+            cause: Trouble::Chattering { guard },
+        }
+    }
+}

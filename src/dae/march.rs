@@ -1,0 +1,380 @@
+//! The march through time: steps of the length that the accuracy asks for, from event to event.
+//!
+//! A step is tried, weighed and kept or shortened. The clock's events are ends of steps; a guard that rises within
+//! a step is located on the step's polynomial and the step is taken anew up to it. What happens at an event is in
+//! [`super::event`].
+
+use super::advance::{Advance, Step};
+use super::control::Control;
+use super::crossing::{Crossing, Watch};
+use super::event::Events;
+use super::methods::{Attempt, Method, Stepper, Trial};
+use super::statistics::Statistics;
+use super::system::{Cause, Point, System};
+use super::tolerances::Tolerances;
+use super::trouble::{MarchError, Trouble};
+use crate::math::Elimination;
+use std::ops::ControlFlow;
+
+/// Where the solution stands.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct State {
+    /// Instant [s].
+    pub time: f64,
+    /// Unknowns.
+    pub x: Vec<f64>,
+    /// Modes.
+    pub mode: Vec<f64>,
+}
+
+/// How far to march, and how.
+#[derive(Clone, Copy, Debug)]
+pub struct Span<'a> {
+    /// End [s].
+    pub until: f64,
+    /// Tolerated error of each unknown in a step.
+    pub tolerances: &'a Tolerances,
+    /// Longest step [s]; infinity for none.
+    pub longest_step: f64,
+    /// Length [s] tried first; none lets the march choose.
+    pub first_step: Option<f64>,
+}
+
+impl<'a> Span<'a> {
+    /// A span up to `until` [s] without further wishes.
+    pub fn new(until: f64, tolerances: &'a Tolerances) -> Self {
+        Span {
+            until,
+            tolerances,
+            longest_step: f64::INFINITY,
+            first_step: None,
+        }
+    }
+}
+
+/// How a march ended.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Ending {
+    /// The span's end is reached.
+    Reached,
+    /// The observer asked to stop.
+    Stopped,
+}
+
+/// A march: where it stands, and the memory that it reuses from run to run.
+#[derive(Debug)]
+pub struct March {
+    /// Where the solution stands; to be set before the first run.
+    pub state: State,
+    /// Work done since the march was made.
+    pub counted: Statistics,
+    method: &'static Method,
+    elimination: Elimination,
+    scratch: Option<Scratch>,
+}
+
+#[derive(Debug)]
+struct Scratch {
+    stepper: Stepper,
+    control: Control,
+    watch: Watch,
+    events: Events,
+    weights: Vec<f64>,
+    before: Vec<f64>,
+}
+
+/// The observer's face.
+pub type Observer<'a> = dyn FnMut(&Advance<'_>) -> ControlFlow<()> + 'a;
+
+impl March {
+    /// A march by this method from this state; the elimination is chosen by size.
+    pub fn new(method: &'static Method, state: State) -> Self {
+        March::with_elimination(method, state, Elimination::Automatic)
+    }
+
+    /// A march with a forced choice of elimination.
+    pub fn with_elimination(
+        method: &'static Method,
+        state: State,
+        elimination: Elimination,
+    ) -> Self {
+        March {
+            state,
+            counted: Statistics::default(),
+            method,
+            elimination,
+            scratch: None,
+        }
+    }
+
+    /// Marches `system` on from the present state, which must be consistent.
+    pub fn run<S: System + ?Sized>(
+        &mut self,
+        system: &S,
+        span: Span<'_>,
+        observer: &mut Observer<'_>,
+    ) -> Result<Ending, MarchError> {
+        let scratch = self.scratch.get_or_insert_with(|| Scratch {
+            stepper: Stepper::new(self.method, system, self.elimination),
+            control: Control::new(self.method.estimated),
+            watch: Watch::new(system),
+            events: Events::new(system, self.elimination),
+            weights: vec![0.0; system.size()],
+            before: vec![0.0; system.size()],
+        });
+        let mut run = Run {
+            system,
+            span,
+            state: &mut self.state,
+            counted: &mut self.counted,
+            scratch,
+            observer,
+            length: 0.0,
+        };
+        run.whole()
+    }
+}
+
+struct Run<'a, 'o, S: ?Sized> {
+    system: &'a S,
+    span: Span<'a>,
+    state: &'a mut State,
+    counted: &'a mut Statistics,
+    scratch: &'a mut Scratch,
+    observer: &'a mut Observer<'o>,
+    /// Length of the next step [s].
+    length: f64,
+}
+
+/// What ended a step.
+enum End {
+    Own,
+    Clock,
+    Guard(usize),
+}
+
+impl<S: System + ?Sized> Run<'_, '_, S> {
+    fn whole(&mut self) -> Result<Ending, MarchError> {
+        if self.begin()?.is_break() {
+            return Ok(Ending::Stopped);
+        }
+        while self.state.time < self.span.until {
+            let event = self.system.next_event(self.state.time, &self.state.mode);
+            let (end, flow) = self.step(event.min(self.span.until))?;
+            if flow.is_break() {
+                return Ok(Ending::Stopped);
+            }
+            let cause = match end {
+                End::Guard(guard) => Some(Cause::Guard(guard)),
+                End::Clock if self.state.time == event => Some(Cause::Time),
+                End::Clock | End::Own => None,
+            };
+            if let Some(cause) = cause
+                && self.take(cause)?.is_break()
+            {
+                return Ok(Ending::Stopped);
+            }
+        }
+        Ok(Ending::Reached)
+    }
+
+    fn begin(&mut self) -> Result<ControlFlow<()>, MarchError> {
+        let State { time, x, mode } = &*self.state;
+        if let Some(unknown) = x.iter().position(|value| !value.is_finite()) {
+            return Err(MarchError {
+                time: *time,
+                unknown: Some(unknown),
+                cause: Trouble::NotFinite,
+            });
+        }
+        self.span.tolerances.weigh(x, &mut self.scratch.weights);
+        let flow = (self.observer)(&Advance::Start {
+            time: *time,
+            x,
+            mode,
+        });
+        if flow.is_break() {
+            return Ok(flow);
+        }
+        self.scratch.stepper.restart();
+        self.scratch.control.restart();
+        self.length = self.span.first_step.unwrap_or_else(|| self.first_length());
+        let at = Point {
+            time: self.state.time,
+            x: &self.state.x,
+            mode: &self.state.mode,
+        };
+        match self.scratch.watch.begin(self.system, at) {
+            Some(guard) => self.take(Cause::Guard(guard)),
+            None => Ok(ControlFlow::Continue(())),
+        }
+    }
+
+    fn first_length(&self) -> f64 {
+        let whole = self.span.until - self.state.time;
+        let event = self.system.next_event(self.state.time, &self.state.mode) - self.state.time;
+        1e-3 * whole.min(event).min(self.span.longest_step)
+    }
+
+    /// Shortest step [s] that still moves the clock by some units in the last place.
+    fn shortest(&self) -> f64 {
+        (32.0 * f64::EPSILON * self.state.time.abs()).max(1e-18)
+    }
+
+    /// Takes one step that ends at `stop` at the latest.
+    fn step(&mut self, stop: f64) -> Result<(End, ControlFlow<()>), MarchError> {
+        let mut aim = f64::INFINITY;
+        let mut located = 0;
+        loop {
+            let (to, at_stop) = self.goal(stop.min(aim));
+            let trial = Trial {
+                from: Point {
+                    time: self.state.time,
+                    x: &self.state.x,
+                    mode: &self.state.mode,
+                },
+                length: to - self.state.time,
+                weights: &self.scratch.weights,
+            };
+            let length = trial.length;
+            match self
+                .scratch
+                .stepper
+                .attempt(self.system, trial, self.counted)
+            {
+                Attempt::Solved { error, .. } if error <= 1.0 => {
+                    let end = match self.crossing(to, located) {
+                        Crossing::None => None,
+                        Crossing::Here(guard) => Some(End::Guard(guard)),
+                        Crossing::Before(instant) if located < 12 => {
+                            aim = instant;
+                            located += 1;
+                            continue;
+                        }
+                        Crossing::Before(_) => None,
+                    };
+                    let end = end.unwrap_or(if at_stop && to == stop {
+                        End::Clock
+                    } else {
+                        End::Own
+                    });
+                    let factor = self.scratch.control.next(length, error);
+                    // A step cut short by an event says little about the steps after it, unless it would shrink.
+                    self.length = if at_stop {
+                        self.length.max(length * factor)
+                    } else {
+                        length * factor
+                    };
+                    return Ok((end, self.keep(to)));
+                }
+                Attempt::Solved { error, unknown } => {
+                    self.shrink(
+                        length,
+                        self.scratch.control.again(error),
+                        unknown,
+                        Trouble::Inaccurate,
+                    )?;
+                }
+                Attempt::Stalled { unknown, cause } => {
+                    self.counted.unsettled += 1;
+                    self.shrink(length, 0.25, unknown, cause)?;
+                }
+            }
+        }
+    }
+
+    /// End of the step to be tried, and whether it is the stop.
+    fn goal(&self, stop: f64) -> (f64, bool) {
+        let length = self.length.min(self.span.longest_step).max(self.shortest());
+        let left = stop - self.state.time;
+        if left <= 1.01 * length {
+            (stop, true)
+        } else if left < 2.0 * length {
+            (self.state.time + 0.5 * left, false)
+        } else {
+            (self.state.time + length, false)
+        }
+    }
+
+    fn crossing(&mut self, to: f64, located: usize) -> Crossing {
+        if self.scratch.watch.is_empty() {
+            return Crossing::None;
+        }
+        self.scratch.stepper.lay();
+        let step = Step {
+            from: self.state.time,
+            to,
+            mode: &self.state.mode,
+            x0: &self.state.x,
+            x1: self.scratch.stepper.end(),
+            dense: self.scratch.stepper.dense(),
+        };
+        self.scratch
+            .watch
+            .look(self.system, &step, &self.scratch.weights, located)
+    }
+
+    fn shrink(
+        &mut self,
+        length: f64,
+        factor: f64,
+        unknown: usize,
+        cause: Trouble,
+    ) -> Result<(), MarchError> {
+        self.counted.rejected += 1;
+        self.length = length * factor;
+        if length > self.shortest() {
+            return Ok(());
+        }
+        Err(MarchError {
+            time: self.state.time,
+            unknown: Some(unknown),
+            cause,
+        })
+    }
+
+    /// Commits the step tried last and shows it.
+    fn keep(&mut self, to: f64) -> ControlFlow<()> {
+        let scratch = &mut *self.scratch;
+        scratch.before.copy_from_slice(&self.state.x);
+        self.state.x.copy_from_slice(scratch.stepper.end());
+        let from = std::mem::replace(&mut self.state.time, to);
+        scratch.stepper.lay();
+        scratch.stepper.keep();
+        scratch.watch.keep();
+        self.span
+            .tolerances
+            .weigh(&self.state.x, &mut scratch.weights);
+        self.counted.accepted += 1;
+        let step = Step {
+            from,
+            to,
+            mode: &self.state.mode,
+            x0: &scratch.before,
+            x1: &self.state.x,
+            dense: scratch.stepper.dense(),
+        };
+        (self.observer)(&Advance::Step(&step))
+    }
+
+    /// Takes an event and whatever follows from it at the same instant.
+    fn take(&mut self, cause: Cause) -> Result<ControlFlow<()>, MarchError> {
+        let scratch = &mut *self.scratch;
+        let changed = scratch.events.take(
+            self.system,
+            cause,
+            self.state,
+            &scratch.weights,
+            &mut scratch.watch,
+            self.counted,
+        )?;
+        if changed {
+            scratch.stepper.restart();
+            scratch.control.restart();
+            self.span
+                .tolerances
+                .weigh(&self.state.x, &mut scratch.weights);
+        }
+        Ok((self.observer)(&scratch.events.advance(self.state)))
+    }
+}

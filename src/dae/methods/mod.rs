@@ -1,0 +1,138 @@
+//! The integration methods, and the step that each family tries.
+//!
+//! The march owns the loop: how long a step is, whether it is kept, what happens at events. A family owns its
+//! attempt: stages, iteration, the error estimate in x, and the dense output of the step.
+
+mod diagonal;
+mod tr_bdf2;
+
+use super::dense::Dense;
+use super::statistics::Statistics;
+use super::system::{Point, System};
+use super::trouble::Trouble;
+use crate::math::Elimination;
+use diagonal::Diagonal;
+
+/// All methods; the first is the one that is taken unless another is asked for.
+pub const METHODS: &[Method] = &[tr_bdf2::METHOD];
+
+/// An implicit one-step method.
+#[derive(Clone, Copy, Debug)]
+pub struct Method {
+    /// Its name.
+    pub name: &'static str,
+    /// Order of the values at the ends of steps.
+    pub order: u32,
+    /// Order of the error estimate: it falls like this power of the step.
+    pub estimated: u32,
+    /// What its stages look like.
+    pub family: Family,
+}
+
+/// Methods of one algebra.
+#[derive(Clone, Copy, Debug)]
+pub enum Family {
+    /// Stages solved one after the other with one matrix, the first explicit, the last at the step's end.
+    Diagonal(Table),
+}
+
+/// Coefficients of a diagonally implicit method (Butcher's table, stiffly accurate, first stage explicit).
+#[derive(Clone, Copy, Debug)]
+pub struct Table {
+    /// Diagonal coefficient of all implicit stages.
+    pub diagonal: f64,
+    /// Instants of the stages as shares of the step.
+    pub nodes: &'static [f64],
+    /// Coefficients left of the diagonal, one row per stage; the last row with the diagonal is the method.
+    pub rows: &'static [&'static [f64]],
+    /// Weights of the companion method whose difference is the error estimate.
+    pub companion: &'static [f64],
+}
+
+impl Method {
+    /// The method of this name.
+    pub fn named(name: &str) -> Option<&'static Method> {
+        METHODS.iter().find(|method| method.name == name)
+    }
+}
+
+/// What came of trying a step.
+#[derive(Clone, Copy, Debug)]
+pub(crate) enum Attempt {
+    /// The stages are solved; the error in tolerances, and the unknown that sets it.
+    Solved { error: f64, unknown: usize },
+    /// They could not be solved.
+    Stalled { unknown: usize, cause: Trouble },
+}
+
+/// The step to be tried.
+#[derive(Clone, Copy)]
+pub(crate) struct Trial<'a> {
+    /// Where it starts.
+    pub from: Point<'a>,
+    /// How long it is [s].
+    pub length: f64,
+    /// Reciprocal tolerances.
+    pub weights: &'a [f64],
+}
+
+/// A family's memory.
+#[derive(Debug)]
+pub(crate) enum Stepper {
+    Diagonal(Diagonal),
+}
+
+impl Stepper {
+    pub fn new<S: System + ?Sized>(method: &Method, system: &S, elimination: Elimination) -> Self {
+        match method.family {
+            Family::Diagonal(table) => Stepper::Diagonal(Diagonal::new(table, system, elimination)),
+        }
+    }
+
+    /// Something jumped: nothing of the past serves as a prediction.
+    pub fn restart(&mut self) {
+        match self {
+            Stepper::Diagonal(stepper) => stepper.restart(),
+        }
+    }
+
+    /// Tries a step.
+    pub fn attempt<S: System + ?Sized>(
+        &mut self,
+        system: &S,
+        trial: Trial<'_>,
+        counted: &mut Statistics,
+    ) -> Attempt {
+        match self {
+            Stepper::Diagonal(stepper) => stepper.attempt(system, trial, counted),
+        }
+    }
+
+    /// Values at the end of the step tried last.
+    pub fn end(&self) -> &[f64] {
+        match self {
+            Stepper::Diagonal(stepper) => stepper.end(),
+        }
+    }
+
+    /// Lays the polynomial of the step tried last.
+    pub fn lay(&mut self) {
+        match self {
+            Stepper::Diagonal(stepper) => stepper.lay(),
+        }
+    }
+
+    /// The polynomial laid last.
+    pub fn dense(&self) -> Dense<'_> {
+        match self {
+            Stepper::Diagonal(stepper) => stepper.dense(),
+        }
+    }
+
+    /// The step tried last is kept: the next one starts at its end.
+    pub fn keep(&mut self) {
+        match self {
+            Stepper::Diagonal(stepper) => stepper.keep(),
+        }
+    }
+}

@@ -1,0 +1,225 @@
+//! Newton's iteration for one point: rate q(x) + f(x, t) + rest = 0.
+//!
+//! Serves the stages of the diagonally implicit methods (rate = 1/(h d)), the consistent start (rate = 1/h) and the
+//! operating point (rate = 0). Steps are limited by the system where a law is exponential; the size of a step is its
+//! largest entry in tolerances; from the ratio of two steps follows how far the solution still is.
+
+use super::statistics::Statistics;
+use super::system::{Evaluation, Point, System};
+use super::tolerances::largest;
+use super::trouble::Trouble;
+use crate::math::{Elimination, Matrix};
+
+/// An equation to be solved.
+pub(crate) struct Equation<'a> {
+    /// Time [s].
+    pub time: f64,
+    /// Modes.
+    pub mode: &'a [f64],
+    /// Factor of q [1/s].
+    pub rate: f64,
+    /// Constant part, one value per row.
+    pub rest: &'a [f64],
+    /// Conductance-like value added to `rows` on the diagonal.
+    pub shunt: f64,
+    /// Rows that may be shunted.
+    pub shunted: &'a [usize],
+    /// Share of the sources where they are being raised.
+    pub share: Option<f64>,
+}
+
+/// When to stop.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Rules {
+    /// Settled when the distance left is estimated below this many tolerances.
+    pub close: f64,
+    /// Iterations at most.
+    pub longest: usize,
+    /// Recompute the slopes in every iteration.
+    pub fresh: bool,
+}
+
+/// Why the iteration ended without a solution.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(crate) struct Failure {
+    pub unknown: usize,
+    pub cause: Trouble,
+}
+
+/// The iteration's memory.
+#[derive(Debug)]
+pub(crate) struct Newton {
+    pub matrix: Matrix<f64>,
+    pub out: Evaluation,
+    step: Vec<f64>,
+    /// Rate for which the factors hold; not a number where there are none.
+    factored: f64,
+    /// Ratio of the last two steps' sizes in the last solution.
+    contraction: f64,
+}
+
+impl Newton {
+    pub fn new<S: System + ?Sized>(system: &S, elimination: Elimination) -> Self {
+        let pattern = system.pattern();
+        let size = system.size();
+        Newton {
+            matrix: Matrix::new(size, &pattern.starts, &pattern.rows, elimination),
+            out: evaluation(size, pattern.len()),
+            step: vec![0.0; size],
+            factored: f64::NAN,
+            contraction: 1.0,
+        }
+    }
+
+    /// Forgets the factors: the equations have changed.
+    pub fn forget(&mut self) {
+        self.factored = f64::NAN;
+    }
+
+    /// Solves from the guess in `x`; leaves the solution there. `out` then holds the last evaluation, one step before.
+    pub fn solve<S: System + ?Sized>(
+        &mut self,
+        system: &S,
+        equation: &Equation<'_>,
+        rules: Rules,
+        weights: &[f64],
+        x: &mut [f64],
+        counted: &mut Statistics,
+    ) -> Result<(), Failure> {
+        let mut before = f64::INFINITY;
+        let mut culprit = 0;
+        let mut eta = self.contraction.max(f64::EPSILON).powf(0.8);
+        let mut kept = !rules.fresh && self.factored == equation.rate;
+        for iteration in 0..rules.longest {
+            self.evaluate(system, equation, x, !kept, counted)?;
+            if !kept {
+                self.factor(equation, counted)?;
+            }
+            self.residual(equation, x);
+            self.matrix.solve(&mut self.step);
+            counted.solves += 1;
+            counted.newton_iterations += 1;
+            let limited = system.limit(x, &mut self.step);
+            let (size, unknown) = largest(&self.step, weights);
+            if !size.is_finite() {
+                return Err(Failure {
+                    unknown,
+                    cause: Trouble::NotFinite,
+                });
+            }
+            culprit = unknown;
+            for (value, step) in x.iter_mut().zip(&self.step) {
+                *value += step;
+            }
+            if limited {
+                (before, kept) = (f64::INFINITY, false);
+                continue;
+            }
+            let rate = if before.is_finite() {
+                size / before
+            } else {
+                f64::NAN
+            };
+            if iteration > 0 && rate.is_finite() {
+                self.contraction = rate.min(1.0);
+                eta = if rate < 1.0 {
+                    rate / (1.0 - rate)
+                } else {
+                    f64::INFINITY
+                };
+            }
+            if size == 0.0
+                || eta.min(1e3) * size <= rules.close
+                || (iteration > 0 && size <= 1e-3 * rules.close)
+            {
+                return Ok(());
+            }
+            // Slow or growing with old slopes: take new ones at the present point.
+            kept = !rules.fresh && (rate.is_nan() || rate <= 0.3);
+            before = size;
+        }
+        self.forget();
+        Err(Failure {
+            unknown: culprit,
+            cause: Trouble::Unsettled,
+        })
+    }
+
+    fn evaluate<S: System + ?Sized>(
+        &mut self,
+        system: &S,
+        equation: &Equation<'_>,
+        x: &[f64],
+        slopes: bool,
+        counted: &mut Statistics,
+    ) -> Result<(), Failure> {
+        let at = Point {
+            time: equation.time,
+            x,
+            mode: equation.mode,
+        };
+        counted.evaluations += 1;
+        match equation.share {
+            Some(share) => {
+                system.evaluate_raised(at, share, slopes, &mut self.out);
+            }
+            None => system.evaluate(at, slopes, &mut self.out),
+        }
+        let sound = |(f, q): (&f64, &f64)| (f + q).is_finite();
+        match self
+            .out
+            .f
+            .iter()
+            .zip(&self.out.q)
+            .position(|pair| !sound(pair))
+        {
+            Some(unknown) => Err(Failure {
+                unknown,
+                cause: Trouble::NotFinite,
+            }),
+            None => Ok(()),
+        }
+    }
+
+    fn factor(&mut self, equation: &Equation<'_>, counted: &mut Statistics) -> Result<(), Failure> {
+        let values = self.matrix.values_mut();
+        for ((value, &dq), &df) in values.iter_mut().zip(&self.out.dq).zip(&self.out.df) {
+            *value = equation.rate * dq + df;
+        }
+        if equation.shunt != 0.0 {
+            for &row in equation.shunted {
+                self.matrix.add_to_diagonal(row, equation.shunt);
+            }
+        }
+        counted.factorizations += 1;
+        self.factored = equation.rate;
+        self.matrix.factor().map_err(|singular| {
+            self.factored = f64::NAN;
+            Failure {
+                unknown: singular.column,
+                cause: Trouble::Singular,
+            }
+        })
+    }
+
+    fn residual(&mut self, equation: &Equation<'_>, x: &[f64]) {
+        for (row, step) in self.step.iter_mut().enumerate() {
+            *step = -(equation.rate * self.out.q[row] + self.out.f[row] + equation.rest[row]);
+        }
+        if equation.shunt != 0.0 {
+            for &row in equation.shunted {
+                self.step[row] -= equation.shunt * x[row];
+            }
+        }
+    }
+}
+
+/// An evaluation with room for `size` rows and `positions` slopes.
+pub(crate) fn evaluation(size: usize, positions: usize) -> Evaluation {
+    Evaluation {
+        f: vec![0.0; size],
+        q: vec![0.0; size],
+        df: vec![0.0; positions],
+        dq: vec![0.0; positions],
+    }
+}

@@ -1,0 +1,5 @@
+//! The engine against closed forms, conserved quantities and measured orders.
+
+mod events;
+mod order;
+mod problems;

@@ -1,0 +1,45 @@
+//! How finely each unknown is wanted.
+
+/// Tolerated error of each unknown in a step, in the unknown's own unit.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Tolerances {
+    /// Absolute part, one positive value per unknown.
+    pub absolute: Vec<f64>,
+    /// Share of the unknown's present magnitude that is added; 0 leaves the absolute part alone.
+    pub relative: f64,
+}
+
+impl Tolerances {
+    /// Absolute tolerances alone.
+    pub fn absolute(absolute: Vec<f64>) -> Self {
+        Tolerances {
+            absolute,
+            relative: 0.0,
+        }
+    }
+
+    /// Fills `weights` with the reciprocal of what is tolerated at `x`.
+    pub(crate) fn weigh(&self, x: &[f64], weights: &mut [f64]) {
+        for ((weight, &absolute), &value) in weights.iter_mut().zip(&self.absolute).zip(x) {
+            *weight = 1.0 / (absolute + self.relative * value.abs());
+        }
+    }
+}
+
+/// The largest weighted entry of `v` and its place: an error in tolerances, and the unknown that sets it.
+///
+/// The largest, not a mean: a mean over a long line or a large circuit is diluted by its quiet parts. Entries that
+/// are not numbers win.
+#[inline]
+pub(crate) fn largest(v: &[f64], weights: &[f64]) -> (f64, usize) {
+    let mut most = (0.0, 0);
+    for (place, (&value, &weight)) in v.iter().zip(weights).enumerate() {
+        let size = (value * weight).abs();
+        if size > most.0 {
+            most = (size, place);
+        } else if size.is_nan() {
+            return (f64::INFINITY, place);
+        }
+    }
+    most
+}

@@ -1,0 +1,123 @@
+//! A square matrix on a fixed pattern with its factors: the choice between dense and sparse elimination.
+
+use super::dense::DenseLu;
+use super::scalar::Scalar;
+use super::sparse::SparseLu;
+
+/// A matrix without a usable pivot (or with a value that is not finite).
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Singular {
+    /// Column at which elimination ended: the unknown that the equations do not determine.
+    pub column: usize,
+}
+
+/// How a matrix is eliminated.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub enum Elimination {
+    /// By size: dense up to [`LARGEST_DENSE`] unknowns.
+    #[default]
+    Automatic,
+    /// Dense at any size.
+    Dense,
+    /// Sparse at any size.
+    Sparse,
+}
+
+/// Up to this size the dense elimination is chosen.
+pub const LARGEST_DENSE: usize = 12;
+
+/// A matrix whose non-zero positions are fixed and whose values are refilled often.
+#[derive(Clone, Debug)]
+pub struct Matrix<T> {
+    size: usize,
+    starts: Vec<usize>,
+    rows: Vec<usize>,
+    values: Vec<T>,
+    work: Vec<T>,
+    factors: Factors<T>,
+}
+
+#[derive(Clone, Debug)]
+enum Factors<T> {
+    Dense(DenseLu<T>),
+    Sparse(SparseLu<T>),
+}
+
+impl<T: Scalar> Matrix<T> {
+    /// A matrix on a pattern compressed by column: column c holds the rows `rows[starts[c]..starts[c + 1]]`, ascending.
+    pub fn new(size: usize, starts: &[usize], rows: &[usize], elimination: Elimination) -> Self {
+        let dense = match elimination {
+            Elimination::Automatic => size <= LARGEST_DENSE,
+            Elimination::Dense => true,
+            Elimination::Sparse => false,
+        };
+        Matrix {
+            size,
+            starts: starts.to_vec(),
+            rows: rows.to_vec(),
+            values: vec![T::ZERO; rows.len()],
+            work: vec![T::ZERO; size],
+            factors: if dense {
+                Factors::Dense(DenseLu::new(size))
+            } else {
+                Factors::Sparse(SparseLu::new(size))
+            },
+        }
+    }
+
+    /// Number of rows and columns.
+    pub fn size(&self) -> usize {
+        self.size
+    }
+
+    /// Values on the pattern, in its order; to be filled before [`Matrix::factor`].
+    pub fn values_mut(&mut self) -> &mut [T] {
+        &mut self.values
+    }
+
+    /// Adds to the diagonal entry of a row, where the pattern holds it (nothing otherwise).
+    pub fn add_to_diagonal(&mut self, row: usize, value: T) {
+        let span = self.starts[row]..self.starts[row + 1];
+        if let Ok(k) = self.rows[span.clone()].binary_search(&row) {
+            self.values[span.start + k] += value;
+        }
+    }
+
+    /// Factors the present values. On failure names the column (the unknown) that has no pivot.
+    pub fn factor(&mut self) -> Result<(), Singular> {
+        match &mut self.factors {
+            Factors::Dense(lu) => {
+                let entries = lu.entries_mut();
+                entries.fill(T::ZERO);
+                for column in 0..self.size {
+                    for slot in self.starts[column]..self.starts[column + 1] {
+                        entries[self.rows[slot] * self.size + column] = self.values[slot];
+                    }
+                }
+                lu.factor()
+            }
+            Factors::Sparse(lu) => lu.factor(&self.starts, &self.rows, &self.values),
+        }
+    }
+
+    /// Solves A x = b with the last factors; `x` holds b on entry.
+    pub fn solve(&mut self, x: &mut [T]) {
+        match &self.factors {
+            Factors::Dense(lu) => lu.solve(x, &mut self.work),
+            Factors::Sparse(lu) => lu.solve(x, &mut self.work),
+        }
+    }
+
+    /// Number of entries of L and U that the elimination stores, diagonals counted once.
+    pub fn filled(&self) -> usize {
+        match &self.factors {
+            Factors::Dense(_) => self.size * self.size,
+            Factors::Sparse(lu) => lu.filled(),
+        }
+    }
+
+    /// True where the sparse elimination is in use.
+    pub fn is_sparse(&self) -> bool {
+        matches!(self.factors, Factors::Sparse(_))
+    }
+}

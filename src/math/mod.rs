@@ -1,0 +1,12 @@
+//! Numbers without a meaning: matrices and their factors, and whatever else of mathematics the rooms above share.
+//!
+//! Linear algebra: [`Matrix`] takes values on a fixed sparsity pattern, factors them and solves; it chooses
+//! between the [`dense`] and the [`sparse`] elimination. Both serve real and complex numbers.
+
+pub mod dense;
+pub mod matrix;
+pub mod scalar;
+pub mod sparse;
+
+pub use matrix::{Elimination, Matrix, Singular};
+pub use scalar::Scalar;

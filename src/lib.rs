@@ -4,6 +4,7 @@ pub mod dae;
 pub mod diag;
 pub mod math;
 pub mod netlist;
+pub mod readings;
 pub mod report;
 pub mod signals;
 pub mod sizing;

@@ -11,6 +11,7 @@ pub mod resample;
 mod trace;
 mod window;
 mod words;
+mod written;
 
 pub use event::{EVENTS, EventLog, EventPhrase, Happening};
 pub use phrase::{Owner, PHRASES, Phrase, PhraseKind, Quantity};
@@ -20,3 +21,4 @@ pub use resample::{Row, Sample, Thinner};
 pub use trace::{Side, Trace};
 pub use window::{Gate, GateState, Instant, Passed, Window};
 pub use words::PhraseError;
+pub use written::{WrittenInstant, WrittenPhrase, read_instant, read_phrase};

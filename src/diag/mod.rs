@@ -5,6 +5,9 @@ pub mod drawing;
 mod sink;
 mod sources;
 
+#[cfg(test)]
+mod tests;
+
 pub use diagnostic::{Diagnostic, Severity, to_json};
 pub use drawing::{Paint, draw, draw_all};
 pub use sink::Sink;

@@ -1,7 +1,7 @@
 //! The event stream of the YAML parser turned into nodes, without recursion and with named limits.
 
 use super::node::{Data, Entry, Node};
-use super::syntax;
+use super::syntax::{self, Fault};
 use crate::diag::{Diagnostic, FileId, Sink, Span};
 use saphyr_parser::{Event, Parser, ScalarStyle};
 use std::collections::BTreeMap;
@@ -26,7 +26,14 @@ pub fn build(file: FileId, text: &str, sink: &Sink) -> Option<Node> {
             Ok((Event::StreamEnd, _)) => break,
             Ok((event, span)) => builder.take(event, span)?,
             Err(error) => {
-                sink.report(syntax::explain(file, text, &builder.offsets, &error));
+                let fault = Fault {
+                    file,
+                    text,
+                    at: builder.offsets.byte(text, error.marker().index()),
+                    info: error.info(),
+                    open: builder.open.last().map(|open| open.start),
+                };
+                sink.report(syntax::explain(&fault));
                 return None;
             }
         }
@@ -122,17 +129,26 @@ impl Builder<'_> {
         None
     }
 
-    /// Refuses anchors and tags.
+    /// Refuses anchors and tags; the value's span begins with them.
     fn plain(&self, anchor: usize, tag: bool, span: Span) -> Option<()> {
+        let written = &self.text[span.start..span.end];
+        let length = written.find(char::is_whitespace).unwrap_or(written.len());
+        let mark = span.part(0..length);
         if anchor > 0 {
-            return self.refuse("anchor", "anchors with `&` are not part of a netlist", span, "the anchor is before this", "write the value out, or use `part:` for shared keys; a text that begins with `&` is put in quotes");
+            return self.refuse(
+                "anchor",
+                "anchors with `&` are not part of a netlist",
+                mark,
+                "an anchor",
+                "write the value out, or use `part:` for shared keys; a text that begins with `&` is put in quotes",
+            );
         }
         if tag {
             return self.refuse(
                 "tag",
                 "tags with `!` are not part of a netlist",
-                span,
-                "the tag is before this",
+                mark,
+                "a tag",
                 "remove the tag; a text that begins with `!` is put in quotes",
             );
         }
@@ -141,15 +157,8 @@ impl Builder<'_> {
 
     fn begin(&mut self, data: Data, span: Span) -> Option<()> {
         if self.open.len() >= DEEPEST {
-            let headline =
-                format!("lists and mappings stand more than {DEEPEST} deep in one another");
-            return self.refuse(
-                "too-deep",
-                &headline,
-                span,
-                "one too many",
-                "a netlist needs less than ten",
-            );
+            self.sink.report(syntax::too_deep(span));
+            return None;
         }
         let head = self
             .open
@@ -171,13 +180,15 @@ impl Builder<'_> {
             return;
         };
         let file = self.file;
+        let closed = self.text[span.start..span.end].starts_with([']', '}']);
         // A block ends where its last item does; the parser says where the next thing begins.
         let end = match &open.data {
-            _ if span.end > span.start => span.end,
-            Data::List(items) => items.last().map_or(span.end, |item| item.span.end),
+            // The parser counts what follows the bracket in.
+            _ if closed => span.start + 1,
+            Data::List(items) => items.last().map_or(open.start, |item| item.span.end),
             Data::Map(entries) => entries
                 .last()
-                .map_or(span.end, |entry| entry.value.span.end),
+                .map_or(open.start, |entry| entry.value.span.end),
             Data::Scalar(_) => span.end,
         };
         let own = Span {

@@ -71,15 +71,17 @@ pub fn load(input: &Input, overrides: &[String]) -> Result<Loaded, LoadError> {
         sources: Sources::new(),
         sink: Sink::new(),
         unreadable: false,
+        torn: false,
     };
     let document = loader.read(input, overrides);
     let Loader {
         sources,
         sink,
         unreadable,
+        torn,
     } = loader;
     match document {
-        Some(document) if !unreadable => Ok(Loaded {
+        Some(document) if !unreadable && !torn => Ok(Loaded {
             document,
             sources,
             sink,
@@ -102,6 +104,8 @@ struct Loader {
     sources: Sources,
     sink: Sink,
     unreadable: bool,
+    /// A brought file has no tree: what it holds would be missed everywhere.
+    torn: bool,
 }
 
 impl Loader {
@@ -191,7 +195,10 @@ impl Loader {
         let path = self.allowed(item, folder, seen)?;
         let name = path.display().to_string();
         let bytes = self.bytes(&path, Some(item.span))?;
-        let brought = read_document(&name, &bytes, &mut self.sources, &self.sink)?;
+        let Some(brought) = read_document(&name, &bytes, &mut self.sources, &self.sink) else {
+            self.torn = true;
+            return None;
+        };
         for section in brought.root.entries() {
             if !BROUGHT.contains(&section.key.as_str()) {
                 let diagnostic = Diagnostic::error(
@@ -335,3 +342,6 @@ impl Loader {
         }
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -2,6 +2,7 @@
 
 pub mod document;
 mod events;
+pub mod expected;
 pub mod fields;
 pub mod keys;
 pub mod load;
@@ -12,6 +13,9 @@ mod reader;
 mod set;
 mod syntax;
 mod writer;
+
+#[cfg(test)]
+mod tests;
 
 pub use document::{Document, read_document, read_fragment};
 pub use fields::{Fields, NamedNode, join};

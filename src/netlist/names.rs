@@ -38,7 +38,7 @@ pub fn nearest<'a>(word: &str, candidates: impl IntoIterator<Item = &'a str>) ->
         if folded.len() >= 3 && plain.starts_with(&folded) {
             distance = distance.min(2);
         }
-        let allowed = (length / 3).max(1);
+        let allowed = length.div_ceil(3).max(1);
         if distance <= allowed && best.is_none_or(|(least, _)| distance < least) {
             best = Some((distance, candidate));
         }

@@ -243,3 +243,6 @@ fn rename_file(node: &mut Node, file: crate::diag::FileId) {
         }),
     }
 }
+
+#[cfg(test)]
+mod tests;

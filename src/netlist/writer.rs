@@ -100,3 +100,107 @@ pub fn scalar(text: &str) -> String {
     out.push('"');
     out
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::diag::{Sink, Sources};
+    use crate::netlist::{read_document, read_fragment};
+
+    /// The tree without its places, for comparison.
+    fn plain(node: &Node) -> Node {
+        node.clone().placed_at(Default::default())
+    }
+
+    #[test]
+    fn what_is_written_reads_back_as_the_same_tree() {
+        let text = "title: \"K1: <a> # no\"\nempty:\nnone: {}\nlist: []\nelements:\n  a: {nodes: [x, y], v: 24 V ± 10 %, at: [[1 ms, -2 V], [3 ms, 4 V]], w: {p: {q: 'no'}}}\n  b:\n    note: |\n      two\n      lines\n";
+        let sink = Sink::new();
+        let document =
+            read_document("a", text.as_bytes(), &mut Sources::new(), &sink).expect("it has a tree");
+        let written = document.to_yaml();
+        let again = read_document("b", written.as_bytes(), &mut Sources::new(), &sink)
+            .expect("it has a tree");
+        assert_eq!(plain(&again.root), plain(&document.root), "{written}");
+        assert!(
+            written.contains("    v: 24 V ± 10 %\n")
+                && written.contains("at: [[1 ms, -2 V], [3 ms, 4 V]]"),
+            "{written}"
+        );
+    }
+
+    #[test]
+    fn every_text_survives_as_value_and_as_key() {
+        let texts = [
+            "a: b",
+            "a #b",
+            "# c",
+            "- x",
+            "-",
+            "? x",
+            "*a",
+            "&a",
+            "!t",
+            "%x",
+            "@x",
+            "`x",
+            "'q'",
+            "\"q\"",
+            "a\\b",
+            "a\nb",
+            "a\tb",
+            " lead",
+            "trail ",
+            "[x]",
+            "{x}",
+            "a,b",
+            "x]",
+            "~",
+            "null",
+            "---",
+            "...",
+            "=",
+            "<<",
+            ">",
+            "|",
+            "a\r\nb",
+            "\u{85}",
+            "\u{2028}x",
+            "\u{7}",
+            "µΩ°²±",
+            "1e-4",
+            "-5 V",
+            "+3",
+            "..5",
+            "a\u{feff}b",
+            "\u{1f600}",
+            "a:",
+            ":a",
+            "a:b",
+            "0x1",
+            "---x",
+            "- -",
+            "\u{fffe}",
+        ];
+        for text in texts {
+            for document in [
+                format!("{}: x\n", scalar(text)),
+                format!("k: {}\n", scalar(text)),
+                format!("k: [{}]\n", scalar(text)),
+                format!("k: {{{}: 1}}\n", scalar(text)),
+            ] {
+                let sink = Sink::new();
+                let node = read_fragment("t", &document, &mut Sources::new(), &sink)
+                    .unwrap_or_else(|| panic!("{document}: {:?}", sink.sorted()));
+                let entry = &node.entries()[0];
+                let found = match &entry.value.data {
+                    Data::Scalar(_) if entry.key != "k" => entry.key.clone(),
+                    Data::Scalar(value) => value.clone(),
+                    Data::List(items) => items[0].text().unwrap_or("no text").to_owned(),
+                    Data::Map(entries) => entries[0].key.clone(),
+                };
+                assert_eq!(found, text, "{document}");
+            }
+        }
+    }
+}

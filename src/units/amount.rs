@@ -62,9 +62,10 @@ impl Text<'_> {
             word,
             range,
             noun: self.kind.noun(),
-            problem,
-            label,
-            help,
+            problem: limited(problem),
+            label: limited(label),
+            // A remedy is typed; a text of this length is not.
+            help: help.filter(|help| help.len() <= LONGEST),
         }
     }
 
@@ -98,107 +99,6 @@ impl Text<'_> {
         Ok((number, start..end))
     }
 
-    fn no_number(&self, from: usize) -> UnitError {
-        let rest = self.text[from..].trim_end();
-        let range = from..from + rest.len();
-        let folded = rest.trim_start_matches(['+', '-', '.']).to_lowercase();
-        if rest.is_empty() {
-            let problem = "has no value".to_owned();
-            return self.error("bad-number", range, problem, self.written_in(), None);
-        }
-        if folded.starts_with("nan") || folded.starts_with("inf") || folded.starts_with('∞') {
-            let problem = format!("must be finite, got {rest}");
-            return self.error(
-                "bad-number",
-                range,
-                problem,
-                "not a finite number".into(),
-                None,
-            );
-        }
-        let problem = format!("takes {}, got {}", self.kind.takes, shortened(rest));
-        let label = format!("not a number; {}", self.written_in());
-        self.error("bad-number", range, problem, label, None)
-    }
-
-    /// Numbers written as other tongues and drawings write them: `4,7`, `10 000`, `1_000`, `4k7`.
-    fn odd_number(&self, from: usize, number: &Number) -> Option<UnitError> {
-        let rest = &self.text[from..];
-        let head = &rest[..number.length];
-        let tail = &rest[number.length..];
-        let mut chars = tail.trim_start_matches([' ', '\u{a0}', '\u{202f}']).chars();
-        let (first, second) = (chars.next()?, chars.next());
-        let range = from..from + rest.trim_end().len();
-        let digit_next = second.is_some_and(|c| c.is_ascii_digit());
-        let spaced = !tail.starts_with(first);
-        if first == ',' && digit_next {
-            let help = rest.trim_end().replacen(',', ".", 1);
-            let problem = format!("takes a decimal point, got {}", shortened(rest.trim_end()));
-            return Some(self.error(
-                "bad-number",
-                range,
-                problem,
-                "a comma is no decimal point here".into(),
-                Some(help),
-            ));
-        }
-        if (first == '_' && digit_next) || (spaced && first.is_ascii_digit()) {
-            let problem = format!(
-                "takes a number in one piece, got {}",
-                shortened(rest.trim_end())
-            );
-            let label = "digits are not grouped here".into();
-            return Some(self.error("bad-number", range, problem, label, None));
-        }
-        if first == '.' && digit_next {
-            let problem = format!(
-                "takes one decimal point, got {}",
-                shortened(rest.trim_end())
-            );
-            return Some(self.error(
-                "bad-number",
-                range,
-                problem,
-                "two decimal points".into(),
-                None,
-            ));
-        }
-        if !spaced && digit_next && first.is_alphabetic() && !head.contains('.') {
-            return self.compound(head, first, &tail[first.len_utf8()..], from);
-        }
-        None
-    }
-
-    /// `4k7`, `2R2`, `5V6`: the letter in place of the point. A unit with exponent (`2m2` for an area) passes.
-    fn compound(&self, head: &str, letter: char, tail: &str, from: usize) -> Option<UnitError> {
-        let fraction: String = tail.chars().take_while(char::is_ascii_digit).collect();
-        let unit_text = format!("{letter}{fraction}");
-        if WrittenUnit::parse(&unit_text)
-            .is_ok_and(|unit| Some(unit.dimension) == self.kind.dimension)
-        {
-            return None;
-        }
-        let symbol = self.kind.symbol;
-        let unit = match letter {
-            'R' | 'r' | 'E' | 'Ω' if symbol == "Ω" => "Ω".to_owned(),
-            'K' => format!("k{symbol}"),
-            _ if symbol.starts_with(letter) => symbol.to_owned(),
-            _ => format!("{letter}{symbol}"),
-        };
-        WrittenUnit::parse(&unit).ok()?;
-        let whole = format!("{head}{unit_text}");
-        let range = from..from + whole.len();
-        let help = format!("{head}.{fraction} {unit}");
-        let problem = format!("takes {}, got {whole}", self.kind.takes);
-        Some(self.error(
-            "bad-number",
-            range,
-            problem,
-            format!("write {help}"),
-            Some(help),
-        ))
-    }
-
     /// The unit at `range`, which may be empty.
     pub fn unit(
         &self,
@@ -209,11 +109,10 @@ impl Text<'_> {
         let text = &self.text[range.clone()];
         WrittenUnit::parse(text).map_err(|part| {
             let problem = format!("has an unknown unit, {}", shortened(&part));
-            let head = &self.text[from..from + number.length];
-            match nearest_unit(&part, self.kind.dimension) {
-                Some(near) => {
-                    let label = format!("did you mean {near}?");
-                    let help = format!("{head} {}", text.replacen(&part, &near, 1));
+            match self.mended(text) {
+                Some(unit) => {
+                    let help = format!("{} {unit}", &self.text[from..from + number.length]);
+                    let label = format!("did you mean {unit}?");
                     self.error("unknown-unit", range.clone(), problem, label, Some(help))
                 }
                 None => self.error(
@@ -225,6 +124,29 @@ impl Text<'_> {
                 ),
             }
         })
+    }
+
+    /// A misspelt unit with each wrong factor replaced by the nearest; None where that is no unit of the kind.
+    fn mended(&self, unit: &str) -> Option<String> {
+        let mut unit = unit.to_owned();
+        // Longer texts are no units, and each round mends one factor.
+        for _ in 0..4 {
+            match WrittenUnit::parse(&unit) {
+                Ok(right) => {
+                    let fits = self
+                        .kind
+                        .dimension
+                        .is_none_or(|wanted| wanted == right.dimension);
+                    return fits.then_some(unit);
+                }
+                Err(part) if part.len() <= 20 => {
+                    let near = nearest_unit(&part, self.kind.dimension)?;
+                    unit = unit.replacen(&part, &near, 1);
+                }
+                Err(_) => return None,
+            }
+        }
+        None
     }
 
     fn check_dimension(
@@ -350,6 +272,16 @@ fn unit_length(text: &str) -> usize {
         before = c;
     }
     text[..end].trim_end().len()
+}
+
+/// Bytes of a message that quotes the user's text.
+const LONGEST: usize = 200;
+
+fn limited(text: String) -> String {
+    if text.len() <= LONGEST {
+        return text;
+    }
+    format!("{}…", text.chars().take(LONGEST / 2).collect::<String>())
 }
 
 /// A text cut to a length that fits into a sentence.

@@ -62,17 +62,13 @@ pub fn engineering<'a>(value: f64, unit: impl Into<Unit<'a>>, digits: usize) -> 
         return join(if value > 0.0 { "∞" } else { "-∞" }, symbol);
     }
     let (mantissa, power) = rounded(value, digits);
-    let group = if step == 1 && value != 0.0 {
-        power.div_euclid(3) * 3
-    } else {
-        0
-    };
+    let group = power.div_euclid(3) * 3;
     match PREFIXES.iter().find(|(tens, _)| *tens == group) {
-        Some((tens, prefix)) => join(
+        Some((tens, prefix)) if step == 1 && value != 0.0 => join(
             &decimal(&mantissa, power - tens),
             &format!("{prefix}{symbol}"),
         ),
-        None => join(&scientific(&mantissa, power), symbol),
+        _ => join(&scientific(&mantissa, power), symbol),
     }
 }
 

@@ -9,9 +9,13 @@ mod error;
 mod kind;
 mod newtypes;
 mod number;
+mod odd_number;
 mod spread;
 mod symbols;
 mod unit;
+
+#[cfg(test)]
+mod tests;
 
 pub use amount::{Amount, parse_amount};
 pub use dimension::Dimension;

@@ -141,7 +141,9 @@ pub fn nearest_unit(text: &str, wanted: Option<Dimension>) -> Option<String> {
         for prefix in std::iter::once("").chain(prefixes) {
             let candidate = format!("{prefix}{}", symbol.text);
             let slip = strsim::osa_distance(&candidate, text);
-            let other_case = fold(&candidate) == folded;
+            // Of several spellings only the first is suggested, unless another is a slip away.
+            let first = !matches!(symbol.text, "ohm" | "\u{2126}" | "\u{2103}");
+            let other_case = first && fold(&candidate) == folded;
             if !other_case && (slip > 1 || folded.chars().count() < 3) {
                 continue;
             }

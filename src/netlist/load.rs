@@ -133,8 +133,15 @@ impl Loader {
             }
         };
         let mut document = read_document(&name, &bytes, &mut self.sources, &self.sink)?;
+        // What a changed `bring` brings must be there before other overrides look for it.
+        let brings =
+            |assignment: &&String| assignment.split('=').next().map(str::trim) == Some("bring");
+        let (early, late): (Vec<&String>, Vec<&String>) = overrides.iter().partition(brings);
+        for assignment in early {
+            document.set(assignment, &mut self.sources, &self.sink);
+        }
         self.bring(&mut document, folder.as_deref());
-        for assignment in overrides {
+        for assignment in late {
             document.set(assignment, &mut self.sources, &self.sink);
         }
         Some(document)

@@ -6,6 +6,7 @@ use super::parameters::{Parameter, Parameters, Value};
 use crate::diag::{Diagnostic, Sink, Span};
 use crate::units::{Amount, Kind, UnitError, parse_amount};
 use std::cell::RefCell;
+use std::collections::BTreeSet;
 
 /// A default that held because its key was not written.
 #[derive(Clone, Debug, PartialEq, Eq, PartialOrd, Ord)]
@@ -24,6 +25,8 @@ pub struct Reader<'a> {
     pub parameters: RefCell<Parameters>,
     /// Defaults used, in the order of reading, each once.
     pub defaults: RefCell<Vec<DefaultUsed>>,
+    /// Paths in `defaults`, for finding them among many.
+    noted: RefCell<BTreeSet<String>>,
 }
 
 impl<'a> Reader<'a> {
@@ -33,6 +36,7 @@ impl<'a> Reader<'a> {
             sink,
             parameters: RefCell::default(),
             defaults: RefCell::default(),
+            noted: RefCell::default(),
         }
     }
 
@@ -79,13 +83,11 @@ impl<'a> Reader<'a> {
 
     /// Notes that a default was used.
     pub fn note_default(&self, path: &str, text: &str) {
-        let used = DefaultUsed {
-            path: path.to_owned(),
-            text: text.to_owned(),
-        };
-        let mut defaults = self.defaults.borrow_mut();
-        if !defaults.contains(&used) {
-            defaults.push(used);
+        if self.noted.borrow_mut().insert(path.to_owned()) {
+            self.defaults.borrow_mut().push(DefaultUsed {
+                path: path.to_owned(),
+                text: text.to_owned(),
+            });
         }
     }
 

@@ -1,6 +1,7 @@
 //! Changing a document by path: overrides from the command line, variants that the program builds.
 
 use super::document::{Document, read_fragment};
+use super::events::DEEPEST;
 use super::names::nearest;
 use super::node::{Data, Entry, Node};
 use crate::diag::{Diagnostic, Sink, Sources, Span};
@@ -64,6 +65,17 @@ impl Document {
         let Some((last, parents)) = words.split_last() else {
             return false;
         };
+        if words.len() > DEEPEST {
+            let label = format!("more than {DEEPEST} words deep");
+            sink.report(
+                Nowhere {
+                    path: super::shortened(path),
+                    label,
+                }
+                .at_span(key_span),
+            );
+            return false;
+        }
         for (depth, word) in parents.iter().enumerate() {
             if let Some(problem) = obstacle(here, word, depth, path) {
                 sink.report(problem.at_span(key_span));

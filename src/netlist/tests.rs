@@ -333,3 +333,83 @@ fn torn_and_mutated_netlists_never_panic() {
         draw_all(&diagnostics, &sources, Paint::Plain);
     }
 }
+
+#[test]
+fn the_example_of_the_design_is_read_without_a_message() {
+    let text = "\
+title: Sluice relay K1 on a low-side driver
+ambient: 25 °C within -25 °C .. 70 °C
+materials:
+  relay_iron: {initial_permeability: 3000, saturation: 1.5 T}
+parts:
+  board_diode: {kind: diode, saturation_current: 1 nA, ideality_factor: 1.8, series_resistance: 0.2 Ω,
+                junction_capacitance: 20 pF, ratings: {reverse_voltage: 200 V, current_mean: 1 A}}
+elements:
+  supply:    {kind: voltage_source, nodes: [rail, ground], voltage: 24 V ± 10 %}
+  k1_driver: {kind: switch, nodes: [drive, ground], open_resistance: 10 MΩ,
+              transition: 1 µs, initially: closed, opens_at: [20 ms], ratings: {voltage: 60 V}}
+  catch:     {part: board_diode, anode: drive, cathode: rail}
+readings:
+  release: {signal: winding current of k1_coil, take: time_until, falls_to: 8 mA, from: k1_driver opens}
+limits:
+  driver_voltage: {reading: kick, at_most: 60 V, margin: 20 %}
+sizing:
+  operating_rate: 600 /h
+";
+    let document = tree(text);
+    let text_at = |path| document.at(path).and_then(Node::text);
+    assert_eq!(text_at("elements.supply.voltage"), Some("24 V ± 10 %"));
+    assert_eq!(
+        text_at("parts.board_diode.ratings.current_mean"),
+        Some("1 A")
+    );
+    assert_eq!(text_at("readings.release.from"), Some("k1_driver opens"));
+    assert_eq!(text_at("sizing.operating_rate"), Some("600 /h"));
+}
+
+#[test]
+fn forty_thousand_elements_are_read_in_good_time() {
+    const KEYS: &[Key] = &[
+        Key::required("nodes", Takes::Names(2), "its terminals"),
+        Key::required(
+            "resistance",
+            Takes::Quantity(crate::units::RESISTANCE),
+            "its resistance",
+        ),
+        Key::default(
+            "share",
+            Takes::Quantity(crate::units::RATIO),
+            "0.5",
+            "a share",
+        ),
+    ];
+    const TOP: &[Key] = &[Key::required(
+        "elements",
+        Takes::Other("elements"),
+        "the elements",
+    )];
+    let mut text = String::from("elements:\n");
+    for k in 0..40_000 {
+        text += &format!(
+            "  r{k}: {{nodes: [n{k}, n{}], resistance: 4.7 kΩ ± 1 %}}\n",
+            k + 1
+        );
+    }
+    let started = Instant::now();
+    let document = tree(&text);
+    let sink = Sink::new();
+    let reader = Reader::new(&sink);
+    for element in Fields::new(&document.root, "", TOP, &reader).entries("elements") {
+        let fields = Fields::new(element.node, element.path, KEYS, &reader);
+        assert!(fields.names("nodes").is_some() && fields.positive("resistance").is_some());
+        fields.value("share");
+        fields.finish();
+    }
+    assert_eq!(reader.parameters.borrow().iter().count(), 80_000);
+    assert_eq!(reader.defaults.borrow().len(), 40_000);
+    assert!(
+        started.elapsed().as_secs_f64() < 10.0,
+        "{:?}",
+        started.elapsed()
+    );
+}

@@ -445,3 +445,86 @@ fn printed_quantities_look_as_a_person_writes_them() {
     }
     assert_eq!(engineering(4700.0, "Ω", 2), "4.7 kΩ");
 }
+
+#[test]
+fn random_texts_are_read_or_refused_without_panic() {
+    let pieces = [
+        "4",
+        ".",
+        "7",
+        "0",
+        "-",
+        "+",
+        "±",
+        "+/-",
+        " ",
+        "\u{a0}",
+        "e",
+        "E",
+        "k",
+        "m",
+        "µ",
+        "M",
+        "V",
+        "Ω",
+        "F",
+        "s",
+        "h",
+        "/",
+        "%",
+        "°C",
+        "K",
+        "²",
+        "2",
+        "^",
+        "within",
+        "..",
+        "·",
+        "deg",
+        "R",
+        ",",
+        "_",
+        "\u{2212}",
+        "nan",
+        "∞",
+        "\n",
+        "(",
+        "\u{1f600}",
+        "\u{301}",
+    ];
+    let mut state: u64 = 11;
+    let mut next = |below: usize| {
+        state = state * 48_271 % 2_147_483_647;
+        state as usize % below
+    };
+    for _ in 0..60_000 {
+        let text: String = (0..=next(12)).map(|_| pieces[next(pieces.len())]).collect();
+        let kind = ALL[next(ALL.len())];
+        match parse_amount(&text, kind) {
+            Ok(amount) => assert!(
+                amount.low <= amount.nominal
+                    && amount.nominal <= amount.high
+                    && amount.low.is_finite()
+                    && amount.high.is_finite(),
+                "{text}"
+            ),
+            Err(error) => assert!(text.get(error.range.clone()).is_some(), "{text}: {error:?}"),
+        }
+    }
+}
+
+#[test]
+fn a_huge_text_is_refused_with_a_short_message() {
+    for text in [
+        "9".repeat(10_000_000),
+        format!("1 {}", "k".repeat(10_000_000)),
+        format!("1 V ± {}", "1,".repeat(5_000_000)),
+        "1 / ".repeat(2_000_000),
+    ] {
+        let error = refused(&text, VOLTAGE);
+        assert!(
+            error.problem.len() + error.label.len() + error.help.map_or(0, |help| help.len())
+                < 1000
+        );
+    }
+}

@@ -183,3 +183,18 @@ fn a_text_without_a_folder_brings_nothing() {
             .contains("a netlist without a folder cannot bring a.yaml")
     );
 }
+
+#[test]
+fn an_override_may_bring_another_file_and_change_what_it_holds() {
+    let (_folder, input) = folder(&[
+        ("relay.yaml", "bring: [missing.yaml]\n"),
+        ("a.yaml", "parts:\n  x: {kind: diode}\n"),
+    ]);
+    let overrides = ["parts.x.kind=zener".to_owned(), "bring=[a.yaml]".to_owned()];
+    let loaded = load(&input, &overrides).expect("it has a tree");
+    assert!(!loaded.sink.has_errors(), "{:?}", loaded.sink.sorted());
+    assert_eq!(
+        loaded.document.at("parts.x.kind").and_then(Node::text),
+        Some("zener")
+    );
+}

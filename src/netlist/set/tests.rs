@@ -62,6 +62,7 @@ fn values_are_changed_and_added() {
 
 #[test]
 fn paths_that_lead_nowhere_are_refused_with_the_nearest() {
+    let deep = format!("elements.load.{}x=1", "x.".repeat(100_000));
     let cases = [
         (
             "elements.cach.series_resistance=1 Ω",
@@ -85,6 +86,7 @@ fn paths_that_lead_nowhere_are_refused_with_the_nearest() {
         ("elements.load.resistance=&a 5", "anchors"),
         ("elements.load.resistance=a\0b", "control character"),
         ("elements..x=1", "`` is not there"),
+        (&*deep, "more than 64 words deep"),
     ];
     for (assignment, piece) in cases {
         let (document, drawn) = after(assignment);

@@ -8,7 +8,8 @@
 //! The comment stands above the line at which the message must point; behind the colon stands a piece of the
 //! message as drawn (headline, label or help). `# error[...]` at the file's end expects a message without a place.
 
-use crate::diag::{Diagnostic, Paint, Sources, draw};
+use super::{Document, Reader, read_document};
+use crate::diag::{Diagnostic, Paint, Sink, Sources, draw};
 
 /// One expectation: severity and word, the line (None for a message without a place), a piece of the text.
 #[derive(Clone, Debug, PartialEq)]
@@ -49,6 +50,16 @@ pub fn expected(text: &str) -> Vec<Expected> {
         piece,
     }));
     found
+}
+
+/// Reads a text, lets a room's own reader take it apart, and returns what differs from the expectations in it.
+pub fn differences(text: &str, read: impl FnOnce(&Document, &Reader<'_>)) -> Vec<String> {
+    let mut sources = Sources::new();
+    let sink = Sink::new();
+    if let Some(document) = read_document("netlist.yaml", text.as_bytes(), &mut sources, &sink) {
+        read(&document, &Reader::new(&sink));
+    }
+    mismatches(text, &sink.sorted(), &sources)
 }
 
 /// What differs between the expectations in a text and the messages about it; empty where they agree.

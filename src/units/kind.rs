@@ -59,76 +59,86 @@ impl Kind {
 }
 
 const NONE: Dimension = Dimension::NONE;
-const M: Dimension = Dimension::of(1, 0, 0, 0, 0);
-const S: Dimension = Dimension::of(0, 0, 1, 0, 0);
-const A: Dimension = Dimension::of(0, 0, 0, 1, 0);
-const K: Dimension = Dimension::of(0, 0, 0, 0, 1);
-const KG: Dimension = Dimension::of(0, 1, 0, 0, 0);
-const N: Dimension = Dimension::of(1, 1, -2, 0, 0);
-const J: Dimension = N.times(M, 1);
-const W: Dimension = J.over(S);
-const C: Dimension = A.times(S, 1);
-const V: Dimension = W.over(A);
-const OHM: Dimension = V.over(A);
-const WB: Dimension = V.times(S, 1);
-const H: Dimension = WB.over(A);
-const F: Dimension = C.over(V);
-const T: Dimension = WB.times(M, -2);
+const METRE: Dimension = Dimension::of(1, 0, 0, 0, 0);
+const SECOND: Dimension = Dimension::of(0, 0, 1, 0, 0);
+const AMPERE: Dimension = Dimension::of(0, 0, 0, 1, 0);
+const KELVIN: Dimension = Dimension::of(0, 0, 0, 0, 1);
+const KILOGRAM: Dimension = Dimension::of(0, 1, 0, 0, 0);
+const NEWTON: Dimension = Dimension::of(1, 1, -2, 0, 0);
+const JOULE: Dimension = NEWTON.times(METRE, 1);
+const WATT: Dimension = JOULE.over(SECOND);
+const COULOMB: Dimension = AMPERE.times(SECOND, 1);
+const VOLT: Dimension = WATT.over(AMPERE);
+const OHM: Dimension = VOLT.over(AMPERE);
+const WEBER: Dimension = VOLT.times(SECOND, 1);
+const HENRY: Dimension = WEBER.over(AMPERE);
+const FARAD: Dimension = COULOMB.over(VOLT);
+const TESLA: Dimension = WEBER.times(METRE, -2);
 
 /// Resistance [Ω].
 pub const RESISTANCE: Kind = Kind::new("a resistance", "Ω", OHM, "mΩ, Ω, kΩ, MΩ");
 /// Capacitance [F].
-pub const CAPACITANCE: Kind = Kind::new("a capacitance", "F", F, "pF, nF, µF, mF");
+pub const CAPACITANCE: Kind = Kind::new("a capacitance", "F", FARAD, "pF, nF, µF, mF");
 /// Inductance [H].
-pub const INDUCTANCE: Kind = Kind::new("an inductance", "H", H, "nH, µH, mH, H");
+pub const INDUCTANCE: Kind = Kind::new("an inductance", "H", HENRY, "nH, µH, mH, H");
 /// Inductance per turn squared [H].
-pub const INDUCTANCE_FACTOR: Kind =
-    Kind::new("an inductance factor", "H", H, "nH, µH (per turn squared)");
+pub const INDUCTANCE_FACTOR: Kind = Kind::new(
+    "an inductance factor",
+    "H",
+    HENRY,
+    "nH, µH (per turn squared)",
+);
 /// Voltage [V].
-pub const VOLTAGE: Kind = Kind::new("a voltage", "V", V, "mV, V, kV");
+pub const VOLTAGE: Kind = Kind::new("a voltage", "V", VOLT, "mV, V, kV");
 /// Current [A].
-pub const CURRENT: Kind = Kind::new("a current", "A", A, "nA, µA, mA, A");
+pub const CURRENT: Kind = Kind::new("a current", "A", AMPERE, "nA, µA, mA, A");
 /// Time [s].
-pub const TIME: Kind = Kind::new("a time", "s", S, "ns, µs, ms, s, min, h");
+pub const TIME: Kind = Kind::new("a time", "s", SECOND, "ns, µs, ms, s, min, h");
 /// Frequency [Hz].
-pub const FREQUENCY: Kind = Kind::new("a frequency", "Hz", NONE.over(S), "Hz, kHz, MHz");
+pub const FREQUENCY: Kind = Kind::new("a frequency", "Hz", NONE.over(SECOND), "Hz, kHz, MHz");
 /// Rate of operation [1/s].
-pub const RATE: Kind = Kind::new("a rate", "1/s", NONE.over(S), "/s, /min, /h, Hz");
+pub const RATE: Kind = Kind::new("a rate", "1/s", NONE.over(SECOND), "/s, /min, /h, Hz");
 /// Length [m].
-pub const LENGTH: Kind = Kind::new("a length", "m", M, "µm, mm, cm, m");
+pub const LENGTH: Kind = Kind::new("a length", "m", METRE, "µm, mm, cm, m");
 /// Area [m²].
-pub const AREA: Kind = Kind::new("an area", "m²", M.times(M, 1), "mm², cm², m²");
+pub const AREA: Kind = Kind::new("an area", "m²", METRE.times(METRE, 1), "mm², cm², m²");
 /// Volume [m³].
-pub const VOLUME: Kind = Kind::new("a volume", "m³", M.times(M, 2), "mm³, cm³, m³");
+pub const VOLUME: Kind = Kind::new("a volume", "m³", METRE.times(METRE, 2), "mm³, cm³, m³");
 /// A point on the temperature scale [K].
 pub const TEMPERATURE: Kind = Kind {
     on_scale: true,
-    ..Kind::new("a temperature", "K", K, "°C, degC, K").taking("°C")
+    ..Kind::new("a temperature", "K", KELVIN, "°C, degC, K").taking("°C")
 };
 /// A temperature difference [K].
-pub const TEMPERATURE_RISE: Kind = Kind::new("a temperature rise", "K", K, "K");
+pub const TEMPERATURE_RISE: Kind = Kind::new("a temperature rise", "K", KELVIN, "K");
 /// Power [W].
-pub const POWER: Kind = Kind::new("a power", "W", W, "mW, W, kW");
+pub const POWER: Kind = Kind::new("a power", "W", WATT, "mW, W, kW");
 /// Energy [J].
-pub const ENERGY: Kind = Kind::new("an energy", "J", J, "µJ, mJ, J, eV");
+pub const ENERGY: Kind = Kind::new("an energy", "J", JOULE, "µJ, mJ, J, eV");
 /// Charge [C].
-pub const CHARGE: Kind = Kind::new("a charge", "C", C, "pC, nC, µC");
+pub const CHARGE: Kind = Kind::new("a charge", "C", COULOMB, "pC, nC, µC");
 /// Flux linkage [Wb].
-pub const FLUX_LINKAGE: Kind = Kind::new("a flux linkage", "Wb", WB, "µWb, mWb, Wb");
+pub const FLUX_LINKAGE: Kind = Kind::new("a flux linkage", "Wb", WEBER, "µWb, mWb, Wb");
 /// Flux density [T].
-pub const FLUX_DENSITY: Kind = Kind::new("a flux density", "T", T, "mT, T");
+pub const FLUX_DENSITY: Kind = Kind::new("a flux density", "T", TESLA, "mT, T");
 /// Magnetic field strength [A/m].
-pub const FIELD_STRENGTH: Kind = Kind::new("a field strength", "A/m", A.over(M), "A/m, kA/m");
+pub const FIELD_STRENGTH: Kind =
+    Kind::new("a field strength", "A/m", AMPERE.over(METRE), "A/m, kA/m");
 /// Mass [kg].
-pub const MASS: Kind = Kind::new("a mass", "kg", KG, "mg, g, kg");
+pub const MASS: Kind = Kind::new("a mass", "kg", KILOGRAM, "mg, g, kg");
 /// Speed [m/s].
-pub const SPEED: Kind = Kind::new("a speed", "m/s", M.over(S), "mm/s, m/s");
+pub const SPEED: Kind = Kind::new("a speed", "m/s", METRE.over(SECOND), "mm/s, m/s");
 /// Force [N].
-pub const FORCE: Kind = Kind::new("a force", "N", N, "mN, N");
+pub const FORCE: Kind = Kind::new("a force", "N", NEWTON, "mN, N");
 /// Spring rate [N/m].
-pub const SPRING_RATE: Kind = Kind::new("a spring rate", "N/m", N.over(M), "N/m, N/mm");
+pub const SPRING_RATE: Kind = Kind::new("a spring rate", "N/m", NEWTON.over(METRE), "N/m, N/mm");
 /// Viscous damping [N s/m].
-pub const DAMPING: Kind = Kind::new("a damping", "N s/m", N.times(S, 1).over(M), "N s/m");
+pub const DAMPING: Kind = Kind::new(
+    "a damping",
+    "N s/m",
+    NEWTON.times(SECOND, 1).over(METRE),
+    "N s/m",
+);
 /// Ratio: a bare number or per cent.
 pub const RATIO: Kind = Kind::new("a ratio", "", NONE, "0.5, 50 %").taking("a plain number or %");
 /// Relative permeability: a bare number.
@@ -137,43 +147,71 @@ pub const PERMEABILITY: Kind =
 /// Plane angle [rad].
 pub const ANGLE: Kind = Kind::new("an angle", "rad", Dimension::ANGLE, "deg, rad").taking("deg");
 /// Thermal resistance [K/W].
-pub const THERMAL_RESISTANCE: Kind = Kind::new("a thermal resistance", "K/W", K.over(W), "K/W");
+pub const THERMAL_RESISTANCE: Kind =
+    Kind::new("a thermal resistance", "K/W", KELVIN.over(WATT), "K/W");
 /// Thermal capacity [J/K].
-pub const THERMAL_CAPACITY: Kind = Kind::new("a thermal capacity", "J/K", J.over(K), "mJ/K, J/K");
+pub const THERMAL_CAPACITY: Kind =
+    Kind::new("a thermal capacity", "J/K", JOULE.over(KELVIN), "mJ/K, J/K");
 /// Conductance [S].
 pub const CONDUCTANCE: Kind = Kind::new("a conductance", "S", NONE.over(OHM), "µS, mS, S");
 /// Rate of rise of a voltage [V/s].
-pub const VOLTAGE_RATE: Kind = Kind::new("a voltage rate", "V/s", V.over(S), "V/s, V/µs, kV/µs");
+pub const VOLTAGE_RATE: Kind = Kind::new(
+    "a voltage rate",
+    "V/s",
+    VOLT.over(SECOND),
+    "V/s, V/µs, kV/µs",
+);
 /// Rate of rise of a current [A/s].
-pub const CURRENT_RATE: Kind = Kind::new("a current rate", "A/s", A.over(S), "A/s, A/µs");
+pub const CURRENT_RATE: Kind = Kind::new("a current rate", "A/s", AMPERE.over(SECOND), "A/s, A/µs");
 /// Relative change per kelvin [1/K].
 pub const TEMPERATURE_COEFFICIENT: Kind = Kind::new(
     "a temperature coefficient",
     "1/K",
-    NONE.over(K),
+    NONE.over(KELVIN),
     "/K, %/K, ppm/K",
 );
 /// Change of a voltage per kelvin [V/K].
-pub const VOLTAGE_PER_KELVIN: Kind =
-    Kind::new("a voltage per kelvin", "V/K", V.over(K), "µV/K, mV/K, V/K");
+pub const VOLTAGE_PER_KELVIN: Kind = Kind::new(
+    "a voltage per kelvin",
+    "V/K",
+    VOLT.over(KELVIN),
+    "µV/K, mV/K, V/K",
+);
 /// Resistivity [Ω m].
-pub const RESISTIVITY: Kind = Kind::new("a resistivity", "Ω m", OHM.times(M, 1), "nΩ m, µΩ m, Ω m");
+pub const RESISTIVITY: Kind = Kind::new(
+    "a resistivity",
+    "Ω m",
+    OHM.times(METRE, 1),
+    "nΩ m, µΩ m, Ω m",
+);
 /// Factor of a square law [A/V²].
-pub const SQUARE_LAW: Kind =
-    Kind::new("a square-law factor", "A/V²", A.times(V, -2), "mA/V², A/V²");
+pub const SQUARE_LAW: Kind = Kind::new(
+    "a square-law factor",
+    "A/V²",
+    AMPERE.times(VOLT, -2),
+    "mA/V², A/V²",
+);
 /// Resistance per metre [Ω/m].
 pub const RESISTANCE_PER_METRE: Kind = Kind::new(
     "a resistance per metre",
     "Ω/m",
-    OHM.over(M),
+    OHM.over(METRE),
     "mΩ/m, Ω/m, Ω/km",
 );
 /// Inductance per metre [H/m].
-pub const INDUCTANCE_PER_METRE: Kind =
-    Kind::new("an inductance per metre", "H/m", H.over(M), "nH/m, µH/m");
+pub const INDUCTANCE_PER_METRE: Kind = Kind::new(
+    "an inductance per metre",
+    "H/m",
+    HENRY.over(METRE),
+    "nH/m, µH/m",
+);
 /// Capacitance per metre [F/m].
-pub const CAPACITANCE_PER_METRE: Kind =
-    Kind::new("a capacitance per metre", "F/m", F.over(M), "pF/m, nF/m");
+pub const CAPACITANCE_PER_METRE: Kind = Kind::new(
+    "a capacitance per metre",
+    "F/m",
+    FARAD.over(METRE),
+    "pF/m, nF/m",
+);
 /// Any quantity at all, or a bare number: the gain of a dependent source.
 pub const ANY: Kind = Kind {
     dimension: None,

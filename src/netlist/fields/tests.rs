@@ -2,7 +2,7 @@
 
 use super::*;
 use crate::diag::{Sink, Sources};
-use crate::netlist::expected::mismatches;
+use crate::netlist::expected::differences;
 use crate::netlist::{Document, read_document};
 use crate::units::{ANY, CURRENT, RATIO, RESISTANCE, TEMPERATURE, TIME, VOLTAGE};
 
@@ -71,22 +71,6 @@ const TOP: &[Key] = &[
     Key::required("elements", Takes::Other("elements by name"), "the elements"),
 ];
 
-/// Reads all keys of all elements of a text and returns the differences to the messages expected in its comments.
-fn differences(text: &str) -> Vec<String> {
-    let mut sources = Sources::new();
-    let sink = Sink::new();
-    if let Some(document) = read_document("relay.yaml", text.as_bytes(), &mut sources, &sink) {
-        let reader = Reader::new(&sink);
-        let top = Fields::new(&document.root, "", TOP, &reader);
-        for element in top.entries("elements") {
-            let fields = Fields::new(element.node, element.path, SWITCH, &reader).also(COMMON);
-            read_all(&fields);
-        }
-        top.finish();
-    }
-    mismatches(text, &sink.sorted(), &sources)
-}
-
 fn read_all(fields: &Fields<'_>) {
     fields.names("nodes");
     fields.positive("closed_resistance");
@@ -115,7 +99,14 @@ fn read_all(fields: &Fields<'_>) {
 
 #[track_caller]
 fn as_expected(text: &str) {
-    let differences = differences(text);
+    let differences = differences(text, |document, reader| {
+        let top = Fields::new(&document.root, "", TOP, reader);
+        for element in top.entries("elements") {
+            let fields = Fields::new(element.node, element.path, SWITCH, reader).also(COMMON);
+            read_all(&fields);
+        }
+        top.finish();
+    });
     assert!(differences.is_empty(), "{}", differences.join("\n"));
 }
 

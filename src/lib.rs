@@ -2,6 +2,7 @@
 
 pub mod dae;
 pub mod diag;
+pub mod limits;
 pub mod math;
 pub mod netlist;
 pub mod readings;

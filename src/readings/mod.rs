@@ -29,8 +29,13 @@ mod time_until_last;
 mod value_at;
 
 pub use ask::{Ask, Needs};
+pub use fastest_change::KIND as FASTEST_CHANGE;
+pub use highest::KIND as HIGHEST;
+pub use mean::KIND as MEAN;
 pub use passing::Passing;
+pub use peak::KIND as PEAK;
 pub use reading::{KEY, Reading, read_readings};
+pub use rms::KIND as RMS;
 pub use taking::{Outcome, Taking};
 
 use crate::signals::Piece;

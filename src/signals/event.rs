@@ -87,16 +87,19 @@ impl fmt::Display for EventPhrase {
 /// instant is handed on.
 #[derive(Clone, Debug, Default)]
 pub struct EventLog {
-    instants: BTreeMap<(Owner, Happening), Vec<f64>>,
+    /// Openings and closings of each element.
+    instants: BTreeMap<Owner, [Vec<f64>; 2]>,
 }
 
 impl EventLog {
     /// Notes an event at `time` [s].
     pub fn note(&mut self, element: &Owner, happening: Happening, time: f64) {
-        self.instants
-            .entry((element.clone(), happening))
-            .or_default()
-            .push(time);
+        if !self.instants.contains_key(element) {
+            self.instants.insert(element.clone(), Default::default());
+        }
+        if let Some(times) = self.instants.get_mut(element) {
+            times[happening as usize].push(time);
+        }
     }
 
     /// When a named event happened [s]; None as long as it has not.
@@ -109,20 +112,22 @@ impl EventLog {
 
     /// Every time [s] that an element did this, in order.
     pub fn all(&self, element: &Owner, happening: Happening) -> &[f64] {
-        self.instants
-            .get(&(element.clone(), happening))
-            .map_or(&[], Vec::as_slice)
+        let times = self.instants.get(element);
+        times.map_or(&[], |times| times[happening as usize].as_slice())
     }
 
     /// All events in order of time; at one instant in the order of the elements' names.
     pub fn in_order(&self) -> Vec<(f64, &Owner, Happening)> {
-        let mut all: Vec<_> = self
-            .instants
-            .iter()
-            .flat_map(|((element, happening), times)| {
-                times.iter().map(move |&time| (time, element, *happening))
-            })
-            .collect();
+        let mut all = Vec::new();
+        for (element, times) in &self.instants {
+            for happening in [Happening::Opens, Happening::Closes] {
+                all.extend(
+                    times[happening as usize]
+                        .iter()
+                        .map(|&time| (time, element, happening)),
+                );
+            }
+        }
         all.sort_by(|a, b| a.0.total_cmp(&b.0));
         all
     }

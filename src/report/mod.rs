@@ -1,7 +1,10 @@
 //! What people look at: tables, plots, waveforms as CSV, JSON, files. Values come in, texts and bytes go out.
 
+pub mod chart;
 pub mod csv;
+mod drawing;
 pub mod engineering;
 pub mod files;
 pub mod json;
+pub mod plots;
 pub mod tables;

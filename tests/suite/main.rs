@@ -1,3 +1,4 @@
 //! The integration tests, one module per theme.
 
 mod e_series;
+mod plots;

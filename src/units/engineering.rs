@@ -98,8 +98,14 @@ fn powered(value: f64, symbol: &str, exponent: i32, digits: usize) -> String {
     join(&number, &format!("{prefix}{symbol}{raised}"))
 }
 
+/// The prefix of a power of ten, as far as values are printed with one.
+pub fn prefix_of(tens: i32) -> Option<&'static str> {
+    let entry = PREFIXES.iter().find(|(power, _)| *power == tens);
+    entry.map(|(_, prefix)| *prefix)
+}
+
 /// True where the symbol begins with a unit that takes prefixes, to the first power.
-fn takes_prefix(symbol: &str) -> bool {
+pub fn takes_prefix(symbol: &str) -> bool {
     let first = symbol.split(['/', ' ', '·']).next().unwrap_or("");
     look_up(first).is_some_and(|(unit, prefix)| {
         unit.prefixed && prefix == 0 && unit.dimension != Dimension::ANGLE

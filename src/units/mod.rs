@@ -19,7 +19,7 @@ mod tests;
 
 pub use amount::{Amount, parse_amount};
 pub use dimension::Dimension;
-pub use engineering::{Unit, engineering};
+pub use engineering::{Unit, engineering, prefix_of, takes_prefix};
 pub use error::UnitError;
 pub use kind::*;
 pub use newtypes::{Metres, SquareMetres};

@@ -43,7 +43,7 @@ pub fn draw(panel: &BarPanel, area: &Rect, measure: &dyn Measure, page: &mut Dra
         .iter()
         .map(|bar| {
             cut(
-                &engineering(bar.value, &unit, 3),
+                &engineering(bar.value, unit.as_str(), 3),
                 NAME,
                 0.2 * area.width(),
                 measure,

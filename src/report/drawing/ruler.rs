@@ -5,9 +5,8 @@
 //! from a round value that the heading names: `voltage at out, less 5.6 V [mV]`.
 
 use crate::report::chart::{Axis, Scale};
-use crate::report::engineering::{
-    engineering, exponent_of_three, fixed, power_of_ten, prefix, takes_prefix,
-};
+use crate::report::engineering::{engineering, exponent_of_three, fixed, power_of_ten};
+use crate::units::{prefix_of, takes_prefix};
 
 use super::text::clean;
 
@@ -144,7 +143,7 @@ impl Ruler {
             self.high.log10().floor() as i32,
         );
         let stride = ((last - first + 1) as usize).div_ceil(count).max(1);
-        let with_prefix = takes_prefix(unit) && prefix(exponent_of_three(self.low)).is_some();
+        let with_prefix = takes_prefix(unit) && prefix_of(exponent_of_three(self.low)).is_some();
         let roomy = 3 * (last - first + 1) <= count as i32 + 1;
         let leading: &[i64] = if roomy { &[1, 2, 5] } else { &[1] };
         let powers = (first - stride as i32..=last).step_by(stride);
@@ -218,7 +217,7 @@ fn shown_exponent(furthest: f64, unit: &str) -> i32 {
 
 /// ` [mV]`, ` [10⁶ m²]`, or nothing for a plain figure.
 fn shown_unit(unit: &str, exponent: i32) -> String {
-    match (exponent, prefix(exponent)) {
+    match (exponent, prefix_of(exponent)) {
         (0, _) if unit.is_empty() => String::new(),
         (_, Some(letter)) if takes_prefix(unit) => format!(" [{letter}{unit}]"),
         (0, _) => format!(" [{unit}]"),

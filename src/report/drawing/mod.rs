@@ -14,6 +14,7 @@ mod range;
 mod ruler;
 mod shapes;
 mod spread;
+mod stack;
 mod text;
 mod traces;
 

@@ -1,22 +1,19 @@
 //! The page: title and answer, panels below each other with common edges, the caution at the foot.
 
-use crate::report::chart::{Chart, CurvePanel, Panel, Size};
+use crate::report::chart::{Chart, Curve, Panel, Size};
 
 use super::bars;
 use super::ink;
 use super::margin_labels::BEFORE_TEXT;
-use super::panel::{self, Placed, STRIP, TICK_GAP, X_AXIS};
+use super::panel::{self, Placed, TICK_GAP};
 use super::range;
 use super::ruler::Ruler;
 use super::shapes::{Anchor, Drawing, Rect};
+use super::stack::{self, Slot, Stack, as_curves};
 use super::text::{self, CAUTION, HEADING, Measure, NAME, SUBTITLE, TICK, TITLE, clean};
 
 /// Free edge of the page [px].
 const EDGE: f64 = 22.0;
-/// Between two panels [px].
-const BETWEEN: f64 = 18.0;
-/// Least height of a panel's frame [px].
-const LOWEST: f64 = 110.0;
 /// Names take no more than this share of the page's width.
 const NAMES_SHARE: f64 = 0.24;
 
@@ -104,115 +101,6 @@ fn draw_caution(lines: &[String], top: f64, page: &mut Drawing) {
     }
 }
 
-/// What stands above and below each panel's frame.
-struct Stack<'a> {
-    panels: Vec<Slot<'a>>,
-}
-
-struct Slot<'a> {
-    panel: &'a Panel,
-    /// Range of the shared x axis; unused for bars.
-    x: (f64, f64),
-    with_x_axis: bool,
-    with_instants: bool,
-}
-
-impl Slot<'_> {
-    /// Room above the frame [px].
-    fn above(&self) -> f64 {
-        if self.with_instants { STRIP } else { 0.0 }
-    }
-
-    /// Room below the frame [px].
-    fn below(&self) -> f64 {
-        match self.panel {
-            Panel::Bars(_) => 0.0,
-            Panel::Curves(_) if self.with_x_axis => X_AXIS,
-            Panel::Curves(_) => 4.0,
-        }
-    }
-}
-
-impl<'a> Stack<'a> {
-    fn new(chart: &'a Chart) -> Self {
-        let mut panels = Vec::new();
-        for group in chart.panels.chunk_by(share_axis) {
-            let curves: Vec<&CurvePanel> = group.iter().filter_map(as_curves).collect();
-            let x = curves
-                .first()
-                .map_or((0.0, 1.0), |first| range::across(&first.x, &curves));
-            for (number, panel) in group.iter().enumerate() {
-                let instants = as_curves(panel).map_or(&[][..], |panel| &panel.instants);
-                let above = number
-                    .checked_sub(1)
-                    .and_then(|before| as_curves(&group[before]));
-                let told = above.is_some_and(|above| above.instants == instants);
-                let with_x_axis = number + 1 == group.len();
-                panels.push(Slot {
-                    panel,
-                    x,
-                    with_x_axis,
-                    with_instants: !instants.is_empty() && !told,
-                });
-            }
-        }
-        Stack { panels }
-    }
-
-    /// Curves take all the height there is; bars alone need no more than their rows.
-    fn fills_the_page(&self) -> bool {
-        let curves = |slot: &Slot<'_>| matches!(slot.panel, Panel::Curves(_));
-        self.panels.is_empty() || self.panels.iter().any(curves)
-    }
-
-    /// Everything that is not frame.
-    fn between(&self) -> f64 {
-        let gaps = BETWEEN * self.panels.len().saturating_sub(1) as f64;
-        gaps + self
-            .panels
-            .iter()
-            .map(|slot| slot.above() + slot.below())
-            .sum::<f64>()
-    }
-
-    /// Heights of the frames: bars take what their rows want, at most half where there are curves; curves share the rest.
-    fn heights(&self, room: f64) -> Vec<f64> {
-        let room = room - self.between();
-        let wish = |slot: &Slot<'_>| match slot.panel {
-            Panel::Bars(panel) => panel.bars.len().max(1) as f64 * bars::ROW + bars::FOOT,
-            Panel::Curves(_) => 0.0,
-        };
-        let wishes: f64 = self.panels.iter().map(wish).sum();
-        let curves = self
-            .panels
-            .iter()
-            .filter(|slot| matches!(slot.panel, Panel::Curves(_)))
-            .count() as f64;
-        let for_bars = if curves > 0.0 { 0.5 * room } else { room };
-        let squeeze = if wishes > for_bars {
-            for_bars / wishes
-        } else {
-            1.0
-        };
-        let height = |slot: &Slot<'_>| match slot.panel {
-            Panel::Bars(_) => (wish(slot) * squeeze).max(LOWEST),
-            Panel::Curves(_) => ((room - wishes * squeeze) / curves).max(LOWEST),
-        };
-        self.panels.iter().map(height).collect()
-    }
-}
-
-fn as_curves(panel: &Panel) -> Option<&CurvePanel> {
-    match panel {
-        Panel::Curves(panel) => Some(panel),
-        Panel::Bars(_) => None,
-    }
-}
-
-fn share_axis(above: &Panel, below: &Panel) -> bool {
-    matches!((above, below), (Panel::Curves(above), Panel::Curves(below)) if above.x == below.x)
-}
-
 fn draw_panels(
     chart: &Chart,
     stack: &Stack<'_>,
@@ -268,7 +156,7 @@ fn draw_panels(
             }
             (Panel::Curves(_), None) => {}
         }
-        y = frame_top + height + slot.below() + BETWEEN;
+        y = frame_top + height + slot.below() + stack::BETWEEN;
     }
 }
 
@@ -310,7 +198,7 @@ fn names_room(stack: &Stack<'_>, width: f64, measure: &dyn Measure) -> f64 {
     BEFORE_TEXT + widest.clamp(20.0, NAMES_SHARE * width) + 2.0
 }
 
-fn curves_name(curve: &crate::report::chart::Curve) -> String {
+fn curves_name(curve: &Curve) -> String {
     clean(&curve.name)
 }
 

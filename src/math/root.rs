@@ -30,6 +30,23 @@ pub fn increasing(mut f: impl FnMut(f64) -> (f64, f64), mut low: f64, mut high: 
     x
 }
 
+/// The x in [`low`, `high`] where `f`, negative (or zero) at `low` and positive at `high`, changes sign: by halving,
+/// for functions without a slope. Accuracy: the last few digits of x.
+pub fn halving(mut f: impl FnMut(f64) -> f64, mut low: f64, mut high: f64) -> f64 {
+    for _ in 0..200 {
+        let middle = 0.5 * (low + high);
+        if middle <= low || middle >= high {
+            break;
+        }
+        if f(middle) > 0.0 {
+            high = middle;
+        } else {
+            low = middle;
+        }
+    }
+    0.5 * (low + high)
+}
+
 /// The smallest power-of-two multiple of `start` (> 0) at which the increasing `f` is positive, for a bracket.
 ///
 /// None where 1e300 is passed without a sign change.
@@ -54,6 +71,7 @@ mod tests {
             let root = increasing(|x| (x * x * x - 2.0, 3.0 * x * x), 0.0, 2.0, guess);
             assert!((root - 2f64.cbrt()).abs() < 4e-16);
         }
+        assert!((halving(|x| x * x * x - 2.0, 0.0, 2.0) - 2f64.cbrt()).abs() < 4e-16);
         // A knee where plain Newton swings for ever.
         let root = increasing(|x| (x.atan(), 1.0 / (1.0 + x * x)), -50.0, 90.0, 80.0);
         assert!(root.abs() < 1e-15);

@@ -16,4 +16,9 @@ pub trait Magnetization: Debug + Send + Sync {
     /// Flux densities above 0, rising, that cut the curve into stretches on which dH/dB only rises or only falls;
     /// beyond the last it only rises. Empty for a straight line.
     fn bends(&self) -> Vec<f64>;
+
+    /// The flux density [T] up to which measured data reach, where they end.
+    fn known_to(&self) -> Option<f64> {
+        None
+    }
 }

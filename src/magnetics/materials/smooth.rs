@@ -3,8 +3,30 @@
 //! Ha = Js/(mu0 (mu_i - 1)) makes the slope at zero mu0 mu_i; the slope far out is mu0. The inverse solves
 //! mu0 H² - (B - Js - mu0 Ha) H - Ha B = 0. Its knee is soft: half of Js is reached at H = Ha.
 
-use super::Magnetization;
+use super::saturation::{Saturation, saturation};
+use super::{INITIAL_PERMEABILITY, Magnetization, Magnetized, Material, MaterialKind};
 use crate::magnetics::MU0;
+use crate::magnetics::geometry::Fault;
+use crate::netlist::{Fields, Key, Takes, Value, Values};
+use std::sync::Arc;
+
+/// A material told by initial permeability and saturation.
+pub const KIND: MaterialKind = MaterialKind {
+    word: "smooth",
+    about: "a smooth curve from initial permeability to saturation",
+    told_by: "saturation",
+    keys: KEYS,
+    read,
+};
+
+const KEYS: &[Key] = &[
+    INITIAL_PERMEABILITY,
+    Key::optional(
+        "saturation",
+        Takes::Other("a flux density, or pairs [temperature, flux density]"),
+        "saturation polarization, also over temperature",
+    ),
+];
 
 /// The smooth curve of an initial permeability and a saturation polarization.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -17,6 +39,38 @@ impl Smooth {
     /// A curve of relative `initial_permeability` (above 1) and `saturation` [T] (above 0).
     pub fn new(initial_permeability: f64, saturation: f64) -> Self {
         Smooth { saturation, half_field: saturation / (MU0 * (initial_permeability - 1.0)) }
+    }
+}
+
+#[derive(Debug)]
+struct Written {
+    initial_permeability: Value,
+    saturation: Saturation,
+}
+
+fn read(fields: &Fields<'_>) -> Option<Box<dyn Material>> {
+    if !fields.has("initial_permeability") {
+        fields.missing("initial_permeability");
+    }
+    let saturation = saturation(fields, "saturation");
+    let initial_permeability = fields.checked("initial_permeability", "above 1", |amount| amount.low > 1.0)?;
+    Some(Box::new(Written { initial_permeability, saturation: saturation? }))
+}
+
+impl Material for Written {
+    fn derive(&self, values: &Values, temperature: f64) -> Result<Magnetized, Fault> {
+        let permeability = values[self.initial_permeability];
+        let (saturation, remark) = self.saturation.at(values, temperature);
+        if !(permeability > 1.0 && saturation > 0.0) {
+            return Err(Fault {
+                word: "out-of-range",
+                key: "initial_permeability",
+                text: "a saturating material has an initial permeability above 1 and a saturation above 0".into(),
+                help: "check the values given to both",
+            });
+        }
+        let curve = Smooth::new(permeability, saturation);
+        Ok(Magnetized { curve: Arc::new(curve), remarks: remark.into_iter().collect() })
     }
 }
 

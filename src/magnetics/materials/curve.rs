@@ -3,10 +3,29 @@
 //! B(H) is a monotone cubic ([`crate::math::curves`]) in which dB/dH never falls below mu0; beyond the last
 //! point the slope is mu0. Odd: the points are those of the first quadrant. The energy is exact for the cubic.
 
-use super::Magnetization;
+use super::{Magnetization, Magnetized, Material, MaterialKind};
+use crate::magnetics::geometry::Fault;
 use crate::magnetics::MU0;
-use crate::math::curves::{Fault, Monotone};
+use crate::math::curves::{Fault as CurveFault, Monotone};
 use crate::math::quadrature::two_points;
+use crate::netlist::{Fields, Key, Takes, Value, Values};
+use crate::units::{FIELD_STRENGTH, FLUX_DENSITY};
+use std::sync::Arc;
+
+/// A material told by points of its curve.
+pub const KIND: MaterialKind = MaterialKind {
+    word: "curve",
+    about: "a monotone curve through measured points",
+    told_by: "curve",
+    keys: KEYS,
+    read,
+};
+
+const KEYS: &[Key] = &[Key::optional(
+    "curve",
+    Takes::Pairs(FIELD_STRENGTH, FLUX_DENSITY),
+    "points [field strength, flux density] of the first quadrant",
+)];
 
 /// An odd curve through points [H, B].
 #[derive(Clone, Debug, PartialEq)]
@@ -46,10 +65,10 @@ impl Table {
         let (Some(&h), Some(&b)) = (x.get(1), y.get(1)) else { return Err(TableFault::Empty) };
         // Odd, so the parabola through the origin and its two neighbours is the chord itself.
         let curve = Monotone::new(&x, &y, MU0, b / h, MU0).map_err(|fault| match fault {
-            Fault::TooFew => TableFault::Empty,
-            Fault::NotFinite(k) => TableFault::NotFinite(row(k)),
-            Fault::XFalls(k) => TableFault::FieldFalls(row(k)),
-            Fault::TooFlat(k) => TableFault::BelowVacuum(row(k)),
+            CurveFault::TooFew => TableFault::Empty,
+            CurveFault::NotFinite(k) => TableFault::NotFinite(row(k)),
+            CurveFault::XFalls(k) => TableFault::FieldFalls(row(k)),
+            CurveFault::TooFlat(k) => TableFault::BelowVacuum(row(k)),
         })?;
         let mut energy = vec![0.0];
         for pair in curve.x().windows(2) {
@@ -58,16 +77,70 @@ impl Table {
         }
         Ok(Table { curve, energy })
     }
-
-    /// The last point's flux density [T]: beyond it the curve is a guess.
-    pub fn end(&self) -> f64 {
-        self.curve.y()[self.curve.y().len() - 1]
-    }
 }
 
 /// ∫ H dB = ∫ H (dB/dH) dH between fields of one piece: a cubic in H, for which two Gauss points are exact.
 fn work(curve: &Monotone, from: f64, to: f64) -> f64 {
     two_points(from, to, |h| h * curve.at(h).1)
+}
+
+#[derive(Debug)]
+struct Written {
+    points: Vec<(Value, Value)>,
+}
+
+fn read(fields: &Fields<'_>) -> Option<Box<dyn Material>> {
+    let written = Written { points: fields.pairs("curve")? };
+    let nominal = fields.reader().parameters.borrow().nominal();
+    let Err(fault) = written.table(&nominal) else { return Some(Box::new(written)) };
+    let (row, headline) = fault.told();
+    let items = fields.node("curve").map_or(&[][..], |node| node.items());
+    let place = items.get(row).map_or(fields.span("curve"), |item| item.span);
+    let diagnostic = crate::diag::Diagnostic::error("bad-curve", headline).at(place, fault.label());
+    fields.reader().sink.report(diagnostic.help("curve: [[0 A/m, 0 T], [100 A/m, 0.2 T], [400 A/m, 0.35 T]]"));
+    None
+}
+
+impl Written {
+    fn table(&self, values: &Values) -> Result<Table, TableFault> {
+        let fields: Vec<f64> = self.points.iter().map(|&(h, _)| values[h]).collect();
+        let densities: Vec<f64> = self.points.iter().map(|&(_, b)| values[b]).collect();
+        Table::new(&fields, &densities)
+    }
+}
+
+impl Material for Written {
+    fn derive(&self, values: &Values, _temperature: f64) -> Result<Magnetized, Fault> {
+        match self.table(values) {
+            Ok(table) => Ok(Magnetized { curve: Arc::new(table), remarks: Vec::new() }),
+            Err(fault) => {
+                Err(Fault { word: "bad-curve", key: "curve", text: fault.told().1, help: "check the spread of its points" })
+            }
+        }
+    }
+}
+
+impl TableFault {
+    /// The row at fault, from 0, and a sentence with rows counted from 1.
+    fn told(self) -> (usize, String) {
+        match self {
+            TableFault::Empty => (0, "curve needs at least one point besides the origin".into()),
+            TableFault::NotAtOrigin => (0, "curve starts at [0 A/m, 0 T] or in the first quadrant".into()),
+            TableFault::NotFinite(k) => (k, format!("row {} of curve is not finite", k + 1)),
+            TableFault::FieldFalls(k) => (k, format!("row {} of curve must have more field strength than the row before", k + 1)),
+            TableFault::BelowVacuum(k) => (k, format!("row {} of curve rises by less than mu0 from the row before", k + 1)),
+        }
+    }
+
+    fn label(self) -> &'static str {
+        match self {
+            TableFault::Empty => "too few points",
+            TableFault::NotAtOrigin => "the curve is odd: write the half with H and B above zero",
+            TableFault::NotFinite(_) => "not finite",
+            TableFault::FieldFalls(_) => "rows go from weak to strong fields",
+            TableFault::BelowVacuum(_) => "even saturated iron gains mu0 (1.2566 µT per A/m)",
+        }
+    }
 }
 
 impl Magnetization for Table {
@@ -94,6 +167,10 @@ impl Magnetization for Table {
         fields.extend(self.curve.turning_slopes());
         fields.sort_by(f64::total_cmp);
         fields.into_iter().map(|h| self.curve.at(h).0).collect()
+    }
+
+    fn known_to(&self) -> Option<f64> {
+        self.curve.y().last().copied()
     }
 }
 
@@ -122,7 +199,7 @@ mod tests {
             assert!((table.flux_density(h).0 - b).abs() < 1e-15);
             assert!((table.flux_density(-h).0 + b).abs() < 1e-15);
         }
-        assert_eq!(table.end(), 2.0);
+        assert_eq!(table.known_to(), Some(2.0));
         assert_eq!(Table::new(&[20.0, 60.0], &[0.05, 0.9]), Table::new(&[0.0, 20.0, 60.0], &[0.0, 0.05, 0.9]));
     }
 

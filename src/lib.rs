@@ -3,6 +3,7 @@
 pub mod dae;
 pub mod diag;
 pub mod limits;
+pub mod magnetics;
 pub mod math;
 pub mod netlist;
 pub mod readings;

@@ -2,9 +2,14 @@
 //!
 //! Linear algebra: [`Matrix`] takes values on a fixed sparsity pattern, factors them and solves; it chooses
 //! between the [`dense`] and the [`sparse`] elimination. Both serve real and complex numbers.
+//! Fields of circles and curves of materials: [`elliptic`], [`quadrature`], [`curves`], [`root`].
 
+pub mod curves;
 pub mod dense;
+pub mod elliptic;
 pub mod matrix;
+pub mod quadrature;
+pub mod root;
 pub mod scalar;
 pub mod sparse;
 

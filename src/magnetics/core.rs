@@ -1,0 +1,97 @@
+//! A core: a shape filled with a material, and what it comes out as under a winding.
+
+use super::geometry::{Fault, Geometry, Remark};
+use super::linkage::{CurvePoint, Linkage};
+use super::materials::{Linear, Magnetized, Material};
+use super::path::Path;
+use super::shapes::Shape;
+use super::winding::WindingPlan;
+use crate::netlist::Values;
+use std::sync::Arc;
+
+/// A core as written. Coils share it.
+#[derive(Debug)]
+pub struct Core {
+    /// Where it stands: `cores.k1_core`.
+    pub path: String,
+    pub(super) shape: Box<dyn Shape>,
+    pub(super) material: Option<Arc<dyn Material>>,
+}
+
+/// A core with one winding, with numbers.
+#[derive(Clone, Debug)]
+pub struct Wound {
+    /// The core's geometry.
+    pub geometry: Geometry,
+    /// Current over flux linkage.
+    pub linkage: Linkage,
+    /// Winding resistance [Ω] from wire and mean turn; None where either is not known.
+    pub resistance: Option<f64>,
+    /// What somebody should know, geometry's remarks included.
+    pub remarks: Vec<Remark>,
+}
+
+/// The figures of one coil over its current, for tables and JSON. SI units.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Figures {
+    /// Incremental inductance at zero [H].
+    pub inductance_at_zero: f64,
+    /// Current at 70 % of it [A], where there is one.
+    pub current_at_70_percent: Option<f64>,
+    /// Energy at the operating current [J], where one is known.
+    pub stored_energy: Option<f64>,
+    /// Flux density in the smallest section at the operating current [T].
+    pub peak_flux_density: Option<f64>,
+    /// Flux linkage, inductance and flux density over current.
+    pub curve: Vec<CurvePoint>,
+}
+
+impl Core {
+    /// The core's path with the values in force, its material at a `temperature` [K].
+    ///
+    /// # Errors
+    /// A shape, material or winding that cannot be; what reading can tell beforehand it has refused already.
+    pub fn path(
+        &self,
+        values: &Values,
+        winding: Option<&WindingPlan>,
+        temperature: f64,
+    ) -> Result<(Path, Geometry), Fault> {
+        let mut geometry = self.shape.derive(values, winding)?;
+        let magnetized = match &self.material {
+            Some(material) => material.derive(values, temperature)?,
+            None => Magnetized { curve: Arc::new(Linear::AIR), remarks: Vec::new() },
+        };
+        geometry.remarks.extend(magnetized.remarks);
+        Ok((Path::new(&geometry, magnetized.curve), geometry))
+    }
+
+    /// The core with one winding on it, core and copper at a `temperature` [K].
+    ///
+    /// # Errors
+    /// As [`Core::path`].
+    pub fn wound(&self, values: &Values, winding: &WindingPlan, temperature: f64) -> Result<Wound, Fault> {
+        let (path, geometry) = self.path(values, Some(winding), temperature)?;
+        let resistance = geometry.mean_turn.and_then(|turn| winding.resistance(turn, temperature));
+        let remarks = geometry.remarks.clone();
+        Ok(Wound { geometry, linkage: Linkage::new(path, winding.turns as f64), resistance, remarks })
+    }
+}
+
+impl Wound {
+    /// The figures over current; `operating_current` [A] where one is known. The curve has `points` points and
+    /// reaches beyond the operating current and the knee.
+    pub fn figures(&self, operating_current: Option<f64>, points: usize) -> Figures {
+        let knee = self.linkage.current_at_70_percent();
+        let linkage = operating_current.map(|current| self.linkage.linkage_at(current));
+        // Half as far again as what matters; a coil of which nothing is known is shown up to an ampere.
+        let reach = 1.5 * knee.into_iter().chain(operating_current.map(f64::abs)).fold(0.0, f64::max);
+        Figures {
+            inductance_at_zero: self.linkage.inductance_at_zero(),
+            current_at_70_percent: knee,
+            stored_energy: linkage.map(|linkage| self.linkage.energy(linkage)),
+            peak_flux_density: linkage.map(|linkage| self.linkage.peak_flux_density(linkage).abs()),
+            curve: self.linkage.curve(if reach > 0.0 { reach } else { 1.0 }, points),
+        }
+    }
+}

@@ -1,0 +1,114 @@
+//! What a core shape comes out as: a magnetic path, a mean turn, a winding window, and remarks on them.
+
+use super::MU0;
+use super::fringing::Fringing;
+
+/// Geometry of one magnetic path. SI units.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Geometry {
+    /// Effective length of the path [m].
+    pub length: f64,
+    /// Effective area [m²].
+    pub area: f64,
+    /// Smallest section [m²]: the flux density peaks there.
+    pub minimum_area: f64,
+    /// Effective volume [m³].
+    pub volume: f64,
+    /// Length of the path inside the core's material [m]; 0 for a coil in air.
+    pub iron: f64,
+    /// Length of air [m], of section `area`, in series with the material: the gap over its fringing factor, or for a
+    /// coil in air the length that has its permeance.
+    pub air: f64,
+    /// All gaps as drawn [m].
+    pub gap: f64,
+    /// The fringing rule and its factor; None where there is no gap to fringe.
+    pub fringing: Option<Fringing>,
+    /// Mean length of a turn [m], where the shape tells it.
+    pub mean_turn: Option<f64>,
+    /// The space for windings, where the shape tells it.
+    pub window: Option<Window>,
+    /// What somebody should know.
+    pub remarks: Vec<Remark>,
+}
+
+/// The space for windings.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Window {
+    /// Area [m²].
+    pub area: f64,
+    /// The share of it that square cells of the insulated wire can fill in practice.
+    pub practical_fill: f64,
+}
+
+/// A caution that belongs to a figure.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Remark {
+    /// A word to look up: `window-overfilled`.
+    pub word: &'static str,
+    /// A sentence that says it all.
+    pub text: String,
+}
+
+impl Remark {
+    /// A remark.
+    pub fn new(word: &'static str, text: impl Into<String>) -> Self {
+        Remark { word, text: text.into() }
+    }
+}
+
+/// Why no geometry, material or winding comes out; the reader turns it into a message on the key.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Fault {
+    /// A word to look up.
+    pub word: &'static str,
+    /// The key at fault.
+    pub key: &'static str,
+    /// What is wrong, as a sentence.
+    pub text: String,
+    /// What would be right.
+    pub help: &'static str,
+}
+
+impl std::fmt::Display for Fault {
+    fn fmt(&self, out: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
+        out.write_str(&self.text)
+    }
+}
+
+impl std::error::Error for Fault {}
+
+impl Geometry {
+    /// A closed path of constant section, all in the core's material.
+    pub fn closed(length: f64, area: f64) -> Self {
+        Geometry {
+            length,
+            area,
+            minimum_area: area,
+            volume: length * area,
+            iron: length,
+            air: 0.0,
+            gap: 0.0,
+            fringing: None,
+            mean_turn: None,
+            window: None,
+            remarks: Vec::new(),
+        }
+    }
+
+    /// A coil in air whose flux per ampere-turn is `permeance` [H]; `area` [m²] is that of the mean turn.
+    pub fn in_air(length: f64, area: f64, permeance: f64) -> Self {
+        Geometry { iron: 0.0, air: MU0 * area / permeance, ..Geometry::closed(length, area) }
+    }
+
+    /// Puts a gap into the path: in series with the material, shorter by its fringing factor.
+    pub fn with_gap(mut self, gap: f64, fringing: Option<Fringing>) -> Self {
+        let factor = fringing.as_ref().map_or(1.0, |fringing| fringing.factor);
+        self.gap = gap;
+        self.air = gap / factor;
+        if let Some(fringing) = &fringing {
+            self.remarks.extend(fringing.remark.clone());
+        }
+        self.fringing = fringing;
+        self
+    }
+}

@@ -50,11 +50,24 @@ pub struct Claims<'a> {
     /// All unknowns so far.
     pub unknowns: &'a mut Vec<Claimed>,
     /// Unknowns offered to followers.
-    pub offered: &'a mut Vec<(usize, Wanted, Unknown)>,
+    pub offered: &'a mut Vec<Offer>,
     /// Number of mode values so far.
     pub modes: &'a mut usize,
     /// Number of guards so far.
     pub guards: &'a mut usize,
+}
+
+/// An unknown that carries a signal of an element.
+#[derive(Clone, Copy, Debug)]
+pub struct Offer {
+    /// Index of the element that offers.
+    pub element: usize,
+    /// The signal.
+    pub wanted: Wanted,
+    /// The unknown that carries it.
+    pub unknown: Unknown,
+    /// The signal is this factor times the unknown.
+    pub factor: f64,
 }
 
 /// A signal of one element that another one follows.
@@ -75,16 +88,20 @@ impl Claims<'_> {
     /// A new unknown with the row of the same number.
     pub fn unknown(&mut self, what: &'static str, measure: Measure) -> Unknown {
         let number = Unknown(self.unknowns.len() as u32);
-        self.unknowns.push(Claimed { element: Some(self.element), what, measure });
+        self.unknowns.push(Claimed {
+            element: Some(self.element),
+            what,
+            measure,
+        });
         number
     }
 
-    /// Reserves `count` modes; returns the first one's place.
+    /// Reserves `count` mode values; the element sees them as its own slice.
     pub fn modes(&mut self, count: usize) {
         *self.modes += count;
     }
 
-    /// Reserves `count` guards.
+    /// Reserves `count` guards; the element counts them from zero.
     pub fn guards(&mut self, count: usize) {
         *self.guards += count;
     }
@@ -94,8 +111,13 @@ impl Claims<'_> {
         self.wanted.contains(&wanted)
     }
 
-    /// Offers an unknown that carries a wanted signal.
-    pub fn offer(&mut self, wanted: Wanted, unknown: Unknown) {
-        self.offered.push((self.element, wanted, unknown));
+    /// Offers an unknown that carries a wanted signal, times `factor`.
+    pub fn offer(&mut self, wanted: Wanted, unknown: Unknown, factor: f64) {
+        self.offered.push(Offer {
+            element: self.element,
+            wanted,
+            unknown,
+            factor,
+        });
     }
 }

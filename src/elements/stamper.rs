@@ -12,22 +12,53 @@ pub const NOWHERE: u32 = u32::MAX;
 /// Where shares go; made anew for each evaluation of the whole circuit.
 pub struct Stamper<'a> {
     goal: Goal<'a>,
+    /// What independent sources multiply their value by: 1 but while an operating point is being sought.
+    source_share: f64,
 }
 
 enum Goal<'a> {
     Record(&'a mut Vec<(Unknown, Unknown)>),
-    Fill { out: &'a mut Evaluation, slots: &'a [u32], next: usize, slopes: bool },
+    Fill {
+        out: &'a mut Evaluation,
+        slots: &'a [u32],
+        next: usize,
+        slopes: bool,
+    },
 }
 
 impl<'a> Stamper<'a> {
     /// Records the positions only; values are dropped.
     pub fn recording(positions: &'a mut Vec<(Unknown, Unknown)>) -> Self {
-        Stamper { goal: Goal::Record(positions) }
+        Stamper {
+            goal: Goal::Record(positions),
+            source_share: 1.0,
+        }
     }
 
     /// Adds to `out`, whose vectors are sized and zeroed; `slots` is one number per recorded position.
     pub fn filling(out: &'a mut Evaluation, slots: &'a [u32], slopes: bool) -> Self {
-        Stamper { goal: Goal::Fill { out, slots, next: 0, slopes } }
+        Stamper {
+            goal: Goal::Fill {
+                out,
+                slots,
+                next: 0,
+                slopes,
+            },
+            source_share: 1.0,
+        }
+    }
+
+    /// With every independent source multiplied by `share`.
+    #[must_use]
+    pub fn raised(mut self, share: f64) -> Self {
+        self.source_share = share;
+        self
+    }
+
+    /// What independent sources multiply their value by.
+    #[inline]
+    pub fn source_share(&self) -> f64 {
+        self.source_share
     }
 
     /// Adds `value` to f of a row.
@@ -66,7 +97,12 @@ impl<'a> Stamper<'a> {
     fn slope(&mut self, row: Unknown, column: Unknown, slope: f64, charge: bool) {
         match &mut self.goal {
             Goal::Record(positions) => positions.push((row, column)),
-            Goal::Fill { out, slots, next, slopes } => {
+            Goal::Fill {
+                out,
+                slots,
+                next,
+                slopes,
+            } => {
                 if *slopes {
                     let slot = slots[*next] as usize;
                     *next += 1;

@@ -4,6 +4,7 @@ pub mod document;
 mod events;
 pub mod expected;
 pub mod fields;
+mod fields_as;
 pub mod keys;
 pub mod load;
 mod names;

@@ -5,7 +5,8 @@
 
 use crate::diag::Span;
 use crate::units::Kind;
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, BTreeSet};
+use std::sync::{Arc, Mutex};
 
 /// Handle of one parameter.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
@@ -74,14 +75,17 @@ impl Parameters {
     pub fn nominal(&self) -> Values {
         Values {
             numbers: self.entries.iter().map(|entry| entry.nominal).collect(),
+            trace: None,
         }
     }
 }
 
 /// Values in force, one per parameter [SI].
-#[derive(Clone, Debug, PartialEq)]
+#[derive(Clone, Debug)]
 pub struct Values {
     numbers: Vec<f64>,
+    /// Handles read since tracing began; None while nobody asks.
+    trace: Option<Arc<Mutex<BTreeSet<Value>>>>,
 }
 
 impl Values {
@@ -89,11 +93,33 @@ impl Values {
     pub fn set(&mut self, value: Value, number: f64) {
         self.numbers[value.0 as usize] = number;
     }
+
+    /// Runs `work` and tells which values it read: what an element's numbers depend on.
+    pub fn traced<T>(&self, work: impl FnOnce(&Values) -> T) -> (T, BTreeSet<Value>) {
+        let trace = Arc::new(Mutex::new(BTreeSet::new()));
+        let values = Values {
+            numbers: self.numbers.clone(),
+            trace: Some(Arc::clone(&trace)),
+        };
+        let result = work(&values);
+        let read = std::mem::take(
+            &mut *trace
+                .lock()
+                .expect("nothing panics while it holds the trace"),
+        );
+        (result, read)
+    }
 }
 
 impl std::ops::Index<Value> for Values {
     type Output = f64;
     fn index(&self, value: Value) -> &f64 {
+        if let Some(trace) = &self.trace {
+            trace
+                .lock()
+                .expect("nothing panics while it holds the trace")
+                .insert(value);
+        }
         &self.numbers[value.0 as usize]
     }
 }

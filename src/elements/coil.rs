@@ -1,0 +1,299 @@
+//! Coil on a core: its state is the flux linkage. d(linkage)/dt + R i(linkage) = v, the self-capacitance lies across the
+//! whole coil, winding resistance included.
+
+use super::claims::{Claims, Measure, Wanted};
+use super::element::{
+    Branch, Element, Energy, Path, PathKind, Point, Quantity, Unknown, Unsound, WindingFigures,
+};
+use super::kind::{ElementKind, Made, NODES, Surroundings, pair, reference_temperature};
+use super::stamper::Stamper;
+use crate::magnetics::wire::copper_ratio;
+use crate::magnetics::{Core, Fault, Linkage, WIRE_KEYS, WindingPlan, WireSpec, Wound};
+use crate::netlist::{Fields, Key, Takes, Value, Values};
+use crate::units;
+use std::sync::Arc;
+
+/// The kind.
+pub const KIND: ElementKind = ElementKind {
+    word: "coil",
+    about: "A winding on a core built from geometry and material, saturation counted.",
+    keys: &[
+        NODES,
+        Key::required("core", Takes::Name("core"), "the core that it is wound on"),
+        Key::required("turns", Takes::Count, "number of turns"),
+        Key::optional(
+            "wire",
+            Takes::Map(WIRE_KEYS),
+            "the wire; its resistance follows from the mean turn",
+        ),
+        Key::optional(
+            "resistance",
+            Takes::Quantity(units::RESISTANCE),
+            "winding resistance at the reference temperature, instead of a wire",
+        ),
+        Key::required(
+            "self_capacitance",
+            Takes::Quantity(units::CAPACITANCE),
+            "capacitance across the whole coil",
+        ),
+        Key::default(
+            "initial_current",
+            Takes::Quantity(units::CURRENT),
+            "0 A",
+            "winding current at a zero start",
+        ),
+        Key::optional(
+            "temperature_coefficient",
+            Takes::Quantity(units::TEMPERATURE_COEFFICIENT),
+            "of the winding resistance; copper without",
+        ),
+    ],
+    read,
+};
+
+/// What sets the winding resistance.
+enum Winding {
+    /// A resistance at the reference temperature, and its temperature coefficient; copper without one.
+    Given(Value, Option<Value>),
+    /// The wire and the mean turn.
+    Wire(WireSpec),
+}
+
+struct Coil {
+    core: Arc<Core>,
+    turns: usize,
+    winding: Winding,
+    capacitance_key: Value,
+    initial_key: Value,
+    ambient: Value,
+    reference: Value,
+    made: Option<Wound>,
+    resistance: f64,
+    capacitance: f64,
+    initial: f64,
+    branch: Branch,
+    linkage: Unknown,
+    /// The winding current as an unknown, where another element follows it.
+    winding_current: Option<Unknown>,
+}
+
+fn read(fields: &Fields<'_>, around: &Surroundings<'_>) -> Option<Made> {
+    let terminals = pair(fields);
+    let reference = reference_temperature(fields, around);
+    let core = around.library.core(fields, "core");
+    let turns = fields.count("turns");
+    let winding = read_winding(fields);
+    let capacitance = fields.non_negative("self_capacitance");
+    let initial = fields.value("initial_current");
+    let element = Coil {
+        core: core?,
+        turns: turns?,
+        winding: winding?,
+        capacitance_key: capacitance?,
+        initial_key: initial?,
+        ambient: around.ambient,
+        reference: reference?,
+        made: None,
+        resistance: 0.0,
+        capacitance: 0.0,
+        initial: 0.0,
+        branch: Branch::default(),
+        linkage: Unknown::GROUND,
+        winding_current: None,
+    };
+    Some(Made::new(terminals?, element))
+}
+
+/// Either `wire` or `resistance`.
+fn read_winding(fields: &Fields<'_>) -> Option<Winding> {
+    match (fields.has("wire"), fields.has("resistance")) {
+        (false, true) => {
+            let coefficient = if fields.has("temperature_coefficient") {
+                Some(fields.value("temperature_coefficient")?)
+            } else {
+                None
+            };
+            Some(Winding::Given(fields.positive("resistance")?, coefficient))
+        }
+        (true, false) => WireSpec::read(&fields.map("wire")?).map(Winding::Wire),
+        _ => {
+            fields.error_here(
+                "one-of",
+                "a coil takes either `wire` or `resistance`".into(),
+                "write one of the two",
+                "`resistance: 400 Ω` if it was measured, `wire: {gauge: 38 AWG}` to have it computed",
+            );
+            None
+        }
+    }
+}
+
+/// A fault of the magnetics as the element's.
+fn unsound(fault: &Fault) -> Unsound {
+    Unsound {
+        word: fault.word,
+        key: "core",
+        headline: fault.text.clone(),
+        help: fault.help.to_owned(),
+    }
+}
+
+impl Coil {
+    fn law(&self) -> &Linkage {
+        &self
+            .made
+            .as_ref()
+            .expect("a coil is derived before anything is asked of it")
+            .linkage
+    }
+
+    /// Winding current [A] and its slope over the linkage [1/H].
+    fn current(&self, x: &[f64]) -> (f64, f64) {
+        self.law().current(self.linkage.of(x))
+    }
+}
+
+impl Element for Coil {
+    fn derive(&mut self, values: &Values) -> Result<(), Unsound> {
+        let (t, t0) = (values[self.ambient], values[self.reference]);
+        let wire = match &self.winding {
+            Winding::Wire(spec) => Some(spec.derive(values)),
+            Winding::Given(..) => None,
+        };
+        let plan = WindingPlan {
+            turns: self.turns,
+            wire,
+        };
+        let wound = self
+            .core
+            .wound(values, &plan, t)
+            .map_err(|fault| unsound(&fault))?;
+        self.resistance = match &self.winding {
+            Winding::Given(value, None) => values[*value] * copper_ratio(t, t0),
+            Winding::Given(value, Some(coefficient)) => values[*value] * (1.0 + values[*coefficient] * (t - t0)),
+            Winding::Wire(_) => wound.resistance.ok_or_else(|| Unsound {
+                word: "no-mean-turn",
+                key: "wire",
+                headline: "the mean turn of this core is not known, so neither is the resistance of its wire".into(),
+                help: "an `effective` core has no window: write the winding's `resistance` instead".into(),
+            })?,
+        };
+        self.made = Some(wound);
+        self.capacitance = values[self.capacitance_key];
+        self.initial = values[self.initial_key];
+        Ok(())
+    }
+
+    fn claim(&mut self, claims: &mut Claims<'_>) {
+        let hidden = claims.probed && self.capacitance > 0.0;
+        self.branch = Branch::claim(claims, hidden);
+        self.linkage = claims.unknown("flux linkage", Measure::FluxLinkage);
+        let wanted = Wanted::Of(Quantity::WindingCurrent, 0);
+        self.winding_current = claims
+            .wants(wanted)
+            .then(|| claims.unknown("winding current", Measure::Current));
+        if let Some(current) = self.winding_current {
+            claims.offer(wanted, current, 1.0);
+        }
+        claims.offer(Wanted::Of(Quantity::FluxLinkage, 0), self.linkage, 1.0);
+    }
+
+    fn stamp(&self, at: Point<'_>, into: &mut Stamper<'_>) {
+        let (current, slope) = self.current(at.x);
+        let (a, b) = (self.branch.a, self.branch.b);
+        let voltage = self.branch.voltage(at.x);
+        into.q(self.linkage, self.linkage.of(at.x));
+        into.dq(self.linkage, self.linkage, 1.0);
+        into.f(self.linkage, self.resistance * current - voltage);
+        into.df(self.linkage, self.linkage, self.resistance * slope);
+        into.df(self.linkage, a, -1.0);
+        into.df(self.linkage, b, 1.0);
+        match self.branch.current {
+            None => {
+                into.f(a, current);
+                into.f(b, -current);
+                into.df(a, self.linkage, slope);
+                into.df(b, self.linkage, -slope);
+            }
+            Some(i) => {
+                into.carry(a, b, i, i.of(at.x));
+                into.f(i, current - i.of(at.x));
+                into.df(i, i, -1.0);
+                into.df(i, self.linkage, slope);
+            }
+        }
+        self.branch
+            .store(self.capacitance * voltage, self.capacitance, into);
+        if let Some(winding) = self.winding_current {
+            into.f(winding, winding.of(at.x) - current);
+            into.df(winding, winding, 1.0);
+            into.df(winding, self.linkage, -slope);
+        }
+    }
+
+    fn energy(&self) -> &dyn Energy {
+        self
+    }
+
+    fn quantity(&self, quantity: Quantity, _winding: usize, at: Point<'_>) -> Option<f64> {
+        let linkage = self.linkage.of(at.x);
+        let law = self.law();
+        match quantity {
+            Quantity::WindingCurrent => Some(law.current(linkage).0),
+            Quantity::FluxLinkage => Some(linkage),
+            Quantity::FluxDensity => Some(law.flux_density(linkage)),
+            Quantity::FieldStrength => Some(law.field_strength(linkage)),
+            Quantity::Inductance => Some(law.inductance(linkage)),
+            Quantity::Saturation => Some(law.saturation(linkage)),
+            _ => None,
+        }
+    }
+
+    fn initial_charge(&self, q: &mut dyn FnMut(Unknown, f64)) {
+        q(self.linkage, self.law().linkage_at(self.initial));
+    }
+
+    fn paths(&self) -> Vec<Path> {
+        let kind = if self.resistance > 0.0 {
+            PathKind::InductiveWithResistance
+        } else {
+            PathKind::Inductive
+        };
+        vec![Path {
+            from: 0,
+            to: 1,
+            kind,
+        }]
+    }
+
+    fn windings(&self) -> Vec<WindingFigures<'_>> {
+        self.made
+            .iter()
+            .map(|wound| WindingFigures {
+                name: "",
+                resistance: self.resistance,
+                wound,
+            })
+            .collect()
+    }
+}
+
+impl Energy for Coil {
+    fn currents(&self, at: Point<'_>, out: &mut [f64]) {
+        let current = self
+            .branch
+            .current
+            .map_or_else(|| self.current(at.x).0, |i| i.of(at.x));
+        out[0] = current;
+        out[1] = -current;
+    }
+
+    fn loss(&self, at: Point<'_>) -> f64 {
+        self.resistance * self.current(at.x).0.powi(2)
+    }
+
+    fn stored(&self, at: Point<'_>) -> f64 {
+        self.law().energy(self.linkage.of(at.x))
+            + 0.5 * self.capacitance * self.branch.voltage(at.x).powi(2)
+    }
+}

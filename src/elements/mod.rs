@@ -1,0 +1,52 @@
+//! Elements of a circuit: one file per kind, one line per kind in [`KINDS`].
+//!
+//! An element reads its keys into parameter handles, derives its numbers from the parameters' values, claims its
+//! unknowns and stamps its share of d/dt q(x) + f(x, t, mode) = 0.
+
+pub mod cable;
+pub mod capacitor;
+pub mod claims;
+pub mod coil;
+pub mod coupled_inductors;
+pub mod current_source;
+pub mod dependent;
+pub mod dependent_current_source;
+pub mod dependent_voltage_source;
+pub mod diode;
+pub mod element;
+pub mod inductor;
+pub mod junction;
+pub mod kind;
+pub mod resistor;
+pub mod stamper;
+pub mod suppressor_diode;
+pub mod switch;
+pub mod switch_command;
+pub mod voltage_source;
+pub mod waveforms;
+pub mod zener;
+
+pub use claims::{Claimed, Claims, Measure, Offer, Wanted};
+pub use element::{
+    Element, Energy, Follower, Happening, Point, Quantity, Switching, Terms, Unknown, Unsound,
+};
+pub use kind::{ElementKind, Made, Surroundings, Terminal};
+pub use stamper::Stamper;
+
+/// Every kind of element that a netlist may name.
+pub const KINDS: &[ElementKind] = &[
+    cable::KIND,
+    capacitor::KIND,
+    coil::KIND,
+    coupled_inductors::KIND,
+    current_source::KIND,
+    dependent_current_source::KIND,
+    dependent_voltage_source::KIND,
+    diode::KIND,
+    inductor::KIND,
+    resistor::KIND,
+    suppressor_diode::KIND,
+    switch::KIND,
+    voltage_source::KIND,
+    zener::KIND,
+];

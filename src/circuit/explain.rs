@@ -1,0 +1,42 @@
+//! From the number of an unknown to the words that a person knows it by.
+
+use super::Circuit;
+use crate::diag::Span;
+
+/// An unknown in words.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Explained {
+    /// `the potential of node drive`, `the flux linkage of k1_coil`.
+    pub words: String,
+    /// Where the element's name stands; None for a node.
+    pub span: Option<Span>,
+}
+
+impl Circuit {
+    /// What an unknown is.
+    pub fn explain(&self, unknown: usize) -> Explained {
+        match self.unknowns.get(unknown) {
+            None => Explained {
+                words: "an unknown".into(),
+                span: None,
+            },
+            Some(claimed) => match claimed.element {
+                None => {
+                    let name = &self.node_names[unknown];
+                    let touching = self
+                        .entries
+                        .iter()
+                        .find(|entry| entry.terminals.iter().any(|t| t.node.text == *name));
+                    Explained {
+                        words: format!("the potential of node `{name}`"),
+                        span: touching.map(|entry| entry.span),
+                    }
+                }
+                Some(k) => Explained {
+                    words: format!("the {} of `{}`", claimed.what, self.entries[k].name),
+                    span: Some(self.entries[k].span),
+                },
+            },
+        }
+    }
+}

@@ -1,0 +1,277 @@
+//! Numbers unknowns, modes and guards, joins followers to what they follow, and finds the sparsity pattern once.
+
+use super::taps::terminal_of;
+use super::{Circuit, Entry};
+use crate::dae::Pattern;
+use crate::elements::{Claimed, Claims, Measure, Offer, Point, Stamper, Terms, Unknown, Wanted};
+use crate::signals::{Owner, Phrase};
+
+/// A phrase that an element follows and that names nothing in the circuit.
+#[derive(Clone, Debug)]
+pub struct Unfollowed {
+    /// The follower.
+    pub entry: usize,
+    /// The phrase.
+    pub phrase: Phrase,
+    /// Why it cannot be followed.
+    pub why: String,
+}
+
+impl Circuit {
+    /// Numbers everything anew. `probed` says whose terminal currents are asked for.
+    pub(super) fn number(&mut self, probed: &[bool]) -> Result<(), Unfollowed> {
+        let Following { wanted, links } = self.wanted()?;
+        self.unknowns = (0..self.node_names.len())
+            .map(|_| Claimed {
+                element: None,
+                what: "potential",
+                measure: Measure::Voltage,
+            })
+            .collect();
+        let mut offered: Vec<Offer> = Vec::new();
+        let (mut modes, mut guards) = (0, 0);
+        for (k, entry) in self.entries.iter_mut().enumerate() {
+            let (first_mode, first_guard) = (modes, guards);
+            entry.probed = probed[k];
+            entry.element.claim(&mut Claims {
+                element: k,
+                terminals: &entry.nodes,
+                probed: probed[k],
+                wanted: &wanted[k],
+                unknowns: &mut self.unknowns,
+                offered: &mut offered,
+                modes: &mut modes,
+                guards: &mut guards,
+            });
+            entry.modes = first_mode..modes;
+            entry.guards = first_guard..guards;
+        }
+        (self.mode_size, self.guard_size) = (modes, guards);
+        self.connect(&links, &offered)?;
+        self.find_pattern();
+        Ok(())
+    }
+
+    /// What is wanted of each element, and how each follower's signals are made up.
+    fn wanted(&mut self) -> Result<Following, Unfollowed> {
+        let mut wanted: Vec<Vec<Wanted>> = vec![Vec::new(); self.entries.len()];
+        let mut links: Vec<Vec<Link>> = Vec::new();
+        for k in 0..self.entries.len() {
+            let phrases: Vec<Phrase> = match self.entries[k].element.follower() {
+                Some(follower) => follower.follows().into_iter().cloned().collect(),
+                None => Vec::new(),
+            };
+            let mut own = Vec::new();
+            for phrase in phrases {
+                let link = self.link(&phrase).map_err(|why| Unfollowed {
+                    entry: k,
+                    phrase,
+                    why,
+                })?;
+                if let Link::Of(owner, signal) = link {
+                    wanted[owner].push(signal);
+                }
+                own.push(link);
+            }
+            links.push(own);
+        }
+        Ok(Following { wanted, links })
+    }
+
+    /// What a phrase comes down to, if it can be followed.
+    fn link(&self, phrase: &Phrase) -> Result<Link, String> {
+        let node = |name: &str| {
+            self.node(name)
+                .ok_or_else(|| format!("there is no node `{name}`"))
+        };
+        let owner = |owner: &Owner| {
+            self.index_of(&owner.element)
+                .ok_or_else(|| format!("there is no element `{}`", owner.element))
+        };
+        match phrase {
+            Phrase::VoltageAt(name) => Ok(Link::Potential(node(name)?, Unknown::GROUND)),
+            Phrase::VoltageFrom(a, b) => Ok(Link::Potential(node(a)?, node(b)?)),
+            Phrase::VoltageAcross(whose) => {
+                let entry = &self.entries[owner(whose)?];
+                let (a, b) = terminal_pair(entry, whose)?;
+                Ok(Link::Potential(entry.nodes[a], entry.nodes[b]))
+            }
+            Phrase::CurrentThrough(whose) => {
+                let k = owner(whose)?;
+                let (first, _) = terminal_pair(&self.entries[k], whose)?;
+                Ok(Link::Of(k, Wanted::Current(first)))
+            }
+            Phrase::CurrentInto(whose, terminal) => {
+                let k = owner(whose)?;
+                let t = terminal_of(&self.entries[k], whose, terminal)?;
+                Ok(Link::Of(k, Wanted::Current(t)))
+            }
+            Phrase::Of(quantity, whose) => {
+                let k = owner(whose)?;
+                let winding = winding_of(&self.entries[k], whose)?;
+                Ok(Link::Of(k, Wanted::Of(*quantity, winding)))
+            }
+            Phrase::Power(_) | Phrase::Energy(_) => {
+                Err("a power or an energy cannot be followed".into())
+            }
+        }
+    }
+
+    fn connect(&mut self, links: &[Vec<Link>], offered: &[Offer]) -> Result<(), Unfollowed> {
+        for (k, own) in links.iter().enumerate() {
+            let mut all: Vec<Terms> = Vec::new();
+            for (nth, link) in own.iter().enumerate() {
+                match link.terms(offered) {
+                    Some(terms) => all.push(terms),
+                    None => {
+                        let follower = self.entries[k]
+                            .element
+                            .follower()
+                            .expect("only followers have links");
+                        let phrase = follower.follows()[nth].clone();
+                        return Err(Unfollowed {
+                            entry: k,
+                            phrase,
+                            why: "that element has no such signal to follow".into(),
+                        });
+                    }
+                }
+            }
+            if let Some(follower) = self.entries[k].element.follower() {
+                follower.connect(all);
+            }
+        }
+        Ok(())
+    }
+
+    /// Records every position that the elements stamp, and the slot of each.
+    fn find_pattern(&mut self) {
+        let size = self.unknowns.len();
+        let (x, mode) = (vec![0.0; size], self.start_mode());
+        let mut positions: Vec<(Unknown, Unknown)> = Vec::new();
+        for entry in &self.entries {
+            let at = Point {
+                time: 0.0,
+                x: &x,
+                mode: &mode[entry.modes.clone()],
+            };
+            entry
+                .element
+                .stamp(at, &mut Stamper::recording(&mut positions));
+        }
+        let inside: Vec<(usize, usize)> = positions
+            .iter()
+            .filter(|(row, column)| *row != Unknown::GROUND && *column != Unknown::GROUND)
+            .map(|(row, column)| (row.0 as usize, column.0 as usize))
+            .collect();
+        self.pattern = Pattern::from_positions(size, &inside);
+        self.slots = positions
+            .iter()
+            .map(|(row, column)| {
+                let slot = self.pattern.slot(row.0 as usize, column.0 as usize);
+                slot.map_or(crate::elements::stamper::NOWHERE, |slot| slot as u32)
+            })
+            .collect();
+    }
+
+    /// All modes at the start, before any signal is known.
+    pub fn start_mode(&self) -> Vec<f64> {
+        let mut mode = vec![0.0; self.mode_size];
+        for entry in &self.entries {
+            if let Some(switching) = entry.element.switching() {
+                switching.start(&mut mode[entry.modes.clone()]);
+            }
+        }
+        mode
+    }
+
+    /// Charges and flux linkages of a zero start, one per row.
+    pub fn initial_charges(&self) -> Vec<f64> {
+        let mut charges = vec![0.0; self.unknowns.len()];
+        for entry in &self.entries {
+            entry
+                .element
+                .initial_charge(&mut |row: Unknown, charge: f64| {
+                    if let Some(sum) = charges.get_mut(row.0 as usize) {
+                        *sum += charge;
+                    }
+                });
+        }
+        charges
+    }
+}
+
+/// What followers need, per element.
+struct Following {
+    /// Signals that each element must offer.
+    wanted: Vec<Vec<Wanted>>,
+    /// What each follower's signals are made of.
+    links: Vec<Vec<Link>>,
+}
+
+/// How a followed signal is made up.
+enum Link {
+    /// A difference of two potentials.
+    Potential(Unknown, Unknown),
+    /// What an element offers.
+    Of(usize, Wanted),
+}
+
+impl Link {
+    fn terms(&self, offered: &[Offer]) -> Option<Terms> {
+        match self {
+            Link::Potential(a, b) => Some(vec![(*a, 1.0), (*b, -1.0)]),
+            Link::Of(owner, wanted) => offered
+                .iter()
+                .find(|offer| offer.element == *owner && offer.wanted == *wanted)
+                .map(|offer| vec![(offer.unknown, offer.factor)]),
+        }
+    }
+}
+
+/// The two terminals that `across` and `through` mean: an element of two, or a winding.
+pub(super) fn terminal_pair(entry: &Entry, owner: &Owner) -> Result<(usize, usize), String> {
+    match &owner.winding {
+        Some(_) => {
+            let winding = winding_of(entry, owner)?;
+            Ok((2 * winding, 2 * winding + 1))
+        }
+        None if entry.terminals.len() == 2 => Ok((0, 1)),
+        None if entry.windings.is_empty() => {
+            let names: Vec<&str> = entry
+                .terminals
+                .iter()
+                .map(|terminal| terminal.name.as_str())
+                .collect();
+            Err(format!(
+                "`{}` has {} terminals; ask for `current into {}.{}`",
+                entry.name,
+                names.len(),
+                entry.name,
+                names.first().unwrap_or(&"")
+            ))
+        }
+        None => Err(format!(
+            "`{}` has several windings: {}",
+            entry.name,
+            entry.windings.join(", ")
+        )),
+    }
+}
+
+/// The winding that an owner names; 0 for an element without named windings.
+pub(super) fn winding_of(entry: &Entry, owner: &Owner) -> Result<usize, String> {
+    match &owner.winding {
+        Some(name) => entry
+            .windings
+            .iter()
+            .position(|winding| winding == name)
+            .ok_or_else(|| format!("`{}` has no winding `{name}`", entry.name)),
+        None if entry.windings.len() > 1 => Err(format!(
+            "`{}` has several windings: {}",
+            entry.name,
+            entry.windings.join(", ")
+        )),
+        None => Ok(0),
+    }
+}

@@ -1,0 +1,200 @@
+//! Signals of a circuit: from a phrase to a function of the point.
+
+use super::numbering::{terminal_pair, winding_of};
+use super::{Circuit, Entry};
+use crate::dae::Point;
+use crate::elements::{Quantity, Unknown};
+use crate::signals::{Owner, Phrase};
+
+/// A signal that can be read off at any point of a run.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Tap {
+    /// A difference of potentials.
+    Potential(Unknown, Unknown),
+    /// The current into a terminal of an element.
+    Current(usize, usize),
+    /// The power absorbed by an element.
+    Power(usize),
+    /// The energy absorbed by an element: the integral of its power, kept by whoever records.
+    Energy(usize),
+    /// A quantity of an element's own, of one winding.
+    Of(usize, Quantity, usize),
+}
+
+/// The terminal of a name; windings are written `TRANSFORMER.WINDING.first`.
+pub(super) fn terminal_of(entry: &Entry, owner: &Owner, terminal: &str) -> Result<usize, String> {
+    let full = match &owner.winding {
+        Some(winding) => format!("{winding}.{terminal}"),
+        None => terminal.to_owned(),
+    };
+    entry
+        .terminals
+        .iter()
+        .position(|known| known.name == full)
+        .ok_or_else(|| {
+            let names: Vec<&str> = entry
+                .terminals
+                .iter()
+                .map(|known| known.name.as_str())
+                .collect();
+            format!(
+                "`{}` has no terminal `{full}`; it has {}",
+                entry.name,
+                names.join(", ")
+            )
+        })
+}
+
+impl Circuit {
+    /// The tap of a phrase.
+    ///
+    /// # Errors
+    /// What the phrase names is not there, or has no such signal; the text says which.
+    pub fn tap(&self, phrase: &Phrase) -> Result<Tap, String> {
+        let node = |name: &str| {
+            self.node(name).ok_or_else(|| {
+                let known = self
+                    .node_names
+                    .iter()
+                    .map(String::as_str)
+                    .chain([super::GROUND]);
+                match crate::netlist::nearest(name, known) {
+                    Some(near) => format!("there is no node `{name}`; did you mean `{near}`?"),
+                    None => format!("there is no node `{name}`"),
+                }
+            })
+        };
+        let owner = |owner: &Owner| {
+            self.index_of(&owner.element).ok_or_else(|| {
+                let known = self.entries.iter().map(|entry| entry.name.as_str());
+                match crate::netlist::nearest(&owner.element, known) {
+                    Some(near) => format!(
+                        "there is no element `{}`; did you mean `{near}`?",
+                        owner.element
+                    ),
+                    None => format!("there is no element `{}`", owner.element),
+                }
+            })
+        };
+        match phrase {
+            Phrase::VoltageAt(name) => Ok(Tap::Potential(node(name)?, Unknown::GROUND)),
+            Phrase::VoltageFrom(a, b) => Ok(Tap::Potential(node(a)?, node(b)?)),
+            Phrase::VoltageAcross(whose) => {
+                let entry = &self.entries[owner(whose)?];
+                let (a, b) = terminal_pair(entry, whose)?;
+                Ok(Tap::Potential(entry.nodes[a], entry.nodes[b]))
+            }
+            Phrase::CurrentThrough(whose) => {
+                let k = owner(whose)?;
+                let (first, _) = terminal_pair(&self.entries[k], whose)?;
+                Ok(Tap::Current(k, first))
+            }
+            Phrase::CurrentInto(whose, terminal) => {
+                let k = owner(whose)?;
+                Ok(Tap::Current(
+                    k,
+                    terminal_of(&self.entries[k], whose, terminal)?,
+                ))
+            }
+            Phrase::Power(whose) => Ok(Tap::Power(owner(whose)?)),
+            Phrase::Energy(whose) => Ok(Tap::Energy(owner(whose)?)),
+            Phrase::Of(quantity, whose) => {
+                let k = owner(whose)?;
+                let entry = &self.entries[k];
+                let winding = winding_of(entry, whose)?;
+                let (x, mode) = (vec![0.0; self.unknowns.len()], self.start_mode());
+                let at = Point {
+                    time: 0.0,
+                    x: &x,
+                    mode: &mode[entry.modes.clone()],
+                };
+                match entry.element.quantity(*quantity, winding, at) {
+                    Some(_) => Ok(Tap::Of(k, *quantity, winding)),
+                    None => Err(format!(
+                        "`{}` is a {} and has no `{}`",
+                        entry.name,
+                        entry.kind.word,
+                        quantity.words()
+                    )),
+                }
+            }
+        }
+    }
+
+    /// Value of a tap; an energy reads as its power, which whoever records integrates.
+    pub fn read(&self, tap: &Tap, at: Point<'_>) -> f64 {
+        match tap {
+            Tap::Potential(a, b) => a.of(at.x) - b.of(at.x),
+            Tap::Current(k, terminal) => self.with_currents(*k, at, |currents| currents[*terminal]),
+            Tap::Power(k) | Tap::Energy(k) => self.power(*k, at),
+            Tap::Of(k, quantity, winding) => {
+                let entry = &self.entries[*k];
+                entry
+                    .element
+                    .quantity(*quantity, *winding, self.own(entry, at))
+                    .unwrap_or(f64::NAN)
+            }
+        }
+    }
+
+    /// Power absorbed by an element over all its terminals [W].
+    pub fn power(&self, entry: usize, at: Point<'_>) -> f64 {
+        let nodes = &self.entries[entry].nodes;
+        self.with_currents(entry, at, |currents| {
+            nodes
+                .iter()
+                .zip(currents)
+                .map(|(node, current)| node.of(at.x) * current)
+                .sum()
+        })
+    }
+
+    /// Power turned to heat by an element's own loss law [W].
+    pub fn loss(&self, entry: usize, at: Point<'_>) -> f64 {
+        let entry = &self.entries[entry];
+        entry.element.energy().loss(self.own(entry, at))
+    }
+
+    /// Energy in an element's state function [J].
+    pub fn stored(&self, entry: usize, at: Point<'_>) -> f64 {
+        let entry = &self.entries[entry];
+        entry.element.energy().stored(self.own(entry, at))
+    }
+
+    fn with_currents<T>(&self, entry: usize, at: Point<'_>, read: impl FnOnce(&[f64]) -> T) -> T {
+        let entry = &self.entries[entry];
+        let count = entry.terminals.len();
+        let mut few = [0.0; 8];
+        let mut many = Vec::new();
+        let currents = if count <= few.len() {
+            &mut few[..count]
+        } else {
+            many.resize(count, 0.0);
+            many.as_mut_slice()
+        };
+        entry
+            .element
+            .energy()
+            .currents(self.own(entry, at), currents);
+        read(currents)
+    }
+
+    /// The point as the element sees it: with its own modes.
+    pub(super) fn own<'a>(&self, entry: &Entry, at: Point<'a>) -> Point<'a> {
+        Point {
+            mode: &at.mode[entry.modes.clone()],
+            ..at
+        }
+    }
+
+    /// Whether a phrase asks for the currents of an element.
+    pub fn probes(&self, phrase: &Phrase) -> Option<usize> {
+        match phrase {
+            Phrase::CurrentThrough(owner)
+            | Phrase::CurrentInto(owner, _)
+            | Phrase::Power(owner)
+            | Phrase::Energy(owner) => self.index_of(&owner.element),
+            _ => None,
+        }
+    }
+}

@@ -1,0 +1,236 @@
+//! A transient: the pilot run that finds the swings, then the run itself, shown to an observer.
+
+use super::start::start;
+use super::swings::{Swings, Wish, tolerances};
+use super::task::Start;
+use crate::circuit::Circuit;
+use crate::dae::{
+    Advance, Ending, March, MarchError, Method, Point, Span, StartError, State, Statistics,
+    Tolerances,
+};
+use crate::diag::Diagnostic;
+use crate::signals::{EventLog, Happening, Owner};
+use std::ops::ControlFlow;
+
+/// Numbers of a transient [SI].
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Settings {
+    /// Simulated time [s].
+    pub duration: f64,
+    /// Error aimed at in every waveform, relative to its largest swing.
+    pub accuracy: f64,
+    /// Where it begins.
+    pub start: Start,
+    /// Longest step [s]; infinity for none.
+    pub longest_step: f64,
+}
+
+/// Why a simulation could not be completed.
+#[derive(Clone, Debug)]
+pub enum Failure {
+    /// The circuit has no such solution; the netlist is to be changed.
+    Refused(Box<Diagnostic>),
+    /// The solver gave up.
+    Stopped {
+        /// The sentence that says what, where and when.
+        headline: String,
+        /// What to try.
+        help: String,
+        /// Where the element's name stands, if one is to blame.
+        span: Option<crate::diag::Span>,
+        /// Simulated time reached [s].
+        time: f64,
+    },
+}
+
+impl Failure {
+    /// No start was found.
+    pub fn start(circuit: &Circuit, error: StartError) -> Self {
+        let explained = error.unknown.map(|unknown| circuit.explain(unknown));
+        let whose = explained.as_ref().map_or(String::new(), |explained| {
+            format!(" for {}", explained.words)
+        });
+        Failure::Stopped {
+            headline: format!("no starting state was found{whose}: {}", error.cause),
+            help: "try `start: zero` in the transient, or look at the element named".into(),
+            span: explained.and_then(|explained| explained.span),
+            time: 0.0,
+        }
+    }
+
+    /// The march ended early.
+    pub fn march(circuit: &Circuit, error: MarchError) -> Self {
+        let explained = error.unknown.map(|unknown| circuit.explain(unknown));
+        let whose = explained.as_ref().map_or(String::new(), |explained| {
+            format!(" in {}", explained.words)
+        });
+        Failure::Stopped {
+            headline: format!("the simulation stopped at {:.6e} s{whose}: {}", error.time, error.cause),
+            help: "a small capacitance across the element, a longer transition or a looser accuracy may help".into(),
+            span: explained.and_then(|explained| explained.span),
+            time: error.time,
+        }
+    }
+}
+
+/// One thing that the observer of a simulation is shown.
+pub enum Shown<'a> {
+    /// The start.
+    Start(Point<'a>),
+    /// A step.
+    Step(&'a crate::dae::Step<'a>),
+    /// An event, already in the log.
+    Event {
+        /// Instant [s].
+        time: f64,
+        /// Unknowns and modes before it.
+        before: Point<'a>,
+        /// Unknowns and modes after it.
+        after: Point<'a>,
+        /// Elements that opened or closed.
+        happened: &'a [(usize, Happening)],
+    },
+}
+
+/// The observer's face: it sees the log of events up to now.
+pub type Watcher<'a> = dyn FnMut(&Circuit, Shown<'_>, &EventLog) -> ControlFlow<()> + 'a;
+
+/// A circuit with its start and its tolerances, ready to be run.
+pub struct Simulation<'a> {
+    /// The circuit.
+    pub circuit: &'a Circuit,
+    /// The numbers.
+    pub settings: Settings,
+    /// The method.
+    pub method: &'static Method,
+}
+
+/// Accuracy of the pilot run.
+const PILOT: f64 = 1e-2;
+
+impl Simulation<'_> {
+    /// Finds the swings of all unknowns by a quick pilot run.
+    pub fn pilot(&self, wishes: Vec<Wish>) -> Result<Vec<f64>, Failure> {
+        let mut swings = Swings::new(self.circuit.unknowns.len(), wishes);
+        let loose = self.pilot_tolerances();
+        self.run(&loose, &mut |_, shown, log| {
+            if let Shown::Step(step) = shown {
+                swings.step(step, log);
+            }
+            ControlFlow::Continue(())
+        })?;
+        Ok(swings.scales(self.circuit))
+    }
+
+    /// Tolerances of the pilot run: relative, above a floor that is small for what it measures.
+    fn pilot_tolerances(&self) -> Tolerances {
+        use crate::elements::Measure;
+        let floor = |measure: Measure| match measure {
+            Measure::Voltage => 1e-3,
+            Measure::Current => 1e-5,
+            Measure::FluxLinkage => 1e-7,
+            _ => 1e-6,
+        };
+        Tolerances {
+            absolute: self
+                .circuit
+                .unknowns
+                .iter()
+                .map(|unknown| floor(unknown.measure))
+                .collect(),
+            relative: PILOT,
+        }
+    }
+
+    /// Runs at the accuracy asked, with scales from a pilot run.
+    pub fn run_scaled(
+        &self,
+        scales: &[f64],
+        watcher: &mut Watcher<'_>,
+    ) -> Result<(Statistics, Ending), Failure> {
+        self.run(&tolerances(scales, self.settings.accuracy), watcher)
+    }
+
+    /// Runs with given tolerances.
+    pub fn run(
+        &self,
+        fine: &Tolerances,
+        watcher: &mut Watcher<'_>,
+    ) -> Result<(Statistics, Ending), Failure> {
+        let circuit = self.circuit;
+        let (state, happened) = start(circuit, self.settings.start)?;
+        let mut log = EventLog::default();
+        for (k, what) in happened {
+            log.note(&owner(circuit, k), what, 0.0);
+        }
+        if watcher(circuit, Shown::Start(point(&state)), &log).is_break() {
+            return Ok((Statistics::default(), Ending::Stopped));
+        }
+        let mut march = March::new(self.method, state);
+        let span = Span {
+            longest_step: self.settings.longest_step,
+            ..Span::new(self.settings.duration, fine)
+        };
+        let ending = march
+            .run(circuit, span, &mut |advance| match advance {
+                Advance::Start { .. } => ControlFlow::Continue(()),
+                Advance::Step(step) => watcher(circuit, Shown::Step(step), &log),
+                Advance::Event {
+                    time,
+                    causes,
+                    x_before,
+                    x_after,
+                    mode_before,
+                    mode_after,
+                } => {
+                    let (mut x, mut mode) = (x_before.to_vec(), mode_before.to_vec());
+                    let mut happened = Vec::new();
+                    for cause in *causes {
+                        circuit.take(*cause, *time, &mut x, &mut mode, &mut |k, what| {
+                            happened.push((k, what))
+                        });
+                    }
+                    for &(k, what) in &happened {
+                        log.note(&owner(circuit, k), what, *time);
+                    }
+                    let before = Point {
+                        time: *time,
+                        x: x_before,
+                        mode: mode_before,
+                    };
+                    let after = Point {
+                        time: *time,
+                        x: x_after,
+                        mode: mode_after,
+                    };
+                    watcher(
+                        circuit,
+                        Shown::Event {
+                            time: *time,
+                            before,
+                            after,
+                            happened: &happened,
+                        },
+                        &log,
+                    )
+                }
+            })
+            .map_err(|error| Failure::march(circuit, error))?;
+        Ok((march.counted, ending))
+    }
+}
+
+fn point(state: &State) -> Point<'_> {
+    Point {
+        time: state.time,
+        x: &state.x,
+        mode: &state.mode,
+    }
+}
+
+fn owner(circuit: &Circuit, entry: usize) -> Owner {
+    Owner {
+        element: circuit.entries[entry].name.clone(),
+        winding: None,
+    }
+}

@@ -1,0 +1,172 @@
+//! Where a simulation begins: at rest or uncharged, with the events of time zero taken.
+
+use super::simulate::Failure;
+use super::task::Start;
+use crate::circuit::Circuit;
+use crate::circuit::checks::inductive_loop;
+use crate::dae::{
+    Cause, Evaluation, Point, State, System, Tolerances, Trouble, consistent_start, operating_point,
+};
+use crate::elements::{Happening, Measure};
+
+/// Rounds in which watches may change their switches at the start before that counts as chattering.
+const MOST_ROUNDS: usize = 32;
+
+/// A consistent state at time zero, and what happened at that very instant.
+pub fn start(circuit: &Circuit, from: Start) -> Result<(State, Vec<(usize, Happening)>), Failure> {
+    let tolerances = fine(circuit);
+    let mut state = State {
+        time: 0.0,
+        x: vec![0.0; circuit.size()],
+        mode: circuit.start_mode(),
+    };
+    if from == Start::OperatingPoint
+        && let Some(diagnostic) = inductive_loop(circuit)
+    {
+        return Err(Failure::Refused(Box::new(diagnostic)));
+    }
+    let mut settled = false;
+    for _ in 0..MOST_ROUNDS {
+        solve(circuit, from, &mut state, &tolerances)?;
+        if !watches_change(circuit, &mut state) {
+            settled = true;
+            break;
+        }
+    }
+    if !settled {
+        let cause = Trouble::Chattering { guard: None };
+        return Err(Failure::start(
+            circuit,
+            crate::dae::StartError {
+                unknown: None,
+                cause,
+            },
+        ));
+    }
+    let happened = first_instant(circuit, &mut state, &tolerances)?;
+    Ok((state, happened))
+}
+
+/// The state at rest with given modes; no event is taken.
+pub fn at_rest(circuit: &Circuit, mode: Vec<f64>) -> Result<State, Failure> {
+    let mut state = State {
+        time: 0.0,
+        x: vec![0.0; circuit.size()],
+        mode,
+    };
+    if let Some(diagnostic) = inductive_loop(circuit) {
+        return Err(Failure::Refused(Box::new(diagnostic)));
+    }
+    solve(circuit, Start::OperatingPoint, &mut state, &fine(circuit))?;
+    Ok(state)
+}
+
+fn solve(
+    circuit: &Circuit,
+    from: Start,
+    state: &mut State,
+    tolerances: &Tolerances,
+) -> Result<(), Failure> {
+    match from {
+        Start::OperatingPoint => {
+            let nodes: Vec<usize> = (0..circuit.node_names.len()).collect();
+            operating_point(circuit, 0.0, &state.mode, &mut state.x, tolerances, &nodes)
+        }
+        Start::Zero => {
+            let charges = circuit.initial_charges();
+            consistent_start(
+                circuit,
+                0.0,
+                &state.mode,
+                &charges,
+                &mut state.x,
+                tolerances,
+            )
+        }
+    }
+    .map(|_| ())
+    .map_err(|error| Failure::start(circuit, error))
+}
+
+/// Tolerances of a starting state: far below anything that a run resolves.
+fn fine(circuit: &Circuit) -> Tolerances {
+    let absolute = circuit
+        .unknowns
+        .iter()
+        .map(|unknown| match unknown.measure {
+            Measure::Voltage => 1e-7,
+            Measure::Current => 1e-10,
+            Measure::FluxLinkage => 1e-11,
+            _ => 1e-9,
+        })
+        .collect();
+    Tolerances {
+        absolute,
+        relative: 1e-8,
+    }
+}
+
+/// Lets every watch whose threshold is passed already change its switch at once; true where one did.
+fn watches_change(circuit: &Circuit, state: &mut State) -> bool {
+    let mut guards = vec![-1.0; circuit.guard_size()];
+    circuit.guards(
+        Point {
+            time: 0.0,
+            x: &state.x,
+            mode: &state.mode,
+        },
+        &mut guards,
+    );
+    let mut changed = false;
+    for (which, guard) in guards.iter().enumerate() {
+        if *guard >= 0.0 {
+            changed |= circuit.transition(Cause::Guard(which), 0.0, &mut state.x, &mut state.mode);
+        }
+    }
+    if changed {
+        // At a start a switch is where it is commanded to be, not on its way.
+        for entry in &circuit.entries {
+            if let (Some(switching), false) = (entry.element.switching(), entry.guards.is_empty()) {
+                let own = &mut state.mode[entry.modes.clone()];
+                let due = switching.next_event(0.0, own);
+                if due.is_finite() {
+                    switching.at_instant(due, own);
+                }
+            }
+        }
+    }
+    changed
+}
+
+/// Takes the clock's events of time zero.
+fn first_instant(
+    circuit: &Circuit,
+    state: &mut State,
+    tolerances: &Tolerances,
+) -> Result<Vec<(usize, Happening)>, Failure> {
+    let mut happened = Vec::new();
+    let before = state.mode.clone();
+    circuit.take(
+        Cause::Time,
+        0.0,
+        &mut state.x,
+        &mut state.mode,
+        &mut |k, what| happened.push((k, what)),
+    );
+    if before == state.mode {
+        return Ok(happened);
+    }
+    let mut out = Evaluation::default();
+    circuit.evaluate(
+        Point {
+            time: 0.0,
+            x: &state.x,
+            mode: &before,
+        },
+        false,
+        &mut out,
+    );
+    consistent_start(circuit, 0.0, &state.mode, &out.q, &mut state.x, tolerances)
+        .map_err(|error| Failure::start(circuit, error))?;
+    Ok(happened)
+}

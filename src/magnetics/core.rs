@@ -60,7 +60,10 @@ impl Core {
         let mut geometry = self.shape.derive(values, winding)?;
         let magnetized = match &self.material {
             Some(material) => material.derive(values, temperature)?,
-            None => Magnetized { curve: Arc::new(Linear::AIR), remarks: Vec::new() },
+            None => Magnetized {
+                curve: Arc::new(Linear::AIR),
+                remarks: Vec::new(),
+            },
         };
         geometry.remarks.extend(magnetized.remarks);
         Ok((Path::new(&geometry, magnetized.curve), geometry))
@@ -70,11 +73,23 @@ impl Core {
     ///
     /// # Errors
     /// As [`Core::path`].
-    pub fn wound(&self, values: &Values, winding: &WindingPlan, temperature: f64) -> Result<Wound, Fault> {
+    pub fn wound(
+        &self,
+        values: &Values,
+        winding: &WindingPlan,
+        temperature: f64,
+    ) -> Result<Wound, Fault> {
         let (path, geometry) = self.path(values, Some(winding), temperature)?;
-        let resistance = geometry.mean_turn.and_then(|turn| winding.resistance(turn, temperature));
+        let resistance = geometry
+            .mean_turn
+            .and_then(|turn| winding.resistance(turn, temperature));
         let remarks = geometry.remarks.clone();
-        Ok(Wound { geometry, linkage: Linkage::new(path, winding.turns as f64), resistance, remarks })
+        Ok(Wound {
+            geometry,
+            linkage: Linkage::new(path, winding.turns as f64),
+            resistance,
+            remarks,
+        })
     }
 }
 
@@ -85,13 +100,19 @@ impl Wound {
         let knee = self.linkage.current_at_70_percent();
         let linkage = operating_current.map(|current| self.linkage.linkage_at(current));
         // Half as far again as what matters; a coil of which nothing is known is shown up to an ampere.
-        let reach = 1.5 * knee.into_iter().chain(operating_current.map(f64::abs)).fold(0.0, f64::max);
+        let reach = 1.5
+            * knee
+                .into_iter()
+                .chain(operating_current.map(f64::abs))
+                .fold(0.0, f64::max);
         Figures {
             inductance_at_zero: self.linkage.inductance_at_zero(),
             current_at_70_percent: knee,
             stored_energy: linkage.map(|linkage| self.linkage.energy(linkage)),
             peak_flux_density: linkage.map(|linkage| self.linkage.peak_flux_density(linkage).abs()),
-            curve: self.linkage.curve(if reach > 0.0 { reach } else { 1.0 }, points),
+            curve: self
+                .linkage
+                .curve(if reach > 0.0 { reach } else { 1.0 }, points),
         }
     }
 }

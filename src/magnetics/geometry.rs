@@ -52,7 +52,10 @@ pub struct Remark {
 impl Remark {
     /// A remark.
     pub fn new(word: &'static str, text: impl Into<String>) -> Self {
-        Remark { word, text: text.into() }
+        Remark {
+            word,
+            text: text.into(),
+        }
     }
 }
 
@@ -97,7 +100,11 @@ impl Geometry {
 
     /// A coil in air whose flux per ampere-turn is `permeance` [H]; `area` [m²] is that of the mean turn.
     pub fn in_air(length: f64, area: f64, permeance: f64) -> Self {
-        Geometry { iron: 0.0, air: MU0 * area / permeance, ..Geometry::closed(length, area) }
+        Geometry {
+            iron: 0.0,
+            air: MU0 * area / permeance,
+            ..Geometry::closed(length, area)
+        }
     }
 
     /// Puts a gap into the path: in series with the material, shorter by its fringing factor.

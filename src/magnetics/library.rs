@@ -11,14 +11,26 @@ use std::sync::Arc;
 
 /// The keys that this room reads at the top of a netlist.
 pub const KEYS: &[Key] = &[
-    Key::optional("materials", Takes::Other("a mapping of names to materials"), "magnetic materials by name"),
-    Key::optional("cores", Takes::Other("a mapping of names to cores"), "cores by name"),
+    Key::optional(
+        "materials",
+        Takes::Other("a mapping of names to materials"),
+        "magnetic materials by name",
+    ),
+    Key::optional(
+        "cores",
+        Takes::Other("a mapping of names to cores"),
+        "cores by name",
+    ),
 ];
 
 /// Keys that every core has.
 pub const CORE_KEYS: &[Key] = &[
     Key::required("shape", Takes::Word(&shapes::WORDS), "the core's shape"),
-    Key::optional("material", Takes::Name("a material"), "what fills it; air unless said"),
+    Key::optional(
+        "material",
+        Takes::Name("a material"),
+        "what fills it; air unless said",
+    ),
 ];
 
 /// Named materials and cores.
@@ -32,7 +44,11 @@ pub struct Library<'a> {
 impl<'a> Library<'a> {
     /// Reads both mappings of a netlist's top, whose table has [`KEYS`].
     pub fn read(top: &Fields<'a>) -> Self {
-        let mut library = Library { reader: top.reader(), materials: BTreeMap::new(), cores: BTreeMap::new() };
+        let mut library = Library {
+            reader: top.reader(),
+            materials: BTreeMap::new(),
+            cores: BTreeMap::new(),
+        };
         for entry in top.entries("materials") {
             let material = materials::read(&entry, library.reader);
             library.materials.insert(entry.name.text, material);
@@ -52,9 +68,19 @@ impl<'a> Library<'a> {
             fields.missing(key);
             return None;
         };
-        let Some(name) = node.text() else { return self.core_at(node, &path) };
+        let Some(name) = node.text() else {
+            return self.core_at(node, &path);
+        };
         let known = self.cores.keys().map(String::as_str);
-        self.find(&self.cores, known, &Named { text: name.to_owned(), span: node.span }, ("core", "cores"))
+        self.find(
+            &self.cores,
+            known,
+            &Named {
+                text: name.to_owned(),
+                span: node.span,
+            },
+            ("core", "cores"),
+        )
     }
 
     /// Names of the cores, sorted.
@@ -70,11 +96,18 @@ impl<'a> Library<'a> {
     fn core_at(&self, node: &'a Node, path: &str) -> Option<Arc<Core>> {
         let fields = Fields::new(node, path, CORE_KEYS, self.reader);
         let kind = self.shape(&fields)?;
-        let fields = kind.keys.iter().fold(fields, |fields, table| fields.also(table));
+        let fields = kind
+            .keys
+            .iter()
+            .fold(fields, |fields, table| fields.also(table));
         fields.finish();
         let material = self.material(&fields, kind);
         let shape = (kind.read)(&fields)?;
-        Some(Arc::new(Core { path: path.to_owned(), shape, material: material? }))
+        Some(Arc::new(Core {
+            path: path.to_owned(),
+            shape,
+            material: material?,
+        }))
     }
 
     fn shape(&self, fields: &Fields<'a>) -> Option<&'static ShapeKind> {
@@ -90,12 +123,19 @@ impl<'a> Library<'a> {
         }
         if !kind.takes_material {
             let headline = format!("a {} is a coil in air and takes no `material`", kind.word);
-            fields.error("material", "conflicting-keys", headline, "nothing to fill", None);
+            fields.error(
+                "material",
+                "conflicting-keys",
+                headline,
+                "nothing to fill",
+                None,
+            );
             return None;
         }
         let name = fields.name("material")?;
         let known = self.materials.keys().map(String::as_str);
-        self.find(&self.materials, known, &name, ("material", "materials")).map(Some)
+        self.find(&self.materials, known, &name, ("material", "materials"))
+            .map(Some)
     }
 
     /// Looks a name up, or reports it with the nearest known one.
@@ -118,7 +158,9 @@ impl<'a> Library<'a> {
         } else {
             format!("{what} takes the name of an entry of `{place}`")
         };
-        self.reader.sink.report(Diagnostic::error("unknown-name", headline).at(name.span, label));
+        self.reader
+            .sink
+            .report(Diagnostic::error("unknown-name", headline).at(name.span, label));
         None
     }
 }

@@ -101,7 +101,9 @@ impl Linkage {
     /// Points at evenly spaced currents from 0 to `up_to` [A], both included (2 points at least).
     pub fn curve(&self, up_to: f64, points: usize) -> Vec<CurvePoint> {
         let last = points.max(2) - 1;
-        (0..=last).map(|k| self.point(up_to * k as f64 / last as f64)).collect()
+        (0..=last)
+            .map(|k| self.point(up_to * k as f64 / last as f64))
+            .collect()
     }
 
     /// The point of the curve at a winding `current` [A].
@@ -119,15 +121,18 @@ impl Linkage {
 #[cfg(test)]
 mod tests {
     use super::*;
+    use crate::magnetics::MU0;
     use crate::magnetics::geometry::Geometry;
     use crate::magnetics::materials::Smooth;
-    use crate::magnetics::MU0;
     use std::sync::Arc;
 
     fn relay() -> Linkage {
         // The design's example: 60 mm of iron, 50 mm², 0.15 mm gap, mu_i 3000, 1.5 T, 4000 turns.
         let geometry = Geometry::closed(0.06, 5e-5).with_gap(0.15e-3, None);
-        Linkage::new(Path::new(&geometry, Arc::new(Smooth::new(3000.0, 1.5))), 4000.0)
+        Linkage::new(
+            Path::new(&geometry, Arc::new(Smooth::new(3000.0, 1.5))),
+            4000.0,
+        )
     }
 
     #[test]
@@ -164,7 +169,10 @@ mod tests {
         let curve = relay.curve(0.2, 4001);
         let co_energy: f64 = curve
             .windows(2)
-            .map(|pair| 0.5 * (pair[0].flux_linkage + pair[1].flux_linkage) * (pair[1].current - pair[0].current))
+            .map(|pair| {
+                0.5 * (pair[0].flux_linkage + pair[1].flux_linkage)
+                    * (pair[1].current - pair[0].current)
+            })
             .sum();
         let last = curve[4000];
         let product = last.flux_linkage * last.current;

@@ -2,9 +2,9 @@
 //!
 //! F = H(B) iron + (B/mu0) air with B = flux/area: the design's law of `effective`.
 
+use super::MU0;
 use super::geometry::Geometry;
 use super::materials::Magnetization;
-use super::MU0;
 use crate::math::root;
 use std::sync::Arc;
 
@@ -41,7 +41,10 @@ impl Path {
     pub fn magnetomotive(&self, flux: f64) -> (f64, f64) {
         let b = flux / self.area;
         let (h, slope) = self.material.field(b);
-        (h * self.iron + b * self.air, (slope * self.iron + self.air) / self.area)
+        (
+            h * self.iron + b * self.air,
+            (slope * self.iron + self.air) / self.area,
+        )
     }
 
     /// Flux [Wb] at a magnetomotive force [A]: the inverse of `magnetomotive`, to the last digits.
@@ -54,7 +57,9 @@ impl Path {
         // chord of the steepest material is not known, so the upper end is found by doubling.
         let low = force * self.area / (self.iron / MU0 + self.air);
         let excess = |flux: f64| self.magnetomotive(flux).0 - force;
-        let Some(high) = root::above(excess, 2.0 * low) else { return f64::NAN };
+        let Some(high) = root::above(excess, 2.0 * low) else {
+            return f64::NAN;
+        };
         let first = force / self.magnetomotive(0.0).1;
         let slope = |flux: f64| (excess(flux), self.magnetomotive(flux).1);
         root::increasing(slope, 0.5 * low, high, first).copysign(magnetomotive)
@@ -79,7 +84,11 @@ impl Path {
     /// Field strength in the material [A/m]; in air where the path is all air.
     pub fn field_strength(&self, flux: f64) -> f64 {
         let b = flux / self.area;
-        if self.iron > 0.0 { self.material.field(b).0 } else { b / MU0 }
+        if self.iron > 0.0 {
+            self.material.field(b).0
+        } else {
+            b / MU0
+        }
     }
 
     /// The flux density [T] up to which the material's data reach, where they end.
@@ -101,7 +110,8 @@ impl Path {
         // The peak is at zero or at a bend; from there on, the first stretch that ends above the goal holds the point.
         let mut places = vec![0.0];
         places.extend(&bends);
-        let peak = (0..places.len()).min_by(|&j, &k| slope(places[j]).total_cmp(&slope(places[k])))?;
+        let peak =
+            (0..places.len()).min_by(|&j, &k| slope(places[j]).total_cmp(&slope(places[k])))?;
         let excess = |b: f64| slope(b) - goal;
         for pair in places[peak..].windows(2) {
             if excess(pair[1]) > 0.0 {
@@ -123,7 +133,11 @@ mod tests {
         let ring = Geometry::closed(0.1, 5e-5);
         let gapped = Geometry::closed(0.06, 5e-5).with_gap(0.15e-3, None);
         let air = Geometry::in_air(0.02, 1e-4, 3e-8);
-        let steel = Table::new(&[20.0, 60.0, 200.0, 1000.0, 5000.0], &[0.05, 0.9, 1.3, 1.5, 1.7]).unwrap();
+        let steel = Table::new(
+            &[20.0, 60.0, 200.0, 1000.0, 5000.0],
+            &[0.05, 0.9, 1.3, 1.5, 1.7],
+        )
+        .unwrap();
         vec![
             Path::new(&ring, Arc::new(Smooth::new(3000.0, 0.45))),
             Path::new(&gapped, Arc::new(Smooth::new(3000.0, 1.5))),
@@ -141,7 +155,10 @@ mod tests {
                 let (force, slope) = path.magnetomotive(flux);
                 let back = path.flux(force);
                 let rounding = 4e-16 * (1.0 + force / (flux * slope));
-                assert!((back / flux - 1.0).abs() < rounding, "{path:?} at {flux}: {back}");
+                assert!(
+                    (back / flux - 1.0).abs() < rounding,
+                    "{path:?} at {flux}: {back}"
+                );
                 assert_eq!(path.flux(-force), -back);
             }
             assert_eq!(path.flux(0.0), 0.0);
@@ -156,10 +173,17 @@ mod tests {
                 let (from, to) = (2.5e-6 * f64::from(step), 2.5e-6 * f64::from(step + 1));
                 let sum: f64 = (0..64)
                     .map(|k| (to - from) / 64.0 * f64::from(k) + from)
-                    .map(|low| rule.integrate(low, low + (to - from) / 64.0, |flux| path.magnetomotive(flux).0))
+                    .map(|low| {
+                        rule.integrate(low, low + (to - from) / 64.0, |flux| {
+                            path.magnetomotive(flux).0
+                        })
+                    })
                     .sum();
                 let gained = path.energy(to) - path.energy(from);
-                assert!((gained / sum - 1.0).abs() < 1e-7, "{path:?} at {to}: {gained} {sum}");
+                assert!(
+                    (gained / sum - 1.0).abs() < 1e-7,
+                    "{path:?} at {to}: {gained} {sum}"
+                );
             }
         }
     }
@@ -180,7 +204,10 @@ mod tests {
                 assert!(path.magnetomotive(further).1 * 0.7 > start);
             }
         }
-        assert_eq!(straight, 2, "the linear ring and the air coil have no such point");
+        assert_eq!(
+            straight, 2,
+            "the linear ring and the air coil have no such point"
+        );
     }
 
     #[test]

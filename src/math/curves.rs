@@ -53,7 +53,12 @@ impl Monotone {
             excess.push(rise.max(0.0));
         }
         let slope = slopes(x, &excess, start - floor, end - floor);
-        Ok(Monotone { x: x.to_vec(), y: y.to_vec(), slope: slope.iter().map(|s| s + floor).collect(), floor })
+        Ok(Monotone {
+            x: x.to_vec(),
+            y: y.to_vec(),
+            slope: slope.iter().map(|s| s + floor).collect(),
+            floor,
+        })
     }
 
     /// Abscissas of the points.
@@ -106,7 +111,11 @@ impl Monotone {
     }
 
     fn beyond(&self, end: usize, x: f64) -> (f64, f64) {
-        let slope = if x == self.x[end] { self.slope[end] } else { self.floor };
+        let slope = if x == self.x[end] {
+            self.slope[end]
+        } else {
+            self.floor
+        };
         (self.y[end] + self.floor * (x - self.x[end]), slope)
     }
 }
@@ -140,13 +149,23 @@ impl Piece {
         let run = curve.x[k + 1] - curve.x[k];
         let rise = curve.y[k + 1] - curve.y[k];
         let (m0, m1) = (curve.slope[k] * run, curve.slope[k + 1] * run);
-        Piece { from: curve.x[k], run, y: curve.y[k], m: m0, p: 3.0 * rise - 2.0 * m0 - m1, r: m0 + m1 - 2.0 * rise }
+        Piece {
+            from: curve.x[k],
+            run,
+            y: curve.y[k],
+            m: m0,
+            p: 3.0 * rise - 2.0 * m0 - m1,
+            r: m0 + m1 - 2.0 * rise,
+        }
     }
 
     #[inline]
     fn at(&self, t: f64) -> (f64, f64) {
         let value = self.y + t * (self.m + t * (self.p + t * self.r));
-        (value, (self.m + t * (2.0 * self.p + t * 3.0 * self.r)) / self.run)
+        (
+            value,
+            (self.m + t * (2.0 * self.p + t * 3.0 * self.r)) / self.run,
+        )
     }
 
     /// Newton from the chord, kept in its bracket: three or four rounds.
@@ -184,7 +203,11 @@ mod tests {
         }
         for step in -100..1000 {
             let x = f64::from(step) * 0.01;
-            assert!(curve.at(x).1 >= 0.1 - 1e-12, "slope {} at {x}", curve.at(x).1);
+            assert!(
+                curve.at(x).1 >= 0.1 - 1e-12,
+                "slope {} at {x}",
+                curve.at(x).1
+            );
         }
     }
 
@@ -195,7 +218,10 @@ mod tests {
             let x = f64::from(step) * 0.01 + 0.003;
             let h = 1e-6;
             let difference = (curve.at(x + h).0 - curve.at(x - h).0) / (2.0 * h);
-            assert!((difference - curve.at(x).1).abs() < 1e-5 * (1.0 + difference), "{x}");
+            assert!(
+                (difference - curve.at(x).1).abs() < 1e-5 * (1.0 + difference),
+                "{x}"
+            );
         }
         for x in curve.x() {
             let jump = curve.at(x + 1e-9).1 - curve.at(x - 1e-9).1;
@@ -211,7 +237,10 @@ mod tests {
             let y = f64::from(step) * 0.01;
             let (x, slope) = curve.inverse(y);
             let (back, rise) = curve.at(x);
-            assert!((back - y).abs() < 2e-15 * (1.0 + y.abs()) + 1e-15 * rise, "{y}: {back}");
+            assert!(
+                (back - y).abs() < 2e-15 * (1.0 + y.abs()) + 1e-15 * rise,
+                "{y}: {back}"
+            );
             assert!((slope - rise).abs() < 1e-9 * rise, "{y}: {slope} {rise}");
         }
     }
@@ -227,7 +256,10 @@ mod tests {
                 .map(|k| f64::from(k) * 1e-3)
                 .map(|x| (curve.at(x).0 - x.exp()).abs())
                 .fold(0.0, f64::max);
-            assert!(last.is_nan() || (last / error).log2() > 2.9, "{n}: {error} after {last}");
+            assert!(
+                last.is_nan() || (last / error).log2() > 2.9,
+                "{n}: {error} after {last}"
+            );
             last = error;
         }
     }

@@ -52,7 +52,12 @@ impl Elliptic {
         let first = FRAC_PI_2 / a;
         let c = first * reduced;
         let d = 0.5 * first * (1.0 + modulus2 * reduced);
-        Elliptic { first, second: first - modulus2 * d, d, c }
+        Elliptic {
+            first,
+            second: first - modulus2 * d,
+            d,
+            c,
+        }
     }
 }
 
@@ -124,8 +129,16 @@ mod tests {
         for k2 in [1e-12f64, 1e-8, 1e-6] {
             let e = Elliptic::complementary((1.0 - k2).sqrt());
             let (c, d) = (PI / 16.0 * (1.0 + 0.75 * k2), PI / 4.0 * (1.0 + 0.375 * k2));
-            assert!((e.c / c - 1.0).abs() < 3.0 * k2 * k2 + 1e-15, "{k2}: {} {c}", e.c);
-            assert!((e.d / d - 1.0).abs() < 3.0 * k2 * k2 + 1e-15, "{k2}: {} {d}", e.d);
+            assert!(
+                (e.c / c - 1.0).abs() < 3.0 * k2 * k2 + 1e-15,
+                "{k2}: {} {c}",
+                e.c
+            );
+            assert!(
+                (e.d / d - 1.0).abs() < 3.0 * k2 * k2 + 1e-15,
+                "{k2}: {} {d}",
+                e.d
+            );
         }
     }
 
@@ -137,9 +150,15 @@ mod tests {
             let k2 = complement * complement;
             let series = 0.5 * k2 * (log - 0.5) + 3.0 / 16.0 * k2 * k2 * (log - 13.0 / 12.0);
             let reached = second_kind_less_one(complement);
-            assert!((reached / series - 1.0).abs() < 1e-13 + k2 * k2, "{complement}: {reached} {series}");
+            assert!(
+                (reached / series - 1.0).abs() < 1e-13 + k2 * k2,
+                "{complement}: {reached} {series}"
+            );
         }
-        let (low, high) = (second_kind_less_one(0.5), Elliptic::complementary(0.5).second - 1.0);
+        let (low, high) = (
+            second_kind_less_one(0.5),
+            Elliptic::complementary(0.5).second - 1.0,
+        );
         assert!((low - high).abs() < 1e-15);
     }
 }

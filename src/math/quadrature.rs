@@ -40,7 +40,9 @@ impl Rule {
     /// Points and weights moved to [`from`, `to`].
     pub fn over(&self, from: f64, to: f64) -> impl Iterator<Item = (f64, f64)> + '_ {
         let span = to - from;
-        self.points.iter().map(move |&(x, weight)| (from + span * x, span * weight))
+        self.points
+            .iter()
+            .map(move |&(x, weight)| (from + span * x, span * weight))
     }
 
     /// ∫ f(x) dx from `from` to `to`.
@@ -54,7 +56,10 @@ fn legendre(n: usize, x: f64) -> (f64, f64) {
     let (mut before, mut value) = (1.0, x);
     for k in 2..=n {
         let k = k as f64;
-        (before, value) = (value, ((2.0 * k - 1.0) * x * value - (k - 1.0) * before) / k);
+        (before, value) = (
+            value,
+            ((2.0 * k - 1.0) * x * value - (k - 1.0) * before) / k,
+        );
     }
     (value, n as f64 * (x * value - before) / (x * x - 1.0))
 }
@@ -70,10 +75,16 @@ mod tests {
             for degree in 0..2 * n as i32 {
                 let reached = rule.integrate(0.0, 1.0, |x| x.powi(degree));
                 let exact = 1.0 / f64::from(degree + 1);
-                assert!((reached / exact - 1.0).abs() < 1e-13, "n = {n}, degree {degree}: {reached}");
+                assert!(
+                    (reached / exact - 1.0).abs() < 1e-13,
+                    "n = {n}, degree {degree}: {reached}"
+                );
             }
             let beyond = rule.integrate(-1.0, 1.0, |x| legendre(n, x).0.powi(2));
-            assert!(beyond.abs() < 1e-25, "the square of P_n vanishes on its own zeros");
+            assert!(
+                beyond.abs() < 1e-25,
+                "the square of P_n vanishes on its own zeros"
+            );
         }
     }
 }

@@ -5,8 +5,17 @@
 /// Newton steps that leave the bracket, or that shrink it too slowly, are replaced by halving, so the end is
 /// reached for every continuous increasing `f`. Where `f` has no zero inside, the nearer end is approached.
 /// Accuracy: the last few digits of x.
-pub fn increasing(mut f: impl FnMut(f64) -> (f64, f64), mut low: f64, mut high: f64, guess: f64) -> f64 {
-    let mut x = if guess > low && guess < high { guess } else { 0.5 * (low + high) };
+pub fn increasing(
+    mut f: impl FnMut(f64) -> (f64, f64),
+    mut low: f64,
+    mut high: f64,
+    guess: f64,
+) -> f64 {
+    let mut x = if guess > low && guess < high {
+        guess
+    } else {
+        0.5 * (low + high)
+    };
     let mut last = high - low;
     for _ in 0..200 {
         let (value, slope) = f(x);

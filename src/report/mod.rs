@@ -7,4 +7,5 @@ pub mod engineering;
 pub mod files;
 pub mod json;
 pub mod plots;
+pub mod run;
 pub mod tables;

@@ -63,7 +63,11 @@ mod tests {
     #[test]
     fn the_slope_is_the_derivative() {
         let h = 1e-6;
-        for (one, other, d) in [(0.02, 0.019, 0.003), (0.05, 0.01, 0.04), (0.02, 0.02, 0.005)] {
+        for (one, other, d) in [
+            (0.02, 0.019, 0.003),
+            (0.05, 0.01, 0.04),
+            (0.02, 0.02, 0.005),
+        ] {
             let difference = (mutual(one, other, d + h) - mutual(one, other, d - h)) / (2.0 * h);
             assert!((mutual_slope(one, other, d) / difference - 1.0).abs() < 1e-6);
         }

@@ -74,7 +74,11 @@ impl Integral {
         let mut sum = 0.0;
         let mut from = s;
         while from < b.max(c) {
-            let to = if 2.5 * from > b.max(c) { b.max(c) } else { 2.0 * from };
+            let to = if 2.5 * from > b.max(c) {
+                b.max(c)
+            } else {
+                2.0 * from
+            };
             for (far, weight) in self.across.over(from, to) {
                 for (near, share) in self.across.over(0.0, s) {
                     let (delta, z) = if b > c { (near, far) } else { (far, near) };
@@ -96,7 +100,9 @@ impl Integral {
         let mut sum = 0.0;
         while high > low {
             let from = if high > 3.0 * end { 0.5 * high } else { low };
-            sum += self.mean.integrate(from, high, |m| mutual(m + 0.5 * delta, m - 0.5 * delta, z));
+            sum += self
+                .mean
+                .integrate(from, high, |m| mutual(m + 0.5 * delta, m - 0.5 * delta, z));
             high = from;
         }
         (self.section.length - z) * sum
@@ -114,7 +120,11 @@ mod tests {
         // The difference is of first order in the depth over the length: halving the depth halves it.
         for length in [0.002, 0.02, 0.2] {
             let at = |depth: f64| {
-                let section = Section { inner: 0.01 - depth / 2.0, outer: 0.01 + depth / 2.0, length };
+                let section = Section {
+                    inner: 0.01 - depth / 2.0,
+                    outer: 0.01 + depth / 2.0,
+                    length,
+                };
                 permeance(section) / sheet::permeance(0.02, length) - 1.0
             };
             let (one, half) = (at(2e-5), at(1e-5));
@@ -125,10 +135,23 @@ mod tests {
 
     #[test]
     fn more_points_change_nothing() {
-        let extremes = [(0.0, 0.01, 0.01), (0.0, 0.01, 1e-4), (0.0, 0.01, 1.0), (1e-4, 0.02, 0.01), (0.01, 0.0101, 1.0),
-            (0.01, 0.03, 2e-6), (0.1, 0.1001, 0.0001), (0.01, 0.02, 0.013), (0.01, 0.010001, 0.01)];
+        let extremes = [
+            (0.0, 0.01, 0.01),
+            (0.0, 0.01, 1e-4),
+            (0.0, 0.01, 1.0),
+            (1e-4, 0.02, 0.01),
+            (0.01, 0.0101, 1.0),
+            (0.01, 0.03, 2e-6),
+            (0.1, 0.1001, 0.0001),
+            (0.01, 0.02, 0.013),
+            (0.01, 0.010001, 0.01),
+        ];
         for (inner, outer, length) in extremes {
-            let section = Section { inner, outer, length };
+            let section = Section {
+                inner,
+                outer,
+                length,
+            };
             let fine = Integral {
                 corner: Rule::legendre(40),
                 across: Rule::legendre(24),
@@ -144,8 +167,16 @@ mod tests {
 
     #[test]
     fn inductance_scales_with_size() {
-        let one = permeance(Section { inner: 0.01, outer: 0.02, length: 0.01 });
-        let three = permeance(Section { inner: 0.03, outer: 0.06, length: 0.03 });
+        let one = permeance(Section {
+            inner: 0.01,
+            outer: 0.02,
+            length: 0.01,
+        });
+        let three = permeance(Section {
+            inner: 0.03,
+            outer: 0.06,
+            length: 0.03,
+        });
         assert!((three / one - 3.0).abs() < 1e-12 && one > MU0 * 0.01);
     }
 }

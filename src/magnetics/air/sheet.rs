@@ -38,12 +38,18 @@ mod tests {
         // (Rayleigh and Niven; from memory). The neglected terms are of order x⁶ and (l/R)² ln.
         for x in [1e-9, 1e-4, 1e-3, 0.02] {
             let long = 1.0 - 4.0 / (3.0 * PI) * x + x * x / 8.0 - x.powi(4) / 64.0;
-            assert!((end_correction(x, 1.0) - long).abs() < 1e-15 + x.powi(6), "{x}");
+            assert!(
+                (end_correction(x, 1.0) - long).abs() < 1e-15 + x.powi(6),
+                "{x}"
+            );
         }
         for x in [1e3, 1e6, 1e9] {
             let radius = x / 2.0;
             let short = MU0 * radius * ((8.0 * radius).ln() - 0.5);
-            assert!((permeance(x, 1.0) / short - 1.0).abs() < 1e-14 + 2.0 / (x * x), "{x}");
+            assert!(
+                (permeance(x, 1.0) / short - 1.0).abs() < 1e-14 + 2.0 / (x * x),
+                "{x}"
+            );
         }
     }
 
@@ -51,7 +57,10 @@ mod tests {
     fn both_forms_agree_where_they_meet() {
         let length = 1.0;
         let diameter = 3f64.sqrt() * length; // k' = 1/2
-        let (low, high) = (end_correction(diameter * (1.0 - 1e-12), length), end_correction(diameter * (1.0 + 1e-12), length));
+        let (low, high) = (
+            end_correction(diameter * (1.0 - 1e-12), length),
+            end_correction(diameter * (1.0 + 1e-12), length),
+        );
         assert!((low / high - 1.0).abs() < 3e-12);
     }
 }

@@ -46,7 +46,9 @@ impl Lattice {
 
     /// Mean length of a turn [m].
     pub fn mean_turn(&self) -> f64 {
-        let wire: f64 = (0..self.used_layers()).map(|layer| self.count(layer) as f64 * self.radius(layer)).sum();
+        let wire: f64 = (0..self.used_layers())
+            .map(|layer| self.count(layer) as f64 * self.radius(layer))
+            .sum();
         2.0 * PI * wire / self.turns as f64
     }
 
@@ -76,7 +78,11 @@ impl Lattice {
         for offset in 0..count {
             // Pairs with this offset either way; the second layer has `fewer` turns, or as many.
             let forward = fewer.min(count - offset);
-            let backward = if offset == 0 { 0 } else { fewer.saturating_sub(offset) };
+            let backward = if offset == 0 {
+                0
+            } else {
+                fewer.saturating_sub(offset)
+            };
             let distance = offset as f64 * self.axial_pitch;
             sum += (forward + backward) as f64 * mutual(radius, further, distance);
         }
@@ -114,10 +120,17 @@ mod tests {
             let mut plain = 0.0;
             for (i, (r, z)) in places.iter().enumerate() {
                 for (j, (s, y)) in places.iter().enumerate() {
-                    plain += if i == j { own(*r, 0.175e-3) } else { mutual(*r, *s, z - y) };
+                    plain += if i == j {
+                        own(*r, 0.175e-3)
+                    } else {
+                        mutual(*r, *s, z - y)
+                    };
                 }
             }
-            assert!((lattice.inductance() / plain - 1.0).abs() < 1e-13, "{turns} turns in {layers} layers");
+            assert!(
+                (lattice.inductance() / plain - 1.0).abs() < 1e-13,
+                "{turns} turns in {layers} layers"
+            );
             let wire: f64 = places.iter().map(|(r, _)| 2.0 * PI * r).sum();
             assert!((lattice.mean_turn() * turns as f64 / wire - 1.0).abs() < 1e-13);
         }

@@ -15,5 +15,6 @@ pub const RULE: Rule = Rule {
 fn factor(leg: &LegGap) -> Option<f64> {
     let window = leg.window()?;
     // A gap as high as the window leaves no leg to fringe from.
-    (leg.gap < window).then(|| 1.0 + leg.gap / leg.section.area().sqrt() * (2.0 * window / leg.gap).ln())
+    (leg.gap < window)
+        .then(|| 1.0 + leg.gap / leg.section.area().sqrt() * (2.0 * window / leg.gap).ln())
 }

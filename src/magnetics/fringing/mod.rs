@@ -10,7 +10,12 @@ mod none;
 pub mod spec;
 
 /// The rules, in the order in which they are listed.
-pub const RULES: &[Rule] = &[none::RULE, mclyman::RULE, area_increase::RULE, muehlethaler::RULE];
+pub const RULES: &[Rule] = &[
+    none::RULE,
+    mclyman::RULE,
+    area_increase::RULE,
+    muehlethaler::RULE,
+];
 
 /// The rules' words.
 pub const WORDS: [&str; RULES.len()] = {
@@ -99,12 +104,14 @@ impl Section {
 impl LegGap {
     /// Height of the window, or what a centred gap makes of the leg's.
     pub fn window(&self) -> Option<f64> {
-        self.window_height.or(self.leg_height.map(|height| 2.0 * height))
+        self.window_height
+            .or(self.leg_height.map(|height| 2.0 * height))
     }
 
     /// Height of the leg beside the gap, or half of the window for a centred gap.
     pub fn leg(&self) -> Option<f64> {
-        self.leg_height.or(self.window_height.map(|height| 0.5 * height))
+        self.leg_height
+            .or(self.window_height.map(|height| 0.5 * height))
     }
 }
 
@@ -132,7 +139,10 @@ impl Rule {
             return None;
         }
         if found.is_none() {
-            let text = format!("fringing by {} means nothing at this gap; counted as none", self.word);
+            let text = format!(
+                "fringing by {} means nothing at this gap; counted as none",
+                self.word
+            );
             return Some(super::Remark::new("fringing-range", text));
         }
         // Common practice: fringing formulas are for gaps that are small against the leg.
@@ -156,7 +166,12 @@ mod tests {
         for rule in RULES {
             let at = |gap: f64| {
                 let section = Section::Rectangle(0.012, 0.012);
-                let leg = LegGap { gap, section, window_height: Some(0.026), leg_height: None };
+                let leg = LegGap {
+                    gap,
+                    section,
+                    window_height: Some(0.026),
+                    leg_height: None,
+                };
                 rule.apply(&leg).factor
             };
             assert!((at(1e-9) - 1.0).abs() < 1e-5, "{}", rule.word);
@@ -172,11 +187,21 @@ mod tests {
     #[test]
     fn a_gap_beyond_all_sense_counts_as_none_and_says_so() {
         let section = Section::Round(0.005);
-        let leg = LegGap { gap: 0.2, section, window_height: Some(0.02), leg_height: None };
+        let leg = LegGap {
+            gap: 0.2,
+            section,
+            window_height: Some(0.02),
+            leg_height: None,
+        };
         for rule in RULES {
             let fringing = rule.apply(&leg);
             assert!(fringing.factor >= 1.0);
-            assert_eq!(fringing.remark.is_some(), rule.word != "none", "{}", rule.word);
+            assert_eq!(
+                fringing.remark.is_some(),
+                rule.word != "none",
+                "{}",
+                rule.word
+            );
         }
     }
 }

@@ -9,15 +9,40 @@ const ABOUT: &str = "how the field around the gap is counted";
 /// `fringing` of a shape given by its effective figures: none unless said, with the leg's dimensions beside it.
 pub const EFFECTIVE_KEYS: &[Key] = &[
     Key::default("fringing", Takes::Word(&WORDS), "none", ABOUT),
-    Key::optional("leg_width", Takes::Quantity(LENGTH), "width of the leg at the gap"),
-    Key::optional("leg_depth", Takes::Quantity(LENGTH), "depth of the leg at the gap"),
-    Key::optional("leg_diameter", Takes::Quantity(LENGTH), "diameter of a round leg at the gap"),
-    Key::optional("window_height", Takes::Quantity(LENGTH), "height of the window along the gapped leg"),
-    Key::optional("leg_height", Takes::Quantity(LENGTH), "length of the leg on one side of the gap"),
+    Key::optional(
+        "leg_width",
+        Takes::Quantity(LENGTH),
+        "width of the leg at the gap",
+    ),
+    Key::optional(
+        "leg_depth",
+        Takes::Quantity(LENGTH),
+        "depth of the leg at the gap",
+    ),
+    Key::optional(
+        "leg_diameter",
+        Takes::Quantity(LENGTH),
+        "diameter of a round leg at the gap",
+    ),
+    Key::optional(
+        "window_height",
+        Takes::Quantity(LENGTH),
+        "height of the window along the gapped leg",
+    ),
+    Key::optional(
+        "leg_height",
+        Takes::Quantity(LENGTH),
+        "length of the leg on one side of the gap",
+    ),
 ];
 
 /// `fringing` of a drawn shape, whose dimensions give the leg.
-pub const DRAWN_KEYS: &[Key] = &[Key::default("fringing", Takes::Word(&WORDS), "muehlethaler", ABOUT)];
+pub const DRAWN_KEYS: &[Key] = &[Key::default(
+    "fringing",
+    Takes::Word(&WORDS),
+    "muehlethaler",
+    ABOUT,
+)];
 
 /// A rule and the written dimensions of the leg.
 #[derive(Clone, Debug)]
@@ -41,7 +66,12 @@ impl Spec {
         let rule = rule(fields)?;
         let section = section(fields)?;
         if rule.needs_section && matches!(section, Written::Unsaid) {
-            needed(fields, rule, "the leg's section", "`leg_width` and `leg_depth`, or `leg_diameter`");
+            needed(
+                fields,
+                rule,
+                "the leg's section",
+                "`leg_width` and `leg_depth`, or `leg_diameter`",
+            );
             return None;
         }
         let window_height = fields.positive("window_height");
@@ -50,7 +80,12 @@ impl Spec {
             needed(fields, rule, "a height", "`window_height` or `leg_height`");
             return None;
         }
-        Some(Spec { rule, section, window_height, leg_height })
+        Some(Spec {
+            rule,
+            section,
+            window_height,
+            leg_height,
+        })
     }
 
     /// The rule applied to a gap [m] (None for no gap) in a leg of `area` [m²].
@@ -62,7 +97,15 @@ impl Spec {
         };
         let height = |value: Option<Value>| value.map(|value| values[value]);
         let (window_height, leg_height) = (height(self.window_height), height(self.leg_height));
-        apply(self.rule, LegGap { gap, section, window_height, leg_height })
+        apply(
+            self.rule,
+            LegGap {
+                gap,
+                section,
+                window_height,
+                leg_height,
+            },
+        )
     }
 }
 
@@ -82,14 +125,23 @@ fn section(fields: &Fields<'_>) -> Option<Written> {
     let (width, depth) = (fields.has("leg_width"), fields.has("leg_depth"));
     if round && (width || depth) {
         let headline = "a leg is either round (`leg_diameter`) or has `leg_width` and `leg_depth`";
-        fields.error("leg_diameter", "conflicting-keys", headline, "both are written", None);
+        fields.error(
+            "leg_diameter",
+            "conflicting-keys",
+            headline,
+            "both are written",
+            None,
+        );
         return None;
     }
     if round {
         return Some(Written::Round(fields.positive("leg_diameter")?));
     }
     match (width, depth) {
-        (true, true) => Some(Written::Rectangle(fields.positive("leg_width")?, fields.positive("leg_depth")?)),
+        (true, true) => Some(Written::Rectangle(
+            fields.positive("leg_width")?,
+            fields.positive("leg_depth")?,
+        )),
         (true, false) => {
             fields.missing("leg_depth");
             None
@@ -105,5 +157,11 @@ fn section(fields: &Fields<'_>) -> Option<Written> {
 fn needed(fields: &Fields<'_>, rule: &Rule, what: &str, keys: &str) {
     let headline = format!("fringing by {} needs {what}", rule.word);
     let help = format!("write {keys} in {}", fields.path());
-    fields.error("fringing", "missing-key", headline, format!("{keys} missing"), Some(&help));
+    fields.error(
+        "fringing",
+        "missing-key",
+        headline,
+        format!("{keys} missing"),
+        Some(&help),
+    );
 }

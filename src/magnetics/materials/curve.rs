@@ -4,8 +4,8 @@
 //! point the slope is mu0. Odd: the points are those of the first quadrant. The energy is exact for the cubic.
 
 use super::{Magnetization, Magnetized, Material, MaterialKind};
-use crate::magnetics::geometry::Fault;
 use crate::magnetics::MU0;
+use crate::magnetics::geometry::Fault;
 use crate::math::curves::{Fault as CurveFault, Monotone};
 use crate::math::quadrature::two_points;
 use crate::netlist::{Fields, Key, Takes, Value, Values};
@@ -53,7 +53,9 @@ pub enum TableFault {
 impl Table {
     /// A curve through (`fields` [A/m], `flux_densities` [T]); the origin is added where it is not given.
     pub fn new(fields: &[f64], flux_densities: &[f64]) -> Result<Self, TableFault> {
-        let (Some(&h), Some(&b)) = (fields.first(), flux_densities.first()) else { return Err(TableFault::Empty) };
+        let (Some(&h), Some(&b)) = (fields.first(), flux_densities.first()) else {
+            return Err(TableFault::Empty);
+        };
         let given = h == 0.0 && b == 0.0;
         if !given && (h <= 0.0 || b <= 0.0) {
             return Err(TableFault::NotAtOrigin);
@@ -62,7 +64,9 @@ impl Table {
         let x = [origin, fields].concat();
         let y = [origin, flux_densities].concat();
         let row = |k: usize| k - origin.len();
-        let (Some(&h), Some(&b)) = (x.get(1), y.get(1)) else { return Err(TableFault::Empty) };
+        let (Some(&h), Some(&b)) = (x.get(1), y.get(1)) else {
+            return Err(TableFault::Empty);
+        };
         // Odd, so the parabola through the origin and its two neighbours is the chord itself.
         let curve = Monotone::new(&x, &y, MU0, b / h, MU0).map_err(|fault| match fault {
             CurveFault::TooFew => TableFault::Empty,
@@ -90,14 +94,23 @@ struct Written {
 }
 
 fn read(fields: &Fields<'_>) -> Option<Box<dyn Material>> {
-    let written = Written { points: fields.pairs("curve")? };
+    let written = Written {
+        points: fields.pairs("curve")?,
+    };
     let nominal = fields.reader().parameters.borrow().nominal();
-    let Err(fault) = written.table(&nominal) else { return Some(Box::new(written)) };
+    let Err(fault) = written.table(&nominal) else {
+        return Some(Box::new(written));
+    };
     let (row, headline) = fault.told();
     let items = fields.node("curve").map_or(&[][..], |node| node.items());
-    let place = items.get(row).map_or(fields.span("curve"), |item| item.span);
+    let place = items
+        .get(row)
+        .map_or(fields.span("curve"), |item| item.span);
     let diagnostic = crate::diag::Diagnostic::error("bad-curve", headline).at(place, fault.label());
-    fields.reader().sink.report(diagnostic.help("curve: [[0 A/m, 0 T], [100 A/m, 0.2 T], [400 A/m, 0.35 T]]"));
+    fields
+        .reader()
+        .sink
+        .report(diagnostic.help("curve: [[0 A/m, 0 T], [100 A/m, 0.2 T], [400 A/m, 0.35 T]]"));
     None
 }
 
@@ -112,10 +125,16 @@ impl Written {
 impl Material for Written {
     fn derive(&self, values: &Values, _temperature: f64) -> Result<Magnetized, Fault> {
         match self.table(values) {
-            Ok(table) => Ok(Magnetized { curve: Arc::new(table), remarks: Vec::new() }),
-            Err(fault) => {
-                Err(Fault { word: "bad-curve", key: "curve", text: fault.told().1, help: "check the spread of its points" })
-            }
+            Ok(table) => Ok(Magnetized {
+                curve: Arc::new(table),
+                remarks: Vec::new(),
+            }),
+            Err(fault) => Err(Fault {
+                word: "bad-curve",
+                key: "curve",
+                text: fault.told().1,
+                help: "check the spread of its points",
+            }),
         }
     }
 }
@@ -124,11 +143,29 @@ impl TableFault {
     /// The row at fault, from 0, and a sentence with rows counted from 1.
     fn told(self) -> (usize, String) {
         match self {
-            TableFault::Empty => (0, "curve needs at least one point besides the origin".into()),
-            TableFault::NotAtOrigin => (0, "curve starts at [0 A/m, 0 T] or in the first quadrant".into()),
+            TableFault::Empty => (
+                0,
+                "curve needs at least one point besides the origin".into(),
+            ),
+            TableFault::NotAtOrigin => (
+                0,
+                "curve starts at [0 A/m, 0 T] or in the first quadrant".into(),
+            ),
             TableFault::NotFinite(k) => (k, format!("row {} of curve is not finite", k + 1)),
-            TableFault::FieldFalls(k) => (k, format!("row {} of curve must have more field strength than the row before", k + 1)),
-            TableFault::BelowVacuum(k) => (k, format!("row {} of curve rises by less than mu0 from the row before", k + 1)),
+            TableFault::FieldFalls(k) => (
+                k,
+                format!(
+                    "row {} of curve must have more field strength than the row before",
+                    k + 1
+                ),
+            ),
+            TableFault::BelowVacuum(k) => (
+                k,
+                format!(
+                    "row {} of curve rises by less than mu0 from the row before",
+                    k + 1
+                ),
+            ),
         }
     }
 
@@ -158,7 +195,11 @@ impl Magnetization for Table {
     fn energy_density(&self, flux_density: f64) -> f64 {
         let b = flux_density.abs();
         let h = self.curve.inverse(b).0;
-        let known = self.curve.y().partition_point(|&y| y <= b).saturating_sub(1);
+        let known = self
+            .curve
+            .y()
+            .partition_point(|&y| y <= b)
+            .saturating_sub(1);
         self.energy[known] + work(&self.curve, self.curve.x()[known], h)
     }
 
@@ -181,7 +222,11 @@ mod tests {
     use crate::math::quadrature::Rule;
 
     fn knee() -> Table {
-        Table::new(&[0.0, 20.0, 60.0, 200.0, 1000.0, 5000.0, 40_000.0], &[0.0, 0.05, 0.9, 1.3, 1.5, 1.7, 2.0]).unwrap()
+        Table::new(
+            &[0.0, 20.0, 60.0, 200.0, 1000.0, 5000.0, 40_000.0],
+            &[0.0, 0.05, 0.9, 1.3, 1.5, 1.7, 2.0],
+        )
+        .unwrap()
     }
 
     #[test]
@@ -200,7 +245,10 @@ mod tests {
             assert!((table.flux_density(-h).0 + b).abs() < 1e-15);
         }
         assert_eq!(table.known_to(), Some(2.0));
-        assert_eq!(Table::new(&[20.0, 60.0], &[0.05, 0.9]), Table::new(&[0.0, 20.0, 60.0], &[0.0, 0.05, 0.9]));
+        assert_eq!(
+            Table::new(&[20.0, 60.0], &[0.05, 0.9]),
+            Table::new(&[0.0, 20.0, 60.0], &[0.0, 0.05, 0.9])
+        );
     }
 
     #[test]
@@ -210,8 +258,14 @@ mod tests {
         for b in [0.03, 0.5, 1.0, 1.4, 1.9, 2.5] {
             let mut knots: Vec<f64> = table.curve.y().iter().copied().filter(|&y| y < b).collect();
             knots.push(b);
-            let sum: f64 = knots.windows(2).map(|pair| fine.integrate(pair[0], pair[1], |b| table.field(b).0)).sum();
-            assert!((table.energy_density(b) / sum - 1.0).abs() < 2e-6, "{b}: {sum}");
+            let sum: f64 = knots
+                .windows(2)
+                .map(|pair| fine.integrate(pair[0], pair[1], |b| table.field(b).0))
+                .sum();
+            assert!(
+                (table.energy_density(b) / sum - 1.0).abs() < 2e-6,
+                "{b}: {sum}"
+            );
         }
     }
 
@@ -223,8 +277,17 @@ mod tests {
         assert_eq!(fault(&[0.0, 10.0], &[0.1, 0.2]), TableFault::NotAtOrigin);
         assert_eq!(fault(&[-10.0, 10.0], &[-0.1, 0.2]), TableFault::NotAtOrigin);
         assert_eq!(fault(&[10.0, 9.0], &[0.1, 0.2]), TableFault::FieldFalls(1));
-        assert_eq!(fault(&[0.0, 10.0, 10.0], &[0.0, 0.1, 0.2]), TableFault::FieldFalls(2));
-        assert_eq!(fault(&[0.0, 10.0, 20.0], &[0.0, 0.1, 0.1]), TableFault::BelowVacuum(2));
-        assert_eq!(fault(&[10.0, f64::INFINITY], &[0.1, 0.2]), TableFault::NotFinite(1));
+        assert_eq!(
+            fault(&[0.0, 10.0, 10.0], &[0.0, 0.1, 0.2]),
+            TableFault::FieldFalls(2)
+        );
+        assert_eq!(
+            fault(&[0.0, 10.0, 20.0], &[0.0, 0.1, 0.1]),
+            TableFault::BelowVacuum(2)
+        );
+        assert_eq!(
+            fault(&[10.0, f64::INFINITY], &[0.1, 0.2]),
+            TableFault::NotFinite(1)
+        );
     }
 }

@@ -19,14 +19,21 @@ pub const KIND: MaterialKind = MaterialKind {
 struct Written(Value);
 
 fn read(fields: &Fields<'_>) -> Option<Box<dyn Material>> {
-    Some(Box::new(Written(fields.checked("initial_permeability", "1 or more", |amount| amount.low >= 1.0)?)))
+    Some(Box::new(Written(fields.checked(
+        "initial_permeability",
+        "1 or more",
+        |amount| amount.low >= 1.0,
+    )?)))
 }
 
 impl Material for Written {
     fn derive(&self, values: &Values, _temperature: f64) -> Result<Magnetized, Fault> {
         let permeability = values[self.0];
         if permeability >= 1.0 {
-            return Ok(Magnetized { curve: Arc::new(Linear::relative(permeability)), remarks: Vec::new() });
+            return Ok(Magnetized {
+                curve: Arc::new(Linear::relative(permeability)),
+                remarks: Vec::new(),
+            });
         }
         Err(Fault {
             word: "out-of-range",
@@ -49,7 +56,9 @@ impl Linear {
 
     /// A relative permeability, 1 or more.
     pub fn relative(permeability: f64) -> Self {
-        Linear { permeability: MU0 * permeability }
+        Linear {
+            permeability: MU0 * permeability,
+        }
     }
 }
 

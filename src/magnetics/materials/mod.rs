@@ -24,8 +24,11 @@ use std::sync::Arc;
 /// The kinds of material; the first whose `told_by` is written is meant.
 pub const MATERIALS: &[MaterialKind] = &[curve::KIND, smooth::KIND, linear::KIND];
 
-const INITIAL_PERMEABILITY: Key =
-    Key::optional("initial_permeability", Takes::Quantity(PERMEABILITY), "relative permeability at zero field");
+const INITIAL_PERMEABILITY: Key = Key::optional(
+    "initial_permeability",
+    Takes::Quantity(PERMEABILITY),
+    "relative permeability at zero field",
+);
 
 /// One way of telling a material.
 pub struct MaterialKind {
@@ -63,14 +66,26 @@ pub fn read<'a>(entry: &NamedNode<'a>, reader: &'a Reader<'a>) -> Option<Arc<dyn
         fields = fields.also(kind.keys);
     }
     fields.finish();
-    let told: Vec<&MaterialKind> = MATERIALS.iter().filter(|kind| fields.has(kind.told_by)).collect();
+    let told: Vec<&MaterialKind> = MATERIALS
+        .iter()
+        .filter(|kind| fields.has(kind.told_by))
+        .collect();
     let Some(kind) = told.first() else {
         untold(&fields);
         return None;
     };
     if let Some(stray) = strays(&fields, kind) {
-        let headline = format!("{} is told by `{}`, which leaves no room for `{stray}`", entry.path, kind.told_by);
-        fields.error(stray, "conflicting-keys", headline, format!("not with `{}`", kind.told_by), None);
+        let headline = format!(
+            "{} is told by `{}`, which leaves no room for `{stray}`",
+            entry.path, kind.told_by
+        );
+        fields.error(
+            stray,
+            "conflicting-keys",
+            headline,
+            format!("not with `{}`", kind.told_by),
+            None,
+        );
         return None;
     }
     (kind.read)(&fields).map(Arc::from)
@@ -80,12 +95,18 @@ pub fn read<'a>(entry: &NamedNode<'a>, reader: &'a Reader<'a>) -> Option<Arc<dyn
 fn strays(fields: &Fields<'_>, kind: &MaterialKind) -> Option<&'static str> {
     let all = MATERIALS.iter().flat_map(|other| other.keys);
     let own = |key: &Key| kind.keys.iter().any(|mine| mine.name == key.name);
-    all.filter(|key| fields.has(key.name) && !own(key)).map(|key| key.name).next()
+    all.filter(|key| fields.has(key.name) && !own(key))
+        .map(|key| key.name)
+        .next()
 }
 
 fn untold(fields: &Fields<'_>) {
     let ways: Vec<&str> = MATERIALS.iter().map(|kind| kind.told_by).collect();
     let headline = format!("{} needs one of {}", fields.path(), ways.join(", "));
-    let diagnostic = crate::diag::Diagnostic::error("missing-key", headline).at(fields.head(), "no magnetization told");
-    fields.reader().sink.report(diagnostic.help("{initial_permeability: 2300, saturation: 0.45 T}"));
+    let diagnostic = crate::diag::Diagnostic::error("missing-key", headline)
+        .at(fields.head(), "no magnetization told");
+    fields
+        .reader()
+        .sink
+        .report(diagnostic.help("{initial_permeability: 2300, saturation: 0.45 T}"));
 }

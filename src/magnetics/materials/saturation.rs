@@ -25,10 +25,16 @@ impl Saturation {
         let after = table.partition_point(|&(t, _)| values[t] < temperature);
         if after == 0 || after == table.len() {
             let (end, saturation) = point(after.min(table.len() - 1));
-            return (saturation, (end != temperature).then(|| beyond(end, temperature)));
+            return (
+                saturation,
+                (end != temperature).then(|| beyond(end, temperature)),
+            );
         }
         let ((low, from), (high, to)) = (point(after - 1), point(after));
-        (from + (to - from) * (temperature - low) / (high - low), None)
+        (
+            from + (to - from) * (temperature - low) / (high - low),
+            None,
+        )
     }
 }
 
@@ -47,21 +53,37 @@ pub fn saturation(fields: &Fields<'_>, key: &str) -> Option<Saturation> {
     let reader = fields.reader();
     let Data::List(items) = &node.data else {
         let amount = reader.amount(node, key, FLUX_DENSITY)?;
-        return above_zero(fields, node, key, amount.low).then(|| reader.value(node, &path, FLUX_DENSITY))?.map(Saturation::Constant);
+        return above_zero(fields, node, key, amount.low)
+            .then(|| reader.value(node, &path, FLUX_DENSITY))?
+            .map(Saturation::Constant);
     };
     let mut table = Vec::new();
     let mut last = f64::NEG_INFINITY;
     for (k, item) in items.iter().enumerate() {
         let [t, b] = item.items() else {
-            return refuse(fields, item, "saturation over temperature is a list of pairs", "a pair is [25 °C, 0.45 T]");
+            return refuse(
+                fields,
+                item,
+                "saturation over temperature is a list of pairs",
+                "a pair is [25 °C, 0.45 T]",
+            );
         };
         let read = |node: &Node, place: usize, kind: Kind| {
             let amount = reader.amount(node, key, kind)?;
-            Some((amount, reader.value(node, &format!("{path}.{k}.{place}"), kind)?))
+            Some((
+                amount,
+                reader.value(node, &format!("{path}.{k}.{place}"), kind)?,
+            ))
         };
-        let ((temperature, t_value), (density, b_value)) = read(t, 0, TEMPERATURE).zip(read(b, 1, FLUX_DENSITY))?;
+        let ((temperature, t_value), (density, b_value)) =
+            read(t, 0, TEMPERATURE).zip(read(b, 1, FLUX_DENSITY))?;
         if temperature.low <= last {
-            return refuse(fields, t, "temperatures of saturation must rise from row to row", "not above the row before");
+            return refuse(
+                fields,
+                t,
+                "temperatures of saturation must rise from row to row",
+                "not above the row before",
+            );
         }
         if !above_zero(fields, b, key, density.low) {
             return None;
@@ -70,7 +92,12 @@ pub fn saturation(fields: &Fields<'_>, key: &str) -> Option<Saturation> {
         table.push((t_value, b_value));
     }
     if table.is_empty() {
-        return refuse(fields, node, "saturation over temperature needs a row", "an empty list");
+        return refuse(
+            fields,
+            node,
+            "saturation over temperature needs a row",
+            "an empty list",
+        );
     }
     Some(Saturation::Table(table))
 }
@@ -78,13 +105,21 @@ pub fn saturation(fields: &Fields<'_>, key: &str) -> Option<Saturation> {
 fn above_zero(fields: &Fields<'_>, node: &Node, key: &str, lowest: f64) -> bool {
     let holds = lowest > 0.0;
     if !holds {
-        fields.reader().error(node, "out-of-range", format!("{key} must be above zero"), "not above zero");
+        fields.reader().error(
+            node,
+            "out-of-range",
+            format!("{key} must be above zero"),
+            "not above zero",
+        );
     }
     holds
 }
 
 fn refuse(fields: &Fields<'_>, node: &Node, headline: &str, label: &str) -> Option<Saturation> {
     let diagnostic = Diagnostic::error("bad-curve", headline).at(node.span, label);
-    fields.reader().sink.report(diagnostic.help("saturation: [[25 °C, 0.45 T], [100 °C, 0.36 T]]"));
+    fields
+        .reader()
+        .sink
+        .report(diagnostic.help("saturation: [[25 °C, 0.45 T], [100 °C, 0.36 T]]"));
     None
 }

@@ -38,7 +38,10 @@ pub struct Smooth {
 impl Smooth {
     /// A curve of relative `initial_permeability` (above 1) and `saturation` [T] (above 0).
     pub fn new(initial_permeability: f64, saturation: f64) -> Self {
-        Smooth { saturation, half_field: saturation / (MU0 * (initial_permeability - 1.0)) }
+        Smooth {
+            saturation,
+            half_field: saturation / (MU0 * (initial_permeability - 1.0)),
+        }
     }
 }
 
@@ -53,8 +56,12 @@ fn read(fields: &Fields<'_>) -> Option<Box<dyn Material>> {
         fields.missing("initial_permeability");
     }
     let saturation = saturation(fields, "saturation");
-    let initial_permeability = fields.checked("initial_permeability", "above 1", |amount| amount.low > 1.0)?;
-    Some(Box::new(Written { initial_permeability, saturation: saturation? }))
+    let initial_permeability =
+        fields.checked("initial_permeability", "above 1", |amount| amount.low > 1.0)?;
+    Some(Box::new(Written {
+        initial_permeability,
+        saturation: saturation?,
+    }))
 }
 
 impl Material for Written {
@@ -70,7 +77,10 @@ impl Material for Written {
             });
         }
         let curve = Smooth::new(permeability, saturation);
-        Ok(Magnetized { curve: Arc::new(curve), remarks: remark.into_iter().collect() })
+        Ok(Magnetized {
+            curve: Arc::new(curve),
+            remarks: remark.into_iter().collect(),
+        })
     }
 }
 
@@ -88,7 +98,11 @@ impl Magnetization for Smooth {
         let product = MU0 * self.half_field * b;
         let root = (half * half + product).sqrt();
         // The two forms of the positive root; each adds numbers of one sign.
-        let field = if half > 0.0 { (half + root) / MU0 } else { self.half_field * b / (root - half) };
+        let field = if half > 0.0 {
+            (half + root) / MU0
+        } else {
+            self.half_field * b / (root - half)
+        };
         let full = field + self.half_field;
         let slope = MU0 + self.saturation * self.half_field / (full * full);
         (field.copysign(flux_density), 1.0 / slope)
@@ -97,7 +111,8 @@ impl Magnetization for Smooth {
     fn energy_density(&self, flux_density: f64) -> f64 {
         // ∫ H dB = mu0 H²/2 + Js Ha (ln(1 + x) - x/(1 + x)), x = H/Ha.
         let field = self.field(flux_density).0.abs();
-        0.5 * MU0 * field * field + self.saturation * self.half_field * log_less_share(field / self.half_field)
+        0.5 * MU0 * field * field
+            + self.saturation * self.half_field * log_less_share(field / self.half_field)
     }
 
     fn bends(&self) -> Vec<f64> {
@@ -125,7 +140,13 @@ mod tests {
 
     #[test]
     fn the_curve_keeps_the_laws_of_magnetization() {
-        for (permeability, saturation) in [(1.001, 1e-3), (2.0, 0.1), (60.0, 1.5), (3000.0, 0.45), (200_000.0, 0.8)] {
+        for (permeability, saturation) in [
+            (1.001, 1e-3),
+            (2.0, 0.1),
+            (60.0, 1.5),
+            (3000.0, 0.45),
+            (200_000.0, 0.8),
+        ] {
             let curve = Smooth::new(permeability, saturation);
             laws::hold(&curve, 4.0 * saturation);
             assert!((curve.flux_density(0.0).1 / (MU0 * permeability) - 1.0).abs() < 1e-12);
@@ -149,7 +170,10 @@ mod tests {
             let back = curve.field(curve.flux_density(field).0).0;
             // dH/H = (dB/B) (B/H)/(dB/dH): what one rounding of B is worth in H.
             let (b, slope) = curve.flux_density(field);
-            assert!((back / field - 1.0).abs() < 4e-16 * (2.0 + b / field / slope), "H = {field}: {back}");
+            assert!(
+                (back / field - 1.0).abs() < 4e-16 * (2.0 + b / field / slope),
+                "H = {field}: {back}"
+            );
         }
     }
 

@@ -19,11 +19,23 @@ pub const KIND: ShapeKind = ShapeKind {
 };
 
 const KEYS: &[Key] = &[
-    Key::required("length", Takes::Quantity(LENGTH), "effective length of the iron"),
+    Key::required(
+        "length",
+        Takes::Quantity(LENGTH),
+        "effective length of the iron",
+    ),
     Key::required("area", Takes::Quantity(AREA), "effective area"),
-    Key::optional("minimum_area", Takes::Quantity(AREA), "smallest section, where the flux density peaks"),
+    Key::optional(
+        "minimum_area",
+        Takes::Quantity(AREA),
+        "smallest section, where the flux density peaks",
+    ),
     Key::optional("gap", Takes::Quantity(LENGTH), "all air gaps together"),
-    Key::optional("mean_turn", Takes::Quantity(LENGTH), "mean length of a turn, for the resistance of a wire"),
+    Key::optional(
+        "mean_turn",
+        Takes::Quantity(LENGTH),
+        "mean length of a turn, for the resistance of a wire",
+    ),
     Key::optional("window_area", Takes::Quantity(AREA), "space for windings"),
 ];
 
@@ -49,7 +61,15 @@ fn read(fields: &Fields<'_>) -> Option<Box<dyn Shape>> {
     let fringing = Spec::read(fields)?;
     smallest_below_effective(fields)?;
     let (length, area) = length.zip(area)?;
-    Some(Box::new(Effective { length, area, minimum_area, gap, mean_turn, window_area, fringing }))
+    Some(Box::new(Effective {
+        length,
+        area,
+        minimum_area,
+        gap,
+        mean_turn,
+        window_area,
+        fringing,
+    }))
 }
 
 fn smallest_below_effective(fields: &Fields<'_>) -> Option<()> {
@@ -61,7 +81,13 @@ fn smallest_below_effective(fields: &Fields<'_>) -> Option<()> {
         return Some(());
     }
     let headline = "minimum_area must not exceed area";
-    fields.error("minimum_area", "out-of-range", headline, "larger than the effective area", None);
+    fields.error(
+        "minimum_area",
+        "out-of-range",
+        headline,
+        "larger than the effective area",
+        None,
+    );
     None
 }
 
@@ -73,7 +99,10 @@ impl Shape for Effective {
             .with_gap(gap, self.fringing.derive(values, gap, area));
         geometry.minimum_area = optional(self.minimum_area).unwrap_or(area);
         geometry.mean_turn = optional(self.mean_turn);
-        geometry.window = optional(self.window_area).map(|area| Window { area, practical_fill: PRACTICAL_FILL });
+        geometry.window = optional(self.window_area).map(|area| Window {
+            area,
+            practical_fill: PRACTICAL_FILL,
+        });
         if let (Some(window), Some(winding)) = (geometry.window, winding) {
             geometry.remarks.extend(winding.crowding(window));
         }

@@ -50,7 +50,11 @@ fn ordered(fields: &Fields<'_>, smaller: &str, larger: &str) -> Option<()> {
     }
     let headline = format!("{smaller} must be smaller than {larger}");
     let spread = low.nominal < high.nominal;
-    let label = if spread { "not with the spreads of both" } else { "not smaller" };
+    let label = if spread {
+        "not with the spreads of both"
+    } else {
+        "not smaller"
+    };
     fields.error(smaller, "out-of-range", headline, label, None);
     None
 }

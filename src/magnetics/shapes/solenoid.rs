@@ -23,13 +23,41 @@ pub const KIND: ShapeKind = ShapeKind {
 };
 
 const KEYS: &[Key] = &[
-    Key::optional("mean_diameter", Takes::Quantity(LENGTH), "diameter of the one layer, from wire centre to wire centre"),
-    Key::optional("inner_diameter", Takes::Quantity(LENGTH), "inner diameter of the winding"),
-    Key::optional("outer_diameter", Takes::Quantity(LENGTH), "outer diameter of the winding"),
-    Key::optional("length", Takes::Quantity(LENGTH), "length of the winding along the axis"),
-    Key::optional("layers", Takes::Count, "number of layers; the coil is then summed turn by turn"),
-    Key::optional("axial_pitch", Takes::Quantity(LENGTH), "from turn to turn; the wire's outer diameter unless said"),
-    Key::optional("radial_pitch", Takes::Quantity(LENGTH), "from layer to layer; the wire's outer diameter unless said"),
+    Key::optional(
+        "mean_diameter",
+        Takes::Quantity(LENGTH),
+        "diameter of the one layer, from wire centre to wire centre",
+    ),
+    Key::optional(
+        "inner_diameter",
+        Takes::Quantity(LENGTH),
+        "inner diameter of the winding",
+    ),
+    Key::optional(
+        "outer_diameter",
+        Takes::Quantity(LENGTH),
+        "outer diameter of the winding",
+    ),
+    Key::optional(
+        "length",
+        Takes::Quantity(LENGTH),
+        "length of the winding along the axis",
+    ),
+    Key::optional(
+        "layers",
+        Takes::Count,
+        "number of layers; the coil is then summed turn by turn",
+    ),
+    Key::optional(
+        "axial_pitch",
+        Takes::Quantity(LENGTH),
+        "from turn to turn; the wire's outer diameter unless said",
+    ),
+    Key::optional(
+        "radial_pitch",
+        Takes::Quantity(LENGTH),
+        "from layer to layer; the wire's outer diameter unless said",
+    ),
 ];
 
 /// Room beside bobbin walls and imperfect lay: common practice.
@@ -37,8 +65,15 @@ const PRACTICAL_FILL: f64 = 0.9;
 
 #[derive(Debug)]
 enum Solenoid {
-    Sheet { diameter: Value, length: Value },
-    Thick { inner: Value, outer: Value, length: Value },
+    Sheet {
+        diameter: Value,
+        length: Value,
+    },
+    Thick {
+        inner: Value,
+        outer: Value,
+        length: Value,
+    },
     Layered(Layered),
 }
 
@@ -75,20 +110,43 @@ fn spread_out(fields: &Fields<'_>) -> Option<Solenoid> {
             one_diameter(fields);
             return None;
         }
-        return Some(Solenoid::Sheet { diameter: fields.positive("mean_diameter")?, length: length? });
+        return Some(Solenoid::Sheet {
+            diameter: fields.positive("mean_diameter")?,
+            length: length?,
+        });
     }
     if !inner && !outer {
-        let headline = format!("{} needs `mean_diameter` (one layer), or `inner_diameter` and `outer_diameter`", fields.path());
-        fields.error("shape", "missing-key", headline, "no diameter told", Some("mean_diameter: 10 mm"));
+        let headline = format!(
+            "{} needs `mean_diameter` (one layer), or `inner_diameter` and `outer_diameter`",
+            fields.path()
+        );
+        fields.error(
+            "shape",
+            "missing-key",
+            headline,
+            "no diameter told",
+            Some("mean_diameter: 10 mm"),
+        );
         return None;
     }
     if !inner || !outer {
-        fields.missing(if inner { "outer_diameter" } else { "inner_diameter" });
+        fields.missing(if inner {
+            "outer_diameter"
+        } else {
+            "inner_diameter"
+        });
         return None;
     }
-    let (inner, outer) = (fields.non_negative("inner_diameter"), fields.positive("outer_diameter"));
+    let (inner, outer) = (
+        fields.non_negative("inner_diameter"),
+        fields.positive("outer_diameter"),
+    );
     ordered(fields, "inner_diameter", "outer_diameter")?;
-    Some(Solenoid::Thick { inner: inner?, outer: outer?, length: length? })
+    Some(Solenoid::Thick {
+        inner: inner?,
+        outer: outer?,
+        length: length?,
+    })
 }
 
 fn layered(fields: &Fields<'_>) -> Option<Layered> {
@@ -101,32 +159,72 @@ fn layered(fields: &Fields<'_>) -> Option<Layered> {
         fields.missing("inner_diameter");
         return None;
     }
-    let diameter = fields.positive(if centred { "mean_diameter" } else { "inner_diameter" });
-    let (axial, radial) = (fields.positive("axial_pitch"), fields.positive("radial_pitch"));
+    let diameter = fields.positive(if centred {
+        "mean_diameter"
+    } else {
+        "inner_diameter"
+    });
+    let (axial, radial) = (
+        fields.positive("axial_pitch"),
+        fields.positive("radial_pitch"),
+    );
     let (length, outer) = (fields.positive("length"), fields.positive("outer_diameter"));
-    Some(Layered { diameter: diameter?, centred, layers: fields.count("layers")?, axial, radial, length, outer })
+    Some(Layered {
+        diameter: diameter?,
+        centred,
+        layers: fields.count("layers")?,
+        axial,
+        radial,
+        length,
+        outer,
+    })
 }
 
 fn only_with_layers(fields: &Fields<'_>) -> Option<()> {
-    let Some(stray) = ["axial_pitch", "radial_pitch"].into_iter().find(|key| fields.has(key)) else {
+    let Some(stray) = ["axial_pitch", "radial_pitch"]
+        .into_iter()
+        .find(|key| fields.has(key))
+    else {
         return Some(());
     };
     let headline = format!("{stray} belongs to a coil with `layers`");
-    fields.error(stray, "conflicting-keys", headline, "without `layers`", Some("layers: 1"));
+    fields.error(
+        stray,
+        "conflicting-keys",
+        headline,
+        "without `layers`",
+        Some("layers: 1"),
+    );
     None
 }
 
 fn one_diameter(fields: &Fields<'_>) {
     let headline = "a solenoid has either `mean_diameter` or `inner_diameter` and `outer_diameter`";
-    fields.error("mean_diameter", "conflicting-keys", headline, "both are written", None);
+    fields.error(
+        "mean_diameter",
+        "conflicting-keys",
+        headline,
+        "both are written",
+        None,
+    );
 }
 
 impl Shape for Solenoid {
     fn derive(&self, values: &Values, winding: Option<&WindingPlan>) -> Result<Geometry, Fault> {
         match self {
-            Solenoid::Sheet { diameter, length } => Ok(one_layer(values[*diameter], values[*length], winding)),
-            Solenoid::Thick { inner, outer, length } => {
-                let section = Section { inner: 0.5 * values[*inner], outer: 0.5 * values[*outer], length: values[*length] };
+            Solenoid::Sheet { diameter, length } => {
+                Ok(one_layer(values[*diameter], values[*length], winding))
+            }
+            Solenoid::Thick {
+                inner,
+                outer,
+                length,
+            } => {
+                let section = Section {
+                    inner: 0.5 * values[*inner],
+                    outer: 0.5 * values[*outer],
+                    length: values[*length],
+                };
                 thick(section, winding)
             }
             Solenoid::Layered(layered) => layered.derive(values, winding),
@@ -136,22 +234,38 @@ impl Shape for Solenoid {
 
 fn one_layer(diameter: f64, length: f64, winding: Option<&WindingPlan>) -> Geometry {
     let mut geometry = in_air(diameter, length, sheet::permeance(diameter, length));
-    let too_long = winding.and_then(|winding| Some(winding.turns as f64 * winding.wire.as_ref()?.outer > length));
+    let too_long = winding
+        .and_then(|winding| Some(winding.turns as f64 * winding.wire.as_ref()?.outer > length));
     if too_long == Some(true) {
-        geometry.remarks.push(Remark::new("window-overfilled", "the turns do not fit side by side into the coil's length"));
+        geometry.remarks.push(Remark::new(
+            "window-overfilled",
+            "the turns do not fit side by side into the coil's length",
+        ));
     }
     geometry
 }
 
 fn thick(section: Section, winding: Option<&WindingPlan>) -> Result<Geometry, Fault> {
     if section.inner >= section.outer {
-        return Err(no_room("inner_diameter", "the coil's inner diameter reaches its outer one"));
+        return Err(no_room(
+            "inner_diameter",
+            "the coil's inner diameter reaches its outer one",
+        ));
     }
-    let mut geometry = in_air(section.inner + section.outer, section.length, section::permeance(section));
+    let mut geometry = in_air(
+        section.inner + section.outer,
+        section.length,
+        section::permeance(section),
+    );
     let area = (section.outer - section.inner) * section.length;
-    let window = Window { area, practical_fill: PRACTICAL_FILL };
+    let window = Window {
+        area,
+        practical_fill: PRACTICAL_FILL,
+    };
     geometry.window = Some(window);
-    geometry.remarks.extend(winding.and_then(|winding| winding.crowding(window)));
+    geometry
+        .remarks
+        .extend(winding.and_then(|winding| winding.crowding(window)));
     Ok(geometry)
 }
 
@@ -176,14 +290,30 @@ impl Layered {
         let radial_pitch = self.radial.map_or(wire.outer, |pitch| values[pitch]);
         let axial_pitch = self.axial.map_or(wire.outer, |pitch| values[pitch]);
         let around = values[self.diameter];
-        let inner_diameter = if self.centred { around - self.layers as f64 * radial_pitch } else { around };
-        let lattice =
-            Lattice { turns: winding.turns, layers: self.layers, inner_diameter, axial_pitch, radial_pitch, bare_diameter };
+        let inner_diameter = if self.centred {
+            around - self.layers as f64 * radial_pitch
+        } else {
+            around
+        };
+        let lattice = Lattice {
+            turns: winding.turns,
+            layers: self.layers,
+            inner_diameter,
+            axial_pitch,
+            radial_pitch,
+            bare_diameter,
+        };
         if inner_diameter + radial_pitch <= bare_diameter {
-            return Err(no_room("layers", "the wire is too thick for the innermost layer"));
+            return Err(no_room(
+                "layers",
+                "the wire is too thick for the innermost layer",
+            ));
         }
         if axial_pitch < bare_diameter || (self.layers > 1 && radial_pitch < bare_diameter) {
-            return Err(no_room("axial_pitch", "turns closer than the bare wire's diameter overlap"));
+            return Err(no_room(
+                "axial_pitch",
+                "turns closer than the bare wire's diameter overlap",
+            ));
         }
         Ok(self.geometry(values, &lattice, wire.outer))
     }
@@ -192,16 +322,30 @@ impl Layered {
         let mean_turn = lattice.mean_turn();
         let permeance = lattice.inductance() / (lattice.turns as f64).powi(2);
         let mut geometry = in_air(mean_turn / PI, lattice.length(), permeance);
-        let mut remark = |text: String| geometry.remarks.push(Remark::new("window-overfilled", text));
+        let mut remark = |text: String| {
+            geometry
+                .remarks
+                .push(Remark::new("window-overfilled", text))
+        };
         // A hair of rounding is no lack of room.
-        let exceeds = |value: Option<Value>, taken: f64| value.is_some_and(|value| taken > values[value] * (1.0 + 1e-9));
+        let exceeds = |value: Option<Value>, taken: f64| {
+            value.is_some_and(|value| taken > values[value] * (1.0 + 1e-9))
+        };
         if exceeds(self.length, lattice.length()) {
-            remark(format!("{} turns in a layer are longer than the coil's length", lattice.per_layer()));
+            remark(format!(
+                "{} turns in a layer are longer than the coil's length",
+                lattice.per_layer()
+            ));
         }
         if exceeds(self.outer, lattice.outer_diameter()) {
-            remark(format!("{} layers reach beyond the outer diameter", lattice.used_layers()));
+            remark(format!(
+                "{} layers reach beyond the outer diameter",
+                lattice.used_layers()
+            ));
         }
-        if lattice.axial_pitch < outer * (1.0 - 1e-9) || (self.layers > 1 && lattice.radial_pitch < outer * (1.0 - 1e-9)) {
+        if lattice.axial_pitch < outer * (1.0 - 1e-9)
+            || (self.layers > 1 && lattice.radial_pitch < outer * (1.0 - 1e-9))
+        {
             remark("the pitch is less than the insulated wire's diameter".into());
         }
         geometry
@@ -209,5 +353,10 @@ impl Layered {
 }
 
 fn no_room(key: &'static str, text: &str) -> Fault {
-    Fault { word: "out-of-range", key, text: text.into(), help: "check the diameters, pitches and the wire against each other" }
+    Fault {
+        word: "out-of-range",
+        key,
+        text: text.into(),
+        help: "check the diameters, pitches and the wire against each other",
+    }
 }

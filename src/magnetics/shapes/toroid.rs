@@ -24,8 +24,16 @@ pub const KIND: ShapeKind = ShapeKind {
 };
 
 const KEYS: &[Key] = &[
-    Key::required("outer_diameter", Takes::Quantity(LENGTH), "outer diameter of the ring"),
-    Key::required("inner_diameter", Takes::Quantity(LENGTH), "diameter of the hole"),
+    Key::required(
+        "outer_diameter",
+        Takes::Quantity(LENGTH),
+        "outer diameter of the ring",
+    ),
+    Key::required(
+        "inner_diameter",
+        Takes::Quantity(LENGTH),
+        "diameter of the hole",
+    ),
     Key::required("height", Takes::Quantity(LENGTH), "height along the axis"),
     Key::optional("gap", Takes::Quantity(LENGTH), "a slit across the ring"),
 ];
@@ -43,13 +51,22 @@ struct Toroid {
 }
 
 fn read(fields: &Fields<'_>) -> Option<Box<dyn Shape>> {
-    let (outer, inner) = (fields.positive("outer_diameter"), fields.positive("inner_diameter"));
+    let (outer, inner) = (
+        fields.positive("outer_diameter"),
+        fields.positive("inner_diameter"),
+    );
     let (height, gap) = (fields.positive("height"), fields.non_negative("gap"));
     let rule = rule(fields)?;
     let (outer, inner) = outer.zip(inner)?;
     ordered(fields, "inner_diameter", "outer_diameter")?;
     gap_leaves_iron(fields)?;
-    Some(Box::new(Toroid { outer, inner, height: height?, gap, rule }))
+    Some(Box::new(Toroid {
+        outer,
+        inner,
+        height: height?,
+        gap,
+        rule,
+    }))
 }
 
 /// The slit must fit into the inner circle.
@@ -61,7 +78,13 @@ fn gap_leaves_iron(fields: &Fields<'_>) -> Option<()> {
     if gap.high < PI * inner.low {
         return Some(());
     }
-    fields.error("gap", "out-of-range", "gap must be shorter than the inner circle", "no iron left", None);
+    fields.error(
+        "gap",
+        "out-of-range",
+        "gap must be shorter than the inner circle",
+        "no iron left",
+        None,
+    );
     None
 }
 
@@ -70,7 +93,10 @@ pub fn effective(outer: f64, inner: f64, height: f64) -> (f64, f64) {
     let log = (outer / inner).ln();
     // length = C1²/C2 = π ln/(1/d - 1/D), area = C1/C2 = h ln²/(2 (1/d - 1/D)).
     let difference = 1.0 / inner - 1.0 / outer;
-    (PI * log / difference, height * log * log / (2.0 * difference))
+    (
+        PI * log / difference,
+        height * log * log / (2.0 * difference),
+    )
 }
 
 impl Shape for Toroid {
@@ -96,9 +122,14 @@ impl Shape for Toroid {
         let mut geometry = Geometry::closed(length, area).with_gap(gap, apply(self.rule, leg));
         geometry.iron = length - gap;
         geometry.mean_turn = Some(mean_turn(width, height, inner, winding));
-        let window = Window { area: FRAC_PI_4 * inner * inner, practical_fill: PRACTICAL_FILL };
+        let window = Window {
+            area: FRAC_PI_4 * inner * inner,
+            practical_fill: PRACTICAL_FILL,
+        };
         geometry.window = Some(window);
-        geometry.remarks.extend(winding.and_then(|winding| winding.crowding(window)));
+        geometry
+            .remarks
+            .extend(winding.and_then(|winding| winding.crowding(window)));
         Ok(geometry)
     }
 }
@@ -109,7 +140,9 @@ impl Shape for Toroid {
 /// the core itself. Outside the ring the layers are thinner than inside, so many layers come out a little long.
 fn mean_turn(width: f64, height: f64, inner: f64, winding: Option<&WindingPlan>) -> f64 {
     let section = 2.0 * (width + height);
-    let Some((turns, wire)) = winding.and_then(|winding| Some((winding.turns, winding.wire.as_ref()?))) else {
+    let Some((turns, wire)) =
+        winding.and_then(|winding| Some((winding.turns, winding.wire.as_ref()?)))
+    else {
         return section;
     };
     let (mut left, mut off, mut sum) = (turns as f64, 0.5 * wire.outer, 0.0);

@@ -26,7 +26,9 @@ impl Gauge {
         // `4/0` and `0000` both mean four noughts: -3.
         let noughts = match number.strip_suffix("/0") {
             Some(count) => Some(count.parse::<i32>().map_err(|_| GaugeFault::NotAGauge)?),
-            None if !number.is_empty() && number.bytes().all(|byte| byte == b'0') => i32::try_from(number.len()).ok(),
+            None if !number.is_empty() && number.bytes().all(|byte| byte == b'0') => {
+                i32::try_from(number.len()).ok()
+            }
             None => None,
         };
         match noughts {
@@ -64,7 +66,15 @@ mod tests {
         for text in ["", "AWG", "32", "32 mm", "x AWG", "3.5 AWG", "µAWG", "ÄÄ"] {
             assert_eq!(Gauge::parse(text), Err(GaugeFault::NotAGauge), "{text}");
         }
-        for text in ["57 AWG", "-1 AWG", "5/0 AWG", "0/0 AWG", "-10 AWG", "00000 AWG", "-2147483647/0 AWG"] {
+        for text in [
+            "57 AWG",
+            "-1 AWG",
+            "5/0 AWG",
+            "0/0 AWG",
+            "-10 AWG",
+            "00000 AWG",
+            "-2147483647/0 AWG",
+        ] {
             assert_eq!(Gauge::parse(text), Err(GaugeFault::OutOfRange), "{text}");
         }
     }

@@ -65,7 +65,12 @@ impl Wire {
 
     /// Foil, one turn per layer [m]; insulation is not counted.
     pub fn foil(thickness: f64, width: f64) -> Self {
-        Wire { copper: thickness * width, bare_diameter: None, outer: thickness, cell: thickness * width }
+        Wire {
+            copper: thickness * width,
+            bare_diameter: None,
+            outer: thickness,
+            cell: thickness * width,
+        }
     }
 
     /// Resistance [Ω/m] at a `temperature` [K].
@@ -95,8 +100,17 @@ mod tests {
     #[test]
     fn enamel_is_within_two_micrometres_of_the_standard() {
         // Largest outer diameters of grade 1, IEC 60317-0-1 [mm] (from memory).
-        for (bare, outer) in [(0.05, 0.060), (0.1, 0.117), (0.2, 0.226), (0.5, 0.544), (1.0, 1.062)] {
-            assert!((grade_one(bare * 1e-3) * 1e3 - outer).abs() < 0.002, "{bare}");
+        for (bare, outer) in [
+            (0.05, 0.060),
+            (0.1, 0.117),
+            (0.2, 0.226),
+            (0.5, 0.544),
+            (1.0, 1.062),
+        ] {
+            assert!(
+                (grade_one(bare * 1e-3) * 1e3 - outer).abs() < 0.002,
+                "{bare}"
+            );
         }
     }
 

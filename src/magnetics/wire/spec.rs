@@ -6,21 +6,49 @@ use crate::units::LENGTH;
 
 /// Keys of the mapping behind `wire`.
 pub const WIRE_KEYS: &[Key] = &[
-    Key::optional("gauge", Takes::Text, "American wire gauge, such as `32 AWG`"),
-    Key::optional("diameter", Takes::Quantity(LENGTH), "diameter of the bare round wire"),
-    Key::optional("litz", Takes::Map(LITZ_KEYS), "a bundle of insulated strands"),
+    Key::optional(
+        "gauge",
+        Takes::Text,
+        "American wire gauge, such as `32 AWG`",
+    ),
+    Key::optional(
+        "diameter",
+        Takes::Quantity(LENGTH),
+        "diameter of the bare round wire",
+    ),
+    Key::optional(
+        "litz",
+        Takes::Map(LITZ_KEYS),
+        "a bundle of insulated strands",
+    ),
     Key::optional("foil", Takes::Map(FOIL_KEYS), "foil, one turn per layer"),
-    Key::optional("outer_diameter", Takes::Quantity(LENGTH), "diameter with insulation, instead of that of enamel grade 1"),
+    Key::optional(
+        "outer_diameter",
+        Takes::Quantity(LENGTH),
+        "diameter with insulation, instead of that of enamel grade 1",
+    ),
 ];
 
 const LITZ_KEYS: &[Key] = &[
     Key::required("strands", Takes::Count, "number of strands"),
-    Key::required("strand_diameter", Takes::Quantity(LENGTH), "diameter of a bare strand"),
+    Key::required(
+        "strand_diameter",
+        Takes::Quantity(LENGTH),
+        "diameter of a bare strand",
+    ),
 ];
 
 const FOIL_KEYS: &[Key] = &[
-    Key::required("thickness", Takes::Quantity(LENGTH), "thickness of the foil"),
-    Key::required("width", Takes::Quantity(LENGTH), "width of the foil, along the axis"),
+    Key::required(
+        "thickness",
+        Takes::Quantity(LENGTH),
+        "thickness of the foil",
+    ),
+    Key::required(
+        "width",
+        Takes::Quantity(LENGTH),
+        "width of the foil, along the axis",
+    ),
 ];
 
 const FORMS: [&str; 4] = ["gauge", "diameter", "litz", "foil"];
@@ -73,7 +101,9 @@ impl WireSpec {
     }
 
     fn check_outer(&self, fields: &Fields<'_>) -> Option<()> {
-        let Some(outer) = self.outer else { return Some(()) };
+        let Some(outer) = self.outer else {
+            return Some(());
+        };
         let nominal = fields.reader().parameters.borrow().nominal();
         let bare = match self.form {
             Form::Gauge(gauge) => gauge.diameter(),
@@ -81,7 +111,13 @@ impl WireSpec {
             Form::Litz(strands, diameter) => nominal[diameter] * (strands as f64).sqrt(),
             Form::Foil(..) => {
                 let headline = "a foil has no `outer_diameter`";
-                fields.error("outer_diameter", "conflicting-keys", headline, "not with `foil`", None);
+                fields.error(
+                    "outer_diameter",
+                    "conflicting-keys",
+                    headline,
+                    "not with `foil`",
+                    None,
+                );
                 return None;
             }
         };
@@ -89,7 +125,13 @@ impl WireSpec {
             return Some(());
         }
         let headline = "outer_diameter must not be below that of the bare copper";
-        fields.error("outer_diameter", "out-of-range", headline, "smaller than its copper", None);
+        fields.error(
+            "outer_diameter",
+            "out-of-range",
+            headline,
+            "smaller than its copper",
+            None,
+        );
         None
     }
 }
@@ -99,29 +141,55 @@ fn gauge(fields: &Fields<'_>) -> Option<Gauge> {
     let (headline, label) = match Gauge::parse(&text.text) {
         Ok(gauge) => return Some(gauge),
         Err(GaugeFault::NotAGauge) => ("gauge takes a wire gauge such as `32 AWG`", "not a gauge"),
-        Err(GaugeFault::OutOfRange) => ("gauge must be between 4/0 AWG and 56 AWG", "no such gauge"),
+        Err(GaugeFault::OutOfRange) => {
+            ("gauge must be between 4/0 AWG and 56 AWG", "no such gauge")
+        }
     };
-    fields.error("gauge", "bad-number", headline, label, Some("gauge: 32 AWG"));
+    fields.error(
+        "gauge",
+        "bad-number",
+        headline,
+        label,
+        Some("gauge: 32 AWG"),
+    );
     None
 }
 
 fn litz(fields: &Fields<'_>) -> Option<Form> {
     fields.finish();
-    fields.count("strands").zip(fields.positive("strand_diameter")).map(|(count, value)| Form::Litz(count, value))
+    fields
+        .count("strands")
+        .zip(fields.positive("strand_diameter"))
+        .map(|(count, value)| Form::Litz(count, value))
 }
 
 fn foil(fields: &Fields<'_>) -> Option<Form> {
     fields.finish();
-    fields.positive("thickness").zip(fields.positive("width")).map(|(thickness, width)| Form::Foil(thickness, width))
+    fields
+        .positive("thickness")
+        .zip(fields.positive("width"))
+        .map(|(thickness, width)| Form::Foil(thickness, width))
 }
 
 fn unclear(fields: &Fields<'_>, written: &[&str]) {
     let diagnostic = if written.is_empty() {
-        crate::diag::Diagnostic::error("missing-key", format!("{} needs one of {}", fields.path(), FORMS.join(", ")))
-            .at(fields.head(), "no wire told")
+        crate::diag::Diagnostic::error(
+            "missing-key",
+            format!("{} needs one of {}", fields.path(), FORMS.join(", ")),
+        )
+        .at(fields.head(), "no wire told")
     } else {
-        let headline = format!("{} takes one of {}, got {}", fields.path(), FORMS.join(", "), written.join(" and "));
-        crate::diag::Diagnostic::error("conflicting-keys", headline).at(fields.head(), "more than one wire told")
+        let headline = format!(
+            "{} takes one of {}, got {}",
+            fields.path(),
+            FORMS.join(", "),
+            written.join(" and ")
+        );
+        crate::diag::Diagnostic::error("conflicting-keys", headline)
+            .at(fields.head(), "more than one wire told")
     };
-    fields.reader().sink.report(diagnostic.help("wire: {gauge: 32 AWG}"));
+    fields
+        .reader()
+        .sink
+        .report(diagnostic.help("wire: {gauge: 32 AWG}"));
 }

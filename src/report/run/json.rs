@@ -1,0 +1,169 @@
+//! A run as the JSON object that the README fixes; SI units throughout.
+
+use crate::diag::Diagnostic;
+use crate::report::json::{Object, table};
+use crate::run::{CoilReport, Outcome};
+use serde_json::Value;
+
+/// The object of `run`.
+pub fn run(outcome: &Outcome) -> Value {
+    let counted = outcome.work.map(|work| work.counted).unwrap_or_default();
+    let analysis = Object::new()
+        .text("kind", Some(outcome.analysis))
+        .number("duration", outcome.duration)
+        .value("accepted_steps", counted.accepted)
+        .value("rejected_steps", counted.rejected)
+        .value("newton_iterations", counted.newton_iterations);
+    Object::new()
+        .text("title", Some(&outcome.title))
+        .value("analysis", analysis)
+        .value("readings", readings(outcome))
+        .value("limits", limits(outcome))
+        .value("ratings", ratings(outcome))
+        .value("ledger", ledger(outcome))
+        .value("coils", coils(&outcome.coils))
+        .value("steady_state", Value::Null)
+        .value("cautions", cautions(&outcome.cautions))
+        .value("defaults", defaults(outcome))
+        .into()
+}
+
+fn readings(outcome: &Outcome) -> Value {
+    table(outcome.readings.iter().map(|reading| {
+        let object = Object::new()
+            .optional("value", reading.value)
+            .text("unit", Some(reading.kind.symbol))
+            .optional("time", reading.time)
+            .value("error", Value::Null);
+        (reading.name.clone(), object)
+    }))
+}
+
+fn limits(outcome: &Outcome) -> Value {
+    table(outcome.limits.iter().map(|limit| {
+        let object = Object::new()
+            .optional("value", limit.verdict.value)
+            .number("bound", limit.verdict.bound)
+            .optional("margin", limit.verdict.margin)
+            .number("asked", limit.verdict.asked)
+            .value("holds", limit.verdict.holds);
+        (limit.name.clone(), object)
+    }))
+}
+
+fn ratings(outcome: &Outcome) -> Value {
+    let mut names: Vec<&str> = outcome
+        .ratings
+        .iter()
+        .map(|rating| rating.element.as_str())
+        .collect();
+    names.dedup();
+    table(names.into_iter().map(|name| {
+        let own = outcome
+            .ratings
+            .iter()
+            .filter(|rating| rating.element == name)
+            .map(|rating| {
+                let object = Object::new()
+                    .optional("peak", rating.used.peak)
+                    .number("rated", rating.used.rated)
+                    .optional("used", rating.used.used)
+                    .optional("time", rating.used.time);
+                (rating.rating.clone(), object)
+            });
+        (name, table(own))
+    }))
+}
+
+fn ledger(outcome: &Outcome) -> Value {
+    let elements = outcome.accounts.iter().map(|(name, account)| {
+        let object = Object::new()
+            .number("absorbed", account.absorbed)
+            .number("dissipated", account.dissipated)
+            .number("stored", account.stored);
+        (name.clone(), object)
+    });
+    Object::new()
+        .table("elements", elements)
+        .number("imbalance", outcome.ledger.imbalance)
+        .into()
+}
+
+/// The `coils` of `check`, `coil` and `run`.
+pub fn coils(reports: &[CoilReport]) -> Value {
+    table(
+        reports
+            .iter()
+            .map(|coil| (coil.name.clone(), self::coil(coil))),
+    )
+}
+
+fn coil(coil: &CoilReport) -> Value {
+    let path = Object::new()
+        .number("length", coil.path_length)
+        .number("area", coil.path_area)
+        .number("volume", coil.path_volume);
+    let fringing = coil
+        .fringing
+        .as_ref()
+        .map_or(Value::Null, |(rule, factor)| {
+            Object::new()
+                .text("rule", Some(rule))
+                .number("factor", *factor)
+                .into()
+        });
+    let curve = coil.curve.iter().map(|point| {
+        Object::new()
+            .number("current", point.current)
+            .number("flux_linkage", point.flux_linkage)
+            .number("inductance", point.inductance)
+            .number("flux_density", point.flux_density)
+    });
+    Object::new()
+        .number("turns", coil.turns)
+        .number("inductance_at_zero", coil.inductance_at_zero)
+        .optional("current_at_70_percent", coil.current_at_70_percent)
+        .number("resistance", coil.resistance)
+        .optional("time_constant", coil.time_constant)
+        .optional("operating_current", coil.operating_current)
+        .optional("stored_energy", coil.stored_energy)
+        .value("path", path)
+        .optional("mean_turn", coil.mean_turn)
+        .value("fringing", fringing)
+        .optional("peak_flux_density", coil.peak_flux_density)
+        .list("curve", curve)
+        .into()
+}
+
+/// Cautions as objects.
+pub fn cautions(cautions: &[Diagnostic]) -> Value {
+    cautions
+        .iter()
+        .map(|caution| {
+            Value::from(
+                Object::new()
+                    .text("word", Some(caution.word))
+                    .text("headline", Some(&caution.headline))
+                    .text("help", Some(&caution.help.join("; "))),
+            )
+        })
+        .collect()
+}
+
+fn defaults(outcome: &Outcome) -> Value {
+    self::defaults_used(&outcome.defaults)
+}
+
+/// Defaults as objects.
+pub fn defaults_used(defaults: &[crate::netlist::DefaultUsed]) -> Value {
+    defaults
+        .iter()
+        .map(|used| {
+            Value::from(
+                Object::new()
+                    .text("path", Some(&used.path))
+                    .text("value", Some(&used.text)),
+            )
+        })
+        .collect()
+}

@@ -1,0 +1,256 @@
+//! A run on the terminal: the answer first, then tables; digits no finer than they are worth.
+
+use crate::report::engineering::{duration, engineering, engineering_or_dash, margin, percent};
+use crate::report::tables::{Align, Cell, Screen, Table, Tone};
+use crate::run::{CoilReport, LimitResult, Outcome};
+use std::fmt::Write as _;
+
+/// Digits of a reading: what an accuracy of 1e-4 is worth.
+const DIGITS: usize = 4;
+
+/// The whole text of `run`.
+pub fn run(outcome: &Outcome, screen: Screen) -> String {
+    let mut text = String::new();
+    let _ = writeln!(text, "{}", answer(outcome));
+    section(&mut text, "Limits", &limits(outcome), screen);
+    section(&mut text, "Readings", &readings(outcome), screen);
+    section(&mut text, "Ratings used", &ratings(outcome), screen);
+    section(&mut text, "Where the energy went", &ledger(outcome), screen);
+    if !outcome.accounts.is_empty() {
+        let _ = writeln!(
+            text,
+            "The ledger closes to {}.",
+            percent(outcome.ledger.imbalance)
+        );
+    }
+    section(&mut text, "Coils", &coils(&outcome.coils), screen);
+    let _ = writeln!(text, "\n{CAUTION}");
+    text
+}
+
+/// The caution under every result.
+pub const CAUTION: &str = "Figures are predictions: confirm them on the bench with rated probes. Interrupted coils make voltages that \
+injure;\nenergy remains after switch-off. `ground` is not protective earth. Mains and safety circuits follow the local code\nand a \
+licensed practitioner.";
+
+fn section(text: &mut String, heading: &str, table: &Table, screen: Screen) {
+    if !table.is_empty() {
+        let _ = write!(text, "\n{heading}\n{}", table.render(screen));
+    }
+}
+
+/// The answer in a line: what, against which limit, margin, holds or not.
+pub fn answer(outcome: &Outcome) -> String {
+    let worst = outcome
+        .limits
+        .iter()
+        .min_by(|a, b| slack(a).total_cmp(&slack(b)));
+    let over = outcome
+        .ratings
+        .iter()
+        .filter(|rating| !rating.used.holds())
+        .max_by(|a, b| {
+            a.used
+                .used
+                .partial_cmp(&b.used.used)
+                .unwrap_or(std::cmp::Ordering::Equal)
+        });
+    let name = if outcome.title.is_empty() {
+        String::new()
+    } else {
+        format!("{}: ", outcome.title)
+    };
+    if let (Some(rating), true) = (over, worst.is_none_or(|limit| limit.verdict.holds)) {
+        return format!(
+            "{name}{} of {} reaches {} against a rating of {}: it DOES NOT HOLD ({} of the rating).",
+            rating.rating,
+            rating.element,
+            engineering_or_dash(rating.used.peak, rating.kind.symbol, DIGITS),
+            engineering(rating.used.rated, rating.kind.symbol, DIGITS),
+            rating.used.used.map_or("—".into(), percent),
+        );
+    }
+    match worst {
+        Some(limit) => {
+            let bound = engineering(limit.verdict.bound, limit.kind.symbol, DIGITS);
+            let value = engineering_or_dash(limit.verdict.value, limit.kind.symbol, DIGITS);
+            let side = if limit.at_most { "at most" } else { "at least" };
+            let verdict = if limit.verdict.holds {
+                "holds"
+            } else {
+                "DOES NOT HOLD"
+            };
+            let others = outcome.limits.len() - 1;
+            let rest = match (limit.verdict.holds, others) {
+                (_, 0) => String::new(),
+                (true, _) => format!("; all {} limits hold", others + 1),
+                (false, _) => {
+                    let failing = outcome
+                        .limits
+                        .iter()
+                        .filter(|limit| !limit.verdict.holds)
+                        .count();
+                    format!("; {failing} of {} limits fail", others + 1)
+                }
+            };
+            format!(
+                "{name}{} is {value} against {side} {bound}: margin {} (asked {}), {verdict}{rest}.",
+                limit.name,
+                margin(limit.verdict.margin),
+                percent(limit.verdict.asked),
+            )
+        }
+        None => match outcome.readings.first() {
+            Some(reading) => format!(
+                "{name}{} is {}; the netlist sets no limit.",
+                reading.name,
+                engineering_or_dash(reading.value, reading.kind.symbol, DIGITS)
+            ),
+            None => format!("{name}done; the netlist asks for no reading."),
+        },
+    }
+}
+
+/// Margin beyond what is asked; nothing is worse than no value.
+fn slack(limit: &LimitResult) -> f64 {
+    limit
+        .verdict
+        .margin
+        .map_or(f64::NEG_INFINITY, |margin| margin - limit.verdict.asked)
+}
+
+fn verdict(holds: bool) -> Cell {
+    if holds {
+        Cell::toned("holds", Tone::Good)
+    } else {
+        Cell::toned("FAILS", Tone::Bad)
+    }
+}
+
+fn limits(outcome: &Outcome) -> Table {
+    let mut table = Table::new()
+        .column("limit", Align::Left)
+        .column("value", Align::Right)
+        .column("bound", Align::Right)
+        .column("margin", Align::Right)
+        .column("asked", Align::Right)
+        .column("", Align::Left);
+    for limit in &outcome.limits {
+        let sign = if limit.at_most { "≤" } else { "≥" };
+        table.row([
+            Cell::from(limit.name.as_str()),
+            engineering_or_dash(limit.verdict.value, limit.kind.symbol, DIGITS).into(),
+            format!(
+                "{sign} {}",
+                engineering(limit.verdict.bound, limit.kind.symbol, DIGITS)
+            )
+            .into(),
+            margin(limit.verdict.margin).into(),
+            percent(limit.verdict.asked).into(),
+            verdict(limit.verdict.holds),
+        ]);
+    }
+    table
+}
+
+fn readings(outcome: &Outcome) -> Table {
+    let mut table = Table::new()
+        .column("reading", Align::Left)
+        .column("value", Align::Right)
+        .column("at", Align::Right)
+        .column("", Align::Left);
+    for reading in &outcome.readings {
+        table.row([
+            reading.name.clone(),
+            engineering_or_dash(reading.value, reading.kind.symbol, DIGITS),
+            reading
+                .time
+                .map_or(String::new(), |time| engineering(time, "s", 5)),
+            reading.remark.unwrap_or("").to_owned(),
+        ]);
+    }
+    table
+}
+
+fn ratings(outcome: &Outcome) -> Table {
+    let mut table = Table::new()
+        .column("rating", Align::Left)
+        .column("stress", Align::Right)
+        .column("rated", Align::Right)
+        .column("used", Align::Right)
+        .column("at", Align::Right)
+        .column("", Align::Left);
+    for rating in &outcome.ratings {
+        let last = if rating.used.not_evaluated_yet {
+            Cell::from("not evaluated")
+        } else {
+            verdict(rating.used.holds())
+        };
+        table.row([
+            Cell::from(format!("{}.{}", rating.element, rating.rating)),
+            engineering_or_dash(rating.used.peak, rating.kind.symbol, DIGITS).into(),
+            engineering(rating.used.rated, rating.kind.symbol, DIGITS).into(),
+            rating.used.used.map_or("—".into(), percent).into(),
+            rating
+                .used
+                .time
+                .map_or(String::new(), |time| engineering(time, "s", 5))
+                .into(),
+            last,
+        ]);
+    }
+    table
+}
+
+fn ledger(outcome: &Outcome) -> Table {
+    let mut table = Table::new()
+        .column("element", Align::Left)
+        .column("absorbed", Align::Right)
+        .column("dissipated", Align::Right)
+        .column("stored", Align::Right);
+    let joules = |value: f64| engineering(value, "J", DIGITS);
+    for (name, account) in &outcome.accounts {
+        let (dissipated, stored) = if account.is_source {
+            (
+                if account.dissipated == 0.0 {
+                    "—".into()
+                } else {
+                    joules(account.dissipated)
+                },
+                "—".into(),
+            )
+        } else {
+            (joules(account.dissipated), joules(account.stored))
+        };
+        table.row([name.clone(), joules(account.absorbed), dissipated, stored]);
+    }
+    table
+}
+
+/// The coils of `check`, `coil` and `run`.
+pub fn coils(reports: &[CoilReport]) -> Table {
+    let mut table = Table::new()
+        .column("coil", Align::Left)
+        .column("turns", Align::Right)
+        .column("L at zero", Align::Right)
+        .column("I at 70 %", Align::Right)
+        .column("R", Align::Right)
+        .column("L/R", Align::Right)
+        .column("I at rest", Align::Right)
+        .column("energy", Align::Right)
+        .column("B peak", Align::Right);
+    for coil in reports {
+        table.row([
+            coil.name.clone(),
+            format!("{}", coil.turns),
+            engineering(coil.inductance_at_zero, "H", DIGITS),
+            engineering_or_dash(coil.current_at_70_percent, "A", DIGITS),
+            engineering(coil.resistance, "Ω", DIGITS),
+            coil.time_constant.map_or("—".into(), duration),
+            engineering_or_dash(coil.operating_current, "A", DIGITS),
+            engineering_or_dash(coil.stored_energy, "J", DIGITS),
+            engineering_or_dash(coil.peak_flux_density, "T", DIGITS),
+        ]);
+    }
+    table
+}

@@ -1,0 +1,145 @@
+//! Cautions that the program raises by itself where its model is thin.
+
+use super::netlist::Netlist;
+use super::outcome::Outcome;
+use crate::circuit::Circuit;
+use crate::diag::Diagnostic;
+use crate::signals::Trace;
+
+/// A kick this many times the largest supply counts as unsuppressed.
+const UNSUPPRESSED: f64 = 4.0;
+/// Beyond this saturation a coil is past its knee.
+const PAST_THE_KNEE: f64 = 0.5;
+
+/// Adds what the outcome gives cause for.
+pub fn add(netlist: &Netlist, outcome: &mut Outcome) {
+    let mut cautions = Vec::new();
+    unbroken_switches(netlist, outcome, &mut cautions);
+    saturated_coils(netlist, outcome, &mut cautions);
+    unevaluated_ratings(outcome, &mut cautions);
+    cautions.extend(coils(&netlist.circuit));
+    outcome.cautions.extend(cautions);
+}
+
+/// What the magnetics of a circuit's coils give cause for: an overfilled window, a formula outside its range.
+pub fn coils(circuit: &Circuit) -> Vec<Diagnostic> {
+    let mut cautions = Vec::new();
+    for entry in &circuit.entries {
+        for figures in entry.element.windings() {
+            for remark in &figures.wound.remarks {
+                let text = format!("`{}`: {}", entry.name, remark.text);
+                cautions.push(Diagnostic::caution(remark.word, text).at(entry.span, "this coil"));
+            }
+        }
+    }
+    cautions
+}
+
+fn largest(trace: &Trace) -> f64 {
+    trace
+        .pieces
+        .iter()
+        .flat_map(|piece| {
+            piece
+                .extremes()
+                .map(|(_, value)| value.abs())
+                .collect::<Vec<f64>>()
+        })
+        .fold(0.0, f64::max)
+}
+
+/// A switch without breakdown that sees a kick: a real one would break down or arc over.
+fn unbroken_switches(netlist: &Netlist, outcome: &Outcome, cautions: &mut Vec<Diagnostic>) {
+    let circuit = &netlist.circuit;
+    let supply = circuit
+        .entries
+        .iter()
+        .filter(|entry| entry.kind.word == "voltage_source")
+        .filter_map(|entry| {
+            outcome.trace(&format!(
+                "voltage at {}",
+                entry.terminals.first()?.node.text
+            ))
+        })
+        .map(largest)
+        .fold(0.0, f64::max);
+    for entry in circuit
+        .entries
+        .iter()
+        .filter(|entry| entry.kind.word == "switch")
+    {
+        if entry.node.get("breakdown_voltage").is_some() || supply == 0.0 {
+            continue;
+        }
+        let Some(trace) = outcome.trace(&format!("voltage across {}", entry.name)) else {
+            continue;
+        };
+        let kick = largest(trace);
+        if kick > UNSUPPRESSED * supply {
+            let text = format!(
+                "`{}` has no breakdown and sees {}, {:.0} times the supply: a real switch breaks down or arcs before",
+                entry.name,
+                crate::units::engineering(kick, crate::units::VOLTAGE, 3),
+                kick / supply
+            );
+            cautions.push(
+                Diagnostic::caution("no-breakdown", text)
+                    .at(entry.span, "an ideal switch")
+                    .help(
+                        "the figure shows that a suppressor is needed, not what would be measured",
+                    ),
+            );
+        }
+    }
+}
+
+fn saturated_coils(netlist: &Netlist, outcome: &Outcome, cautions: &mut Vec<Diagnostic>) {
+    for entry in netlist
+        .circuit
+        .entries
+        .iter()
+        .filter(|entry| entry.kind.word == "coil")
+    {
+        let Some(trace) = outcome.trace(&format!("saturation of {}", entry.name)) else {
+            continue;
+        };
+        let highest = trace
+            .pieces
+            .iter()
+            .flat_map(|piece| {
+                piece
+                    .extremes()
+                    .map(|(_, value)| value)
+                    .collect::<Vec<f64>>()
+            })
+            .fold(f64::NEG_INFINITY, f64::max);
+        if highest > PAST_THE_KNEE {
+            cautions.push(
+                Diagnostic::caution(
+                    "past-the-knee",
+                    format!("`{}` is driven past its knee: {:.0} % of its inductance is gone", entry.name, 100.0 * highest),
+                )
+                .at(entry.span, "this coil")
+                .help("there the figures rest on the magnetization far out: give the material a measured `curve`"),
+            );
+        }
+    }
+}
+
+fn unevaluated_ratings(outcome: &Outcome, cautions: &mut Vec<Diagnostic>) {
+    let missing: Vec<String> = outcome
+        .ratings
+        .iter()
+        .filter(|rating| rating.used.not_evaluated_yet)
+        .map(|rating| format!("{}.{}", rating.element, rating.rating))
+        .collect();
+    if !missing.is_empty() {
+        cautions.push(Diagnostic::caution(
+            "rating-not-evaluated",
+            format!(
+                "ratings that this version reads but does not evaluate: {}",
+                missing.join(", ")
+            ),
+        ));
+    }
+}

@@ -1,0 +1,155 @@
+//! What each coil of a circuit came out as: the figures of `coilbreak coil`.
+
+use crate::circuit::{Circuit, Entry};
+use crate::dae::Point;
+use crate::elements::{Quantity, element::WindingFigures};
+pub use crate::magnetics::CurvePoint;
+
+/// The figures of one coil or winding. SI units.
+#[derive(Clone, Debug)]
+pub struct CoilReport {
+    /// Name of the element, with its winding where it has several.
+    pub name: String,
+    /// Number of turns.
+    pub turns: f64,
+    /// Incremental inductance at zero [H].
+    pub inductance_at_zero: f64,
+    /// Current at which it has fallen to 70 % [A]; None where it never does.
+    pub current_at_70_percent: Option<f64>,
+    /// Winding resistance at its temperature [Ω].
+    pub resistance: f64,
+    /// Inductance at zero over resistance [s]; None without resistance.
+    pub time_constant: Option<f64>,
+    /// Largest winding current at rest, switches as they start or all closed [A].
+    pub operating_current: Option<f64>,
+    /// Energy of the field at that current [J].
+    pub stored_energy: Option<f64>,
+    /// Effective length of the magnetic path [m].
+    pub path_length: f64,
+    /// Effective area [m²].
+    pub path_area: f64,
+    /// Effective volume [m³].
+    pub path_volume: f64,
+    /// Mean turn [m].
+    pub mean_turn: Option<f64>,
+    /// Fringing rule and factor.
+    pub fringing: Option<(String, f64)>,
+    /// Flux density in the smallest section at the operating current [T].
+    pub peak_flux_density: Option<f64>,
+    /// Flux linkage, inductance and flux density over current.
+    pub curve: Vec<CurvePoint>,
+}
+
+/// Points of each curve.
+const POINTS: usize = 61;
+
+/// The figures of every coil of a circuit, in the order of the netlist.
+pub fn coil_reports(circuit: &Circuit) -> Vec<CoilReport> {
+    let currents = resting_currents(circuit);
+    let mut reports = Vec::new();
+    for (k, entry) in circuit.entries.iter().enumerate() {
+        for (winding, figures) in entry.element.windings().iter().enumerate() {
+            let current = currents
+                .iter()
+                .find(|(owner, nth, _)| *owner == k && *nth == winding)
+                .map(|c| c.2);
+            reports.push(coil_report(entry, figures, current));
+        }
+    }
+    reports
+}
+
+/// The figures of one winding, with its operating current where one is known.
+pub fn coil_report(
+    entry: &Entry,
+    figures: &WindingFigures<'_>,
+    current: Option<f64>,
+) -> CoilReport {
+    let (linkage, geometry) = (&figures.wound.linkage, &figures.wound.geometry);
+    let name = if figures.name.is_empty() {
+        entry.name.clone()
+    } else {
+        format!("{}.{}", entry.name, figures.name)
+    };
+    let current = current.filter(|current| current.is_finite());
+    let found = figures.wound.figures(current, POINTS);
+    CoilReport {
+        name,
+        turns: linkage.turns(),
+        inductance_at_zero: found.inductance_at_zero,
+        current_at_70_percent: found.current_at_70_percent,
+        resistance: figures.resistance,
+        time_constant: (figures.resistance > 0.0)
+            .then(|| found.inductance_at_zero / figures.resistance),
+        operating_current: current,
+        stored_energy: found.stored_energy,
+        path_length: geometry.length,
+        path_area: geometry.area,
+        path_volume: geometry.volume,
+        mean_turn: geometry.mean_turn,
+        fringing: geometry
+            .fringing
+            .as_ref()
+            .map(|fringing| (fringing.rule.to_string(), fringing.factor)),
+        peak_flux_density: found.peak_flux_density,
+        curve: found.curve,
+    }
+}
+
+/// The largest winding current of each coil at rest, with the switches as they start and with all of them closed.
+fn resting_currents(circuit: &Circuit) -> Vec<(usize, usize, f64)> {
+    use crate::analysis::{Start, start};
+    let mut found: Vec<(usize, usize, f64)> = Vec::new();
+    let states = [
+        start(circuit, Start::OperatingPoint)
+            .ok()
+            .map(|(state, _)| state),
+        closed(circuit),
+    ];
+    for state in states.into_iter().flatten() {
+        let at = Point {
+            time: 0.0,
+            x: &state.x,
+            mode: &state.mode,
+        };
+        for (k, entry) in circuit.entries.iter().enumerate() {
+            for winding in 0..entry.element.windings().len() {
+                let own = Point {
+                    mode: &at.mode[entry.modes.clone()],
+                    ..at
+                };
+                let Some(current) = entry
+                    .element
+                    .quantity(Quantity::WindingCurrent, winding, own)
+                else {
+                    continue;
+                };
+                match found
+                    .iter_mut()
+                    .find(|(owner, nth, _)| *owner == k && *nth == winding)
+                {
+                    Some(known) if known.2.abs() >= current.abs() => {}
+                    Some(known) => known.2 = current,
+                    None => found.push((k, winding, current)),
+                }
+            }
+        }
+    }
+    found
+}
+
+/// The state at rest with every switch closed.
+fn closed(circuit: &Circuit) -> Option<crate::dae::State> {
+    use crate::elements::Happening;
+    let mut mode = circuit.start_mode();
+    let mut any = false;
+    for entry in &circuit.entries {
+        if let Some(switching) = entry.element.switching() {
+            any |= switching.rest(Happening::Closes, &mut mode[entry.modes.clone()]);
+        }
+    }
+    if !any {
+        return None;
+    }
+    crate::analysis::start::at_rest(circuit, mode).ok()
+}

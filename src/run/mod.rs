@@ -1,0 +1,143 @@
+//! One netlist, one variation, to an outcome: the whole way on one screen.
+//!
+//! ```text
+//! text -> load -> Netlist (circuit, analysis, readings, limits) -> pilot -> run -> Outcome
+//! ```
+
+mod cautions;
+mod coils;
+mod feed;
+mod netlist;
+mod obvious;
+mod outcome;
+
+pub use cautions::coils as coil_cautions;
+pub use coils::{CoilReport, CurvePoint, coil_reports};
+pub use netlist::{Netlist, ReadError, Sizing, read, read_document};
+pub use outcome::{LimitResult, Outcome, RatingResult, ReadingResult, Work};
+
+use crate::analysis::{Analysis, Failure, Ledger, Settings, Simulation, Transient, Wish};
+use crate::circuit::{Circuit, Tap};
+use crate::dae::{Method, Point};
+use crate::elements::Unknown;
+use crate::signals::EventLog;
+use feed::Feed;
+use std::ops::ControlFlow;
+
+/// Told while a run goes on: simulated time and duration [s]; may stop it.
+pub type Progress<'a> = dyn FnMut(f64, f64) -> ControlFlow<()> + 'a;
+
+/// Runs a netlist at the values in force.
+///
+/// # Errors
+/// A simulation that could not be completed.
+pub fn run(netlist: &Netlist, progress: &mut Progress<'_>) -> Result<Outcome, Failure> {
+    match &netlist.analysis {
+        Analysis::OperatingPoint => at_rest(netlist),
+        Analysis::Transient(transient) => over_time(netlist, transient, progress),
+    }
+}
+
+/// The method of all transients: the quickest of the list at the accuracies asked, as measured in `tests/benches`.
+pub fn method() -> &'static Method {
+    crate::dae::METHODS
+        .last()
+        .expect("the list of methods is not empty")
+}
+
+fn settings(circuit: &Circuit, transient: &Transient) -> Settings {
+    let values = circuit.values();
+    Settings {
+        duration: values[transient.duration],
+        accuracy: values[transient.accuracy],
+        start: transient.start,
+        longest_step: transient
+            .longest_step
+            .map_or(f64::INFINITY, |value| values[value]),
+    }
+}
+
+fn over_time(
+    netlist: &Netlist,
+    transient: &Transient,
+    progress: &mut Progress<'_>,
+) -> Result<Outcome, Failure> {
+    let circuit = &netlist.circuit;
+    let settings = settings(circuit, transient);
+    let simulation = Simulation {
+        circuit,
+        settings,
+        method: method(),
+    };
+    let scales = simulation.pilot(wishes(netlist))?;
+    let mut feed = Feed::new(netlist, circuit.values()[transient.record_from]);
+    let (counted, ending) = simulation.run_scaled(&scales, &mut |circuit, shown, log| {
+        let time = feed.take(circuit, shown, log);
+        progress(time, settings.duration)
+    })?;
+    Ok(feed.finish(netlist, settings.duration, Work { counted, ending }))
+}
+
+fn at_rest(netlist: &Netlist) -> Result<Outcome, Failure> {
+    let circuit = &netlist.circuit;
+    let (state, _) = crate::analysis::start(circuit, crate::analysis::Start::OperatingPoint)?;
+    let at = Point {
+        time: 0.0,
+        x: &state.x,
+        mode: &state.mode,
+    };
+    Ok(feed::at_rest(netlist, at))
+}
+
+/// Which unknowns each reading is made of, and in which window.
+fn wishes(netlist: &Netlist) -> Vec<Wish> {
+    let circuit = &netlist.circuit;
+    netlist
+        .readings
+        .iter()
+        .filter(|reading| reading.kind.word != "value_at")
+        .filter_map(|reading| {
+            let tap = circuit.tap(&reading.signal.phrase).ok()?;
+            Some(Wish {
+                window: reading.window(circuit.values()),
+                unknowns: unknowns_of(circuit, &tap),
+            })
+        })
+        .collect()
+}
+
+/// The unknowns that a signal is made of.
+fn unknowns_of(circuit: &Circuit, tap: &Tap) -> Vec<usize> {
+    let number = |unknown: &Unknown| (*unknown != Unknown::GROUND).then_some(unknown.0 as usize);
+    match tap {
+        Tap::Potential(a, b) => [a, b].into_iter().filter_map(number).collect(),
+        Tap::Current(k, _) | Tap::Power(k) | Tap::Energy(k) | Tap::Of(k, _, _) => {
+            let own: Vec<usize> = circuit
+                .unknowns
+                .iter()
+                .enumerate()
+                .filter(|(_, claimed)| claimed.element == Some(*k))
+                .map(|(unknown, _)| unknown)
+                .collect();
+            if own.is_empty() {
+                circuit.entries[*k]
+                    .nodes
+                    .iter()
+                    .filter_map(number)
+                    .collect()
+            } else {
+                own
+            }
+        }
+    }
+}
+
+/// A ledger with nothing in it, for a circuit at rest.
+fn empty_ledger() -> Ledger {
+    Ledger::default()
+}
+
+/// An empty log, for a circuit at rest.
+fn empty_log() -> EventLog {
+    EventLog::default()
+}

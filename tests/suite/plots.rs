@@ -571,3 +571,44 @@ fn hostile_names_stay_text() {
     let opened = svg.matches("<text ").count();
     assert_eq!(opened, svg.matches("</text>").count());
 }
+
+/// A converter's run: edges by the thousand, a dense ring on broken lines, a cloud of samples.
+#[test]
+fn crowds_stay_small_and_readable() {
+    let edges = (0..2000).map(|k| Instant {
+        label: format!("q1 closes {k}"),
+        at: f64::from(k) * 1e-5,
+    });
+    let ring = |phase: f64| sampled(0.0, 20e-3, 10_000, move |t| (3e6 * t + phase).sin());
+    let cloud = sampled(0.0, 20e-3, 50_000, |t| (9e9 * t).sin());
+    let panel = CurvePanel {
+        x: Axis::new("time", "s"),
+        y: Axis::new("inductor current", "A"),
+        curves: (0..7)
+            .map(|k| curve(&format!("l{k}"), ring(f64::from(k))))
+            .collect(),
+        instants: edges.collect(),
+        ..CurvePanel::default()
+    };
+    let samples = CurvePanel {
+        x: Axis::new("sample", "s"),
+        y: Axis::new("ripple", "V"),
+        curves: vec![Curve {
+            name: "samples".to_string(),
+            points: cloud,
+            style: Style::Points,
+        }],
+        ..CurvePanel::default()
+    };
+    let chart = Chart {
+        title: "Crowds".to_string(),
+        panels: vec![Panel::Curves(panel), Panel::Curves(samples)],
+        ..Chart::default()
+    };
+    let svg = painted("crowds", &chart, Size::default());
+    assert!(
+        svg.contains("2000 instants"),
+        "instants without room are counted"
+    );
+    assert!(svg.len() < 8_000_000, "{} bytes", svg.len());
+}

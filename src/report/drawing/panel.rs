@@ -15,6 +15,8 @@ use super::traces::{self, pixel};
 const LIMIT: (f64, &[f64]) = (2.0, &[7.0, 4.0]);
 /// Pattern of an instant [px].
 const INSTANT: &[f64] = &[2.0, 3.0];
+/// Width below which the name of an instant says nothing [px].
+const NARROWEST_NAME: f64 = 70.0;
 /// Room above a frame for the names of instants [px].
 pub const STRIP: f64 = 26.0;
 /// Room below a frame for ticks and heading of the x axis [px].
@@ -197,7 +199,7 @@ pub fn heading_lines(heading: &str, height: f64, measure: &dyn Measure) -> Vec<S
     ]
 }
 
-/// Lines up the panel, named above it; returns their places.
+/// Lines up the panel, named above it; returns their places. A crowd of them would be a wall: it is told in words.
 fn draw_instants(placed: &Placed<'_>, measure: &dyn Measure, page: &mut Drawing) -> Vec<f64> {
     let frame = placed.frame;
     let visible = placed
@@ -208,8 +210,16 @@ fn draw_instants(placed: &Placed<'_>, measure: &dyn Measure, page: &mut Drawing)
     let seen: Vec<(f64, String)> = visible
         .filter_map(|instant| Some((placed.x.at(instant.at)?, clean(&instant.label))))
         .collect();
-    let places: Vec<f64> = seen.iter().map(|(x, _)| *x).collect();
-    for &x in &places {
+    if seen.len() as f64 * NARROWEST_NAME > frame.width() {
+        let text = format!("{} instants, too close together to be drawn", seen.len());
+        let text = cut(&text, NAME, frame.width(), measure);
+        let at = ((frame.left + frame.right) / 2.0, frame.top - 13.0);
+        if placed.with_instants {
+            page.text(&text, at, Anchor::Middle, NAME, ink::QUIET_TEXT);
+        }
+        return Vec::new();
+    }
+    for &(x, _) in &seen {
         page.path(
             &[(x, frame.bottom), (x, frame.top)],
             ink::LEADER,
@@ -217,29 +227,36 @@ fn draw_instants(placed: &Placed<'_>, measure: &dyn Measure, page: &mut Drawing)
             INSTANT,
         );
     }
-    if placed.with_instants && !seen.is_empty() {
-        let most = (frame.width() + 80.0) / seen.len() as f64 - 12.0;
-        let names: Vec<String> = seen
-            .iter()
-            .map(|(_, name)| cut(name, NAME, most, measure))
-            .collect();
-        let widths: Vec<f64> = names
-            .iter()
-            .map(|name| measure.width(name, NAME) + 12.0)
-            .collect();
-        let centres = spread(&places, &widths, frame.left - 40.0, frame.right + 40.0);
-        for ((name, x), centre) in names.iter().zip(&places).zip(centres) {
-            page.line((*x, frame.top), (centre, frame.top - 9.0), ink::LEADER, 1.0);
-            page.text(
-                name,
-                (centre, frame.top - 13.0),
-                Anchor::Middle,
-                NAME,
-                ink::QUIET_TEXT,
-            );
-        }
+    let places = seen.iter().map(|(x, _)| *x).collect();
+    if placed.with_instants {
+        name_instants(seen, &frame, measure, page);
     }
     places
+}
+
+/// Names above the frame, each near its line.
+fn name_instants(
+    mut seen: Vec<(f64, String)>,
+    frame: &Rect,
+    measure: &dyn Measure,
+    page: &mut Drawing,
+) {
+    let (low, high) = (frame.left - 40.0, frame.right + 40.0);
+    let width = |name: &str| measure.width(name, NAME) + 12.0;
+    let tight = seen.iter().map(|(_, name)| width(name)).sum::<f64>() > high - low;
+    let most = (high - low) / seen.len().max(1) as f64 - 12.0;
+    if tight {
+        seen.iter_mut()
+            .for_each(|(_, name)| *name = cut(name, NAME, most, measure));
+    }
+    let places: Vec<f64> = seen.iter().map(|(x, _)| *x).collect();
+    let widths: Vec<f64> = seen.iter().map(|(_, name)| width(name)).collect();
+    let centres = spread(&places, &widths, low, high);
+    for ((x, name), centre) in seen.iter().zip(centres) {
+        page.line((*x, frame.top), (centre, frame.top - 9.0), ink::LEADER, 1.0);
+        let at = (centre, frame.top - 13.0);
+        page.text(name, at, Anchor::Middle, NAME, ink::QUIET_TEXT);
+    }
 }
 
 /// Limits as broken lines; returns their labels. One outside the axis is named at the edge, with an arrow.

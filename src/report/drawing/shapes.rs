@@ -3,6 +3,9 @@
 use super::ink::Ink;
 use super::text::Font;
 
+/// A path longer than this [px] folds back on itself so often that its pattern could not be seen; it is drawn full.
+const LONGEST_BROKEN: f64 = 30_000.0;
+
 /// A page of shapes, painted in order on a white ground.
 #[derive(Clone, Debug)]
 pub struct Drawing {
@@ -141,7 +144,9 @@ impl Drawing {
 
     /// Adds a path, broken by a pattern of lengths drawn and left out (none for a full line).
     pub fn path(&mut self, points: &[(f64, f64)], ink: Ink, width: f64, pattern: &[f64]) {
-        if pattern.is_empty() {
+        let length = |pair: &[(f64, f64)]| (pair[1].0 - pair[0].0).hypot(pair[1].1 - pair[0].1);
+        let dense = points.windows(2).map(length).sum::<f64>() > LONGEST_BROKEN;
+        if pattern.is_empty() || dense {
             if points.len() > 1 {
                 self.shapes.push(Shape::Line {
                     points: points.to_vec(),

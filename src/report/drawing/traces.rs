@@ -1,5 +1,7 @@
 //! One curve in its panel, in the style it asks for, and the name that stands at its end.
 
+use std::collections::BTreeSet;
+
 use crate::report::chart::{Curve, Style};
 
 use super::clip;
@@ -140,7 +142,7 @@ fn draw_lone_points(
     seen.into_iter().map(|point| vec![point]).collect()
 }
 
-/// Discs, on stems or without; those that would cover another exactly are left out.
+/// Discs, on stems or without; of those within two pixels the first is drawn.
 fn draw_discs(
     curve: &Curve,
     colour: Ink,
@@ -152,8 +154,11 @@ fn draw_discs(
         .points
         .iter()
         .filter_map(|&(x, y)| pixel(placed, x, y));
-    let mut seen: Vec<(f64, f64)> = visible.filter(|&point| in_frame(point, placed)).collect();
-    seen.dedup_by_key(|point| ((2.0 * point.0) as i64, (2.0 * point.1) as i64));
+    let mut taken = BTreeSet::new();
+    let seen: Vec<(f64, f64)> = visible
+        .filter(|&point| in_frame(point, placed))
+        .filter(|&(x, y)| taken.insert(((x / 2.0) as i64, (y / 2.0) as i64)))
+        .collect();
     let foot = placed
         .y
         .at(0.0)

@@ -155,7 +155,12 @@ fn kick(netlist: &Netlist, outcome: &Outcome, switch: &str) -> Option<Chart> {
     let until = interruption_end(outcome, &coils, opens);
     let from = (opens - 0.08 * (until - opens)).max(0.0);
     let signal = format!("voltage across {switch}");
-    let trace = outcome.trace(&signal)?;
+    let trace = &shifted(outcome.trace(&signal)?, opens);
+    let coils: Vec<(&str, Trace)> = coils
+        .into_iter()
+        .map(|(coil, trace)| (coil, shifted(trace, opens)))
+        .collect();
+    let (from, until) = (from - opens, until - opens);
     let node = netlist
         .circuit
         .find(switch)?
@@ -165,24 +170,24 @@ fn kick(netlist: &Netlist, outcome: &Outcome, switch: &str) -> Option<Chart> {
         .text
         .clone();
     let mut voltage = CurvePanel {
-        x: Axis::new("time", "s").between(from, until),
+        x: after_opening(from, until),
         y: Axis::new(&signal, "V"),
         curves: vec![curve(trace, switch, from, until)],
         limits: limit_lines(netlist, outcome, &[&signal, &format!("voltage at {node}")]),
         instants: vec![Instant {
-            label: format!("{switch} opens"),
-            at: opens,
+            label: format!("{switch} opens at {}", engineering(opens, "s", 4)),
+            at: 0.0,
         }],
         marks: Vec::new(),
     };
-    let (at, value) = peak(trace, opens, until)?;
+    let (at, value) = peak(trace, 0.0, until)?;
     voltage.marks.push(Mark {
         x: at,
         y: value,
         label: format!(
             "peak {}, {} after opening",
             engineering(value, "V", 4),
-            engineering(at - opens, "s", 3)
+            engineering(at, "s", 3)
         ),
     });
     let mut panels = vec![Panel::Curves(voltage)];
@@ -202,13 +207,28 @@ fn kick(netlist: &Netlist, outcome: &Outcome, switch: &str) -> Option<Chart> {
     })
 }
 
-fn currents(netlist: &Netlist, coils: &[(&str, &Trace)], from: f64, until: f64) -> CurvePanel {
+/// The axis of a zoomed interruption: its zero is the opening.
+fn after_opening(from: f64, until: f64) -> Axis {
+    Axis::new("time after opening", "s").between(from, until)
+}
+
+/// A trace whose time counts from an instant.
+fn shifted(trace: &Trace, instant: f64) -> Trace {
+    let mut shifted = trace.clone();
+    for piece in &mut shifted.pieces {
+        piece.from -= instant;
+        piece.to -= instant;
+    }
+    shifted
+}
+
+fn currents(netlist: &Netlist, coils: &[(&str, Trace)], from: f64, until: f64) -> CurvePanel {
     let limits = coils
         .iter()
         .flat_map(|(coil, _)| level_lines(netlist, &format!("winding current of {coil}")))
         .collect();
     CurvePanel {
-        x: Axis::new("time", "s").between(from, until),
+        x: after_opening(from, until),
         y: Axis::new("winding current", "A"),
         curves: coils
             .iter()

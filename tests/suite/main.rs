@@ -1,4 +1,11 @@
 //! The integration tests, one module per theme.
 
+mod coils;
 mod e_series;
+mod inductance_of_air_coils;
 mod plots;
+mod record;
+mod rings;
+mod saturating_cores;
+mod table;
+mod wire;

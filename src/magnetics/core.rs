@@ -57,7 +57,7 @@ impl Core {
         winding: Option<&WindingPlan>,
         temperature: f64,
     ) -> Result<(Path, Geometry), Fault> {
-        let mut geometry = self.shape.derive(values, winding)?;
+        let mut geometry = sound(self.shape.derive(values, winding)?)?;
         let magnetized = match &self.material {
             Some(material) => material.derive(values, temperature)?,
             None => Magnetized {
@@ -91,6 +91,22 @@ impl Core {
             remarks,
         })
     }
+}
+
+/// Refuses what no core can be: a study may set values that the reading of the netlist never saw.
+fn sound(geometry: Geometry) -> Result<Geometry, Fault> {
+    let lengths = geometry.iron >= 0.0 && geometry.air >= 0.0 && geometry.iron + geometry.air > 0.0;
+    let areas = geometry.area > 0.0 && geometry.minimum_area > 0.0;
+    let finite = (geometry.iron + geometry.air + geometry.area).is_finite();
+    if lengths && areas && finite {
+        return Ok(geometry);
+    }
+    Err(Fault {
+        word: "out-of-range",
+        key: "shape",
+        text: "these dimensions make no core: a length or an area comes out as zero or less".into(),
+        help: "dimensions are above zero, a gap is zero or more",
+    })
 }
 
 impl Wound {

@@ -5,7 +5,7 @@ use super::geometry::Fault;
 use super::materials::{self, Material};
 use super::shapes::{self, SHAPES, ShapeKind};
 use crate::diag::Diagnostic;
-use crate::netlist::{Fields, Key, Named, Node, Reader, Takes, is_name, nearest};
+use crate::netlist::{Data, Fields, Key, Named, Node, Reader, Takes, is_name, nearest};
 use std::collections::BTreeMap;
 use std::sync::Arc;
 
@@ -163,6 +163,18 @@ impl<'a> Library<'a> {
             .report(Diagnostic::error("unknown-name", headline).at(name.span, label));
         None
     }
+}
+
+/// True where a mapping is none, or has unknown keys: that has its message, and what is missing may be misspelt.
+pub(super) fn told_already(fields: &Fields<'_>, tables: &[&[Key]]) -> bool {
+    let known = |word: &str| {
+        tables
+            .iter()
+            .any(|table| table.iter().any(|key| key.name == word))
+    };
+    let mapping = fields.mapping();
+    !matches!(mapping.data, Data::Map(_))
+        || mapping.entries().iter().any(|entry| !known(&entry.key))
 }
 
 /// A fault of a coil on a core as a message at the element's key.

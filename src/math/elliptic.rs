@@ -26,8 +26,17 @@ pub struct Elliptic {
 impl Elliptic {
     /// Integrals for the complementary modulus `complement` = k' = √(1 - k²), 0 < k' <= 1.
     ///
-    /// Relative error about 1e-15 each. At k' = 0 the first kind is infinite.
+    /// Relative error about 1e-15 each. At k' = 0 all but the second kind are infinite.
     pub fn complementary(complement: f64) -> Self {
+        if complement <= 0.0 {
+            let (first, second) = (f64::INFINITY, 1.0);
+            return Elliptic {
+                first,
+                second,
+                d: first,
+                c: first,
+            };
+        }
         // c₁ = (1 - k')/2 = k²/(2 (1 + k')); the sums are kept divided by k² and k⁴.
         let modulus2 = (1.0 - complement) * (1.0 + complement);
         let mut a = 0.5 * (1.0 + complement);

@@ -13,6 +13,24 @@ use crate::math::elliptic::Elliptic;
 #[inline]
 pub fn mutual(one: f64, other: f64, distance: f64) -> f64 {
     let (product, near2, far2) = squares(one, other, distance);
+    mutual_of(product, near2, far2)
+}
+
+/// The same by the `mean` of both radii and their `difference` [m]: exact where the radii are nearly equal.
+#[inline]
+pub(super) fn mutual_about(mean: f64, difference: f64, distance: f64) -> f64 {
+    let d2 = distance * distance;
+    let product = (mean + 0.5 * difference) * (mean - 0.5 * difference);
+    mutual_of(
+        product,
+        difference * difference + d2,
+        4.0 * mean * mean + d2,
+    )
+}
+
+/// M from A a and the squares of the nearest and the farthest distance between points of the two circles.
+#[inline]
+fn mutual_of(product: f64, near2: f64, far2: f64) -> f64 {
     let k2 = 4.0 * product / far2;
     let c = Elliptic::complementary((near2 / far2).sqrt()).c;
     // √(A a) k³ = 2 A a k²/√far2

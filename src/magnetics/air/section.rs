@@ -15,7 +15,7 @@
 //!      +---+- δ
 //! ```
 
-use super::loops::mutual;
+use super::loops::mutual_about;
 use crate::math::quadrature::Rule;
 
 /// A rectangular winding section [m].
@@ -29,7 +29,7 @@ pub struct Section {
     pub length: f64,
 }
 
-/// Inductance per turn squared [H]. Relative error below 1e-10 for length/depth from 1e-4 to 1e4.
+/// Inductance per turn squared [H]. Relative error below 1e-10 for length/depth from 1e-6 to 1e6 and depth/outer radius from 1e-6.
 pub fn permeance(section: Section) -> f64 {
     let integral = Integral::new(section);
     let (b, c) = (section.length, section.outer - section.inner);
@@ -94,15 +94,17 @@ impl Integral {
     ///
     /// Towards the axis M behaves as m ln m, so a coil that nearly reaches the axis is cut by halves there.
     fn line(&self, delta: f64, z: f64) -> f64 {
+        // Counted from the innermost mean radius, so that a thin section keeps its depth.
         let low = self.section.inner + 0.5 * delta;
-        let mut high = self.section.outer - 0.5 * delta;
+        let mut high = self.depth - delta;
         let end = low.max(2e-3 * self.section.outer);
         let mut sum = 0.0;
-        while high > low {
-            let from = if high > 3.0 * end { 0.5 * high } else { low };
+        while high > 0.0 {
+            let halve = low + high > 3.0 * end;
+            let from = if halve { 0.5 * (high - low) } else { 0.0 };
             sum += self
                 .mean
-                .integrate(from, high, |m| mutual(m + 0.5 * delta, m - 0.5 * delta, z));
+                .integrate(from, high, |m| mutual_about(low + m, delta, z));
             high = from;
         }
         (self.section.length - z) * sum
@@ -145,6 +147,10 @@ mod tests {
             (0.1, 0.1001, 0.0001),
             (0.01, 0.02, 0.013),
             (0.01, 0.010001, 0.01),
+            (0.01, 0.01000001, 0.01),
+            (0.01, 0.01000001, 1e-8),
+            (0.0, 0.01, 1e-8),
+            (0.01, 0.012, 2e3),
         ];
         for (inner, outer, length) in extremes {
             let section = Section {

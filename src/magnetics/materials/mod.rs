@@ -17,6 +17,7 @@ pub use magnetization::Magnetization;
 pub use smooth::Smooth;
 
 use super::geometry::{Fault, Remark};
+use super::library::told_already;
 use crate::netlist::{Fields, Key, NamedNode, Reader, Takes, Values};
 use crate::units::PERMEABILITY;
 use std::sync::Arc;
@@ -61,7 +62,8 @@ pub struct Magnetized {
 
 /// Reads one entry of `materials`.
 pub fn read<'a>(entry: &NamedNode<'a>, reader: &'a Reader<'a>) -> Option<Arc<dyn Material>> {
-    let mut fields = Fields::new(entry.node, entry.path.clone(), &[], reader);
+    // The table with all of the common keys goes first: a message names its keys as examples.
+    let mut fields = Fields::new(entry.node, entry.path.clone(), smooth::KIND.keys, reader);
     for kind in MATERIALS {
         fields = fields.also(kind.keys);
     }
@@ -101,6 +103,10 @@ fn strays(fields: &Fields<'_>, kind: &MaterialKind) -> Option<&'static str> {
 }
 
 fn untold(fields: &Fields<'_>) {
+    let all: Vec<&[Key]> = MATERIALS.iter().map(|kind| kind.keys).collect();
+    if told_already(fields, &all) {
+        return;
+    }
     let ways: Vec<&str> = MATERIALS.iter().map(|kind| kind.told_by).collect();
     let headline = format!("{} needs one of {}", fields.path(), ways.join(", "));
     let diagnostic = crate::diag::Diagnostic::error("missing-key", headline)

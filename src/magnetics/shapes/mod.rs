@@ -58,6 +58,3 @@ fn ordered(fields: &Fields<'_>, smaller: &str, larger: &str) -> Option<()> {
     fields.error(smaller, "out-of-range", headline, label, None);
     None
 }
-
-#[cfg(test)]
-mod tests;

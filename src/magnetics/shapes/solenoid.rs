@@ -246,18 +246,19 @@ fn one_layer(diameter: f64, length: f64, winding: Option<&WindingPlan>) -> Geome
 }
 
 fn thick(section: Section, winding: Option<&WindingPlan>) -> Result<Geometry, Fault> {
-    if section.inner >= section.outer {
-        return Err(no_room(
-            "inner_diameter",
-            "the coil's inner diameter reaches its outer one",
-        ));
+    // Beyond a million to one the section is a line and the quadrature is not made for it.
+    let within = |ratio: f64| (1e-6..=1e6).contains(&ratio);
+    let depth = section.outer - section.inner;
+    if !(section.inner >= 0.0 && within(depth / section.outer) && within(section.length / depth)) {
+        let text = "the coil's section vanishes, or is a million times as long as it is deep";
+        return Err(no_room("inner_diameter", text));
     }
     let mut geometry = in_air(
         section.inner + section.outer,
         section.length,
         section::permeance(section),
     );
-    let area = (section.outer - section.inner) * section.length;
+    let area = depth * section.length;
     let window = Window {
         area,
         practical_fill: PRACTICAL_FILL,

@@ -1,6 +1,7 @@
 //! The keys of a wire.
 
 use super::{Gauge, GaugeFault, Wire};
+use crate::magnetics::library::told_already;
 use crate::netlist::{Fields, Key, Takes, Value, Values};
 use crate::units::LENGTH;
 
@@ -172,6 +173,9 @@ fn foil(fields: &Fields<'_>) -> Option<Form> {
 }
 
 fn unclear(fields: &Fields<'_>, written: &[&str]) {
+    if written.is_empty() && told_already(fields, &[WIRE_KEYS]) {
+        return;
+    }
     let diagnostic = if written.is_empty() {
         crate::diag::Diagnostic::error(
             "missing-key",

@@ -175,7 +175,7 @@ impl Element for Coil {
                 word: "no-mean-turn",
                 key: "wire",
                 headline: "the mean turn of this core is not known, so neither is the resistance of its wire".into(),
-                help: "an `effective` core has no window: write the winding's `resistance` instead".into(),
+                help: "write `mean_turn: 45 mm` in the core, or the winding's `resistance` instead of its wire".into(),
             })?,
         };
         self.made = Some(wound);

@@ -8,6 +8,9 @@ use super::tolerances::largest;
 /// step's end.
 const CLOSE: f64 = 0.05;
 
+/// Points close to the start of a step at which guards are looked at just after an event.
+const EARLY: [f64; 3] = [1e-6, 1e-3, 3e-2];
+
 /// What the guards say of a step.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub(crate) enum Crossing {
@@ -27,6 +30,10 @@ pub(crate) struct Watch {
     now: Vec<f64>,
     x: Vec<f64>,
     moved: Vec<f64>,
+    /// Where guards are looked at within a step: the method's own points behind its start, ascending.
+    points: Vec<f64>,
+    /// No step has been kept since the last event.
+    fresh: bool,
 }
 
 impl Watch {
@@ -39,6 +46,8 @@ impl Watch {
             now: guards,
             moved: x.clone(),
             x,
+            points: Vec::new(),
+            fresh: true,
         }
     }
 
@@ -50,6 +59,7 @@ impl Watch {
     /// The march begins: a guard that is already above zero falls at once.
     pub fn begin<S: System + ?Sized>(&mut self, system: &S, at: Point<'_>) -> Option<usize> {
         system.guards(at, &mut self.start);
+        self.fresh = true;
         self.start.iter().position(|&guard| guard > 0.0)
     }
 
@@ -65,12 +75,14 @@ impl Watch {
         let jumped = (0..self.now.len())
             .find(|&k| Some(k) != fired && self.start[k] < 0.0 && self.now[k] > 0.0);
         self.start.copy_from_slice(&self.now);
+        self.fresh = true;
         jumped
     }
 
     /// The step looked at last is kept.
     pub fn keep(&mut self) {
         self.start.copy_from_slice(&self.end);
+        self.fresh = false;
     }
 
     /// Looks for the first guard that rises within the step.
@@ -88,12 +100,15 @@ impl Watch {
         };
         system.guards(at_end, &mut self.end);
         let mut first: Option<(f64, usize)> = None;
+        if self.points.is_empty() {
+            self.points
+                .extend(step.dense.points.iter().filter(|&&point| point > 0.0));
+            self.points.sort_by(f64::total_cmp);
+        }
         for guard in 0..self.start.len() {
-            if self.start[guard] < 0.0 {
-                let within = first.map_or(1.0, |found| found.0);
-                if let Some(root) = self.root(system, step, guard, within) {
-                    first = Some((root, guard));
-                }
+            let within = first.map_or(1.0, |found| found.0);
+            if let Some(root) = self.root(system, step, guard, within) {
+                first = Some((root, guard));
             }
         }
         let Some((root, guard)) = first else {
@@ -123,7 +138,8 @@ impl Watch {
         )
     }
 
-    /// Where in the step, up to `within`, this guard first rises: looked for between the polynomial's own points.
+    /// Where in the step, up to `within`, this guard first rises: looked for between the polynomial's own points and,
+    /// just after an event, close to the start (a guard that has just been taken stands at zero there).
     fn root<S: System + ?Sized>(
         &mut self,
         system: &S,
@@ -132,32 +148,27 @@ impl Watch {
         within: f64,
     ) -> Option<f64> {
         let (mut low, mut below) = (0.0, self.start[guard]);
-        let mut points = step
-            .dense
-            .points
-            .iter()
-            .copied()
-            .filter(|&point| point > 0.0)
-            .collect::<Vec<_>>();
-        points.sort_by(f64::total_cmp);
-        for point in points {
+        let early: &[f64] = if self.fresh && below >= 0.0 {
+            &EARLY
+        } else {
+            &[]
+        };
+        for k in 0..early.len() + self.points.len() {
+            let point = early
+                .get(k)
+                .copied()
+                .unwrap_or_else(|| self.points[k - early.len()]);
             if low >= within {
                 return None;
             }
-            let above = if point >= 1.0 {
+            let above = if point == 1.0 {
                 self.end[guard]
             } else {
                 self.guard_at(system, step, guard, point)
             };
             if below < 0.0 && above >= 0.0 {
-                return Some(self.narrow(
-                    system,
-                    step,
-                    guard,
-                    (low, below),
-                    (point.min(1.0), above),
-                ))
-                .filter(|&root| root < within || within == 1.0);
+                let root = self.narrow(system, step, guard, (low, below), (point, above));
+                return Some(root).filter(|&root| root < within || within == 1.0);
             }
             (low, below) = (point, above);
         }

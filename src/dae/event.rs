@@ -12,10 +12,8 @@ use crate::math::Elimination;
 
 /// So many events at one instant are taken for a circle.
 const MOST_AT_ONCE: usize = 200;
-/// So many guards' events in a row ...
+/// So many guards' events in a row between which no unknown moves by a tolerance are chattering.
 const MOST_IN_HASTE: usize = 100;
-/// ... within this share of the instant itself are chattering.
-const HASTE: f64 = 1e-10;
 
 /// Memory of the last event.
 #[derive(Debug)]
@@ -27,9 +25,9 @@ pub(crate) struct Events {
     charge: Vec<f64>,
     newton: Newton,
     out: Evaluation,
-    /// Guards' events in a row, and when the row began.
+    /// Guards' events in a row, and the unknowns after the last one.
     row: usize,
-    row_since: f64,
+    x_after: Vec<f64>,
 }
 
 impl Events {
@@ -44,7 +42,7 @@ impl Events {
             newton: Newton::new(system, elimination),
             out: evaluation(size, system.pattern().len()),
             row: 0,
-            row_since: 0.0,
+            x_after: vec![f64::INFINITY; size],
         }
     }
 
@@ -74,7 +72,7 @@ impl Events {
         self.time = state.time;
         self.x_before.copy_from_slice(&state.x);
         self.mode_before.copy_from_slice(&state.mode);
-        self.haste(cause, state.time)?;
+        self.haste(cause, state, weights)?;
         let mut changed = false;
         let mut next = Some(cause);
         while let Some(cause) = next {
@@ -94,6 +92,7 @@ impl Events {
                 return Err(self.chattering(state.time, cause));
             }
         }
+        self.x_after.copy_from_slice(&state.x);
         Ok(changed)
     }
 
@@ -183,15 +182,16 @@ impl Events {
         system.transition(cause, state.time, x, &mut state.mode)
     }
 
-    /// Counts guards' events that follow one another without time going on.
-    fn haste(&mut self, cause: Cause, time: f64) -> Result<(), MarchError> {
-        if cause == Cause::Time || time - self.row_since > HASTE * time.abs() {
-            self.row = 0;
-            self.row_since = time;
-        }
-        self.row += 1;
+    /// Counts guards' events that follow one another while nothing moves.
+    fn haste(&mut self, cause: Cause, state: &State, weights: &[f64]) -> Result<(), MarchError> {
+        let moved = |k: usize| (state.x[k] - self.x_after[k]).abs() * weights[k] > 1.0;
+        self.row = if cause == Cause::Time || (0..weights.len()).any(moved) {
+            0
+        } else {
+            self.row + 1
+        };
         if self.row > MOST_IN_HASTE {
-            Err(self.chattering(time, cause))
+            Err(self.chattering(state.time, cause))
         } else {
             Ok(())
         }

@@ -6,7 +6,7 @@
 
 use super::statistics::Statistics;
 use super::system::{Evaluation, Point, System};
-use super::tolerances::largest;
+use super::tolerances::{largest, rounding};
 use super::trouble::Trouble;
 use crate::math::{Elimination, Matrix};
 
@@ -52,6 +52,7 @@ pub(crate) struct Newton {
     pub matrix: Matrix<f64>,
     pub out: Evaluation,
     step: Vec<f64>,
+    rest: Vec<f64>,
     /// Rate for which the factors hold; not a number where there are none.
     factored: f64,
     /// Ratio of the last two steps' sizes in the last solution.
@@ -66,6 +67,7 @@ impl Newton {
             matrix: Matrix::new(size, &pattern.starts, &pattern.rows, elimination),
             out: evaluation(size, pattern.len()),
             step: vec![0.0; size],
+            rest: Vec::with_capacity(size),
             factored: f64::NAN,
             contraction: 1.0,
         }
@@ -74,6 +76,41 @@ impl Newton {
     /// Forgets the factors: the equations have changed.
     pub fn forget(&mut self) {
         self.factored = f64::NAN;
+    }
+
+    /// A constant part `factor` times `charge`, in memory that [`Newton::keep_rest`] takes back.
+    pub fn rest(&mut self, charge: &[f64], factor: f64) -> Vec<f64> {
+        let mut rest = std::mem::take(&mut self.rest);
+        rest.clear();
+        rest.extend(charge.iter().map(|charge| factor * charge));
+        rest
+    }
+
+    /// Keeps the memory of [`Newton::rest`] for the next time.
+    pub fn keep_rest(&mut self, rest: Vec<f64>) {
+        self.rest = rest;
+    }
+
+    /// By how many tolerances x may move when the charges' last digits do, through the last factors.
+    pub fn rounding(&mut self, charge: &[f64], rate: f64, weights: &[f64]) -> f64 {
+        for (row, (step, charge)) in self.step.iter_mut().zip(charge).enumerate() {
+            *step = rounding(row, rate * charge);
+        }
+        self.matrix.solve(&mut self.step);
+        largest(&self.step, weights).0
+    }
+
+    /// The size below which a Newton step is rounding and nothing else.
+    #[cold]
+    fn noise(&mut self, equation: &Equation<'_>, x: &[f64], weights: &[f64]) -> f64 {
+        for (row, step) in self.step.iter_mut().enumerate() {
+            let terms = (equation.rate * self.out.q[row]).abs()
+                + self.out.f[row].abs()
+                + equation.rest[row].abs();
+            *step = rounding(row, terms);
+        }
+        self.matrix.solve(&mut self.step);
+        largest(&self.step, weights).0 + 8.0 * f64::EPSILON * largest(x, weights).0
     }
 
     /// Solves from the guess in `x`; leaves the solution there. `out` then holds the last evaluation, one step before.
@@ -88,7 +125,7 @@ impl Newton {
     ) -> Result<(), Failure> {
         let mut before = f64::INFINITY;
         let mut culprit = 0;
-        let mut eta = self.contraction.max(f64::EPSILON).powf(0.8);
+        let mut eta = self.contraction.max(0.02).powf(0.8);
         let mut kept = !rules.fresh && self.factored == equation.rate;
         for iteration in 0..rules.longest {
             self.evaluate(system, equation, x, !kept, counted)?;
@@ -134,8 +171,11 @@ impl Newton {
             {
                 return Ok(());
             }
+            if rate > 0.5 && size <= self.noise(equation, x, weights) {
+                return Ok(());
+            }
             // Slow or growing with old slopes: take new ones at the present point.
-            kept = !rules.fresh && (rate.is_nan() || rate <= 0.3);
+            kept = !rules.fresh && iteration < 4 && (rate.is_nan() || rate <= 0.3);
             before = size;
         }
         self.forget();

@@ -8,12 +8,17 @@ use super::trouble::{StartError, Trouble};
 use crate::math::Elimination;
 
 /// Length [s] of the implicit Euler step that stands for an instant. A thousandth of a picosecond is short against
-/// every time constant of a lumped circuit, and long enough for charges to be told apart in double precision.
-pub(crate) const INSTANT: f64 = 1e-15;
+/// every time constant of a lumped circuit.
+const INSTANT: f64 = 1e-15;
+/// The instant is lengthened up to so many seconds where the rounding of charges would show in x: the current that
+/// holds a farad at a source's voltage is uncertain by the charge's last digit over the instant.
+const LONGEST_INSTANT: f64 = 1e-7;
+/// Rounding may show by this share of a tolerance.
+const ROUNDING: f64 = 0.05;
 
 /// Rules for the instant's equation.
 const INSTANT_RULES: Rules = Rules {
-    close: 1e-3,
+    close: 1e-2,
     longest: 60,
     fresh: true,
 };
@@ -110,22 +115,28 @@ pub(crate) fn instant<S: System + ?Sized>(
     x: &mut [f64],
     counted: &mut Statistics,
 ) -> Result<(), Failure> {
-    let rate = 1.0 / INSTANT;
+    let mut length = INSTANT;
     newton.forget();
     for _ in 0..2 {
-        for value in charge.iter_mut() {
-            *value *= -rate;
+        loop {
+            let rate = 1.0 / length;
+            let rest = newton.rest(charge, -rate);
+            let equation = Equation {
+                time: at.time,
+                mode: at.mode,
+                rate,
+                rest: &rest,
+                shunt: 0.0,
+                shunted: &[],
+                share: None,
+            };
+            newton.solve(system, &equation, INSTANT_RULES, weights, x, counted)?;
+            newton.keep_rest(rest);
+            if length >= LONGEST_INSTANT || newton.rounding(charge, rate, weights) <= ROUNDING {
+                break;
+            }
+            length *= 10.0;
         }
-        let equation = Equation {
-            time: at.time,
-            mode: at.mode,
-            rate,
-            rest: charge,
-            shunt: 0.0,
-            shunted: &[],
-            share: None,
-        };
-        newton.solve(system, &equation, INSTANT_RULES, weights, x, counted)?;
         system.evaluate(Point { x, ..at }, false, &mut newton.out);
         counted.evaluations += 1;
         charge.copy_from_slice(&newton.out.q);

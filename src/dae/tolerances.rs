@@ -43,3 +43,13 @@ pub(crate) fn largest(v: &[f64], weights: &[f64]) -> (f64, usize) {
     }
     most
 }
+
+/// What rounding may do to a row whose terms are of this size; the sign alternates from row to row.
+#[inline]
+pub(crate) fn rounding(row: usize, terms: f64) -> f64 {
+    if row.is_multiple_of(2) {
+        4.0 * f64::EPSILON * terms
+    } else {
+        -4.0 * f64::EPSILON * terms
+    }
+}

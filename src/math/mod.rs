@@ -15,3 +15,6 @@ pub mod sparse;
 
 pub use matrix::{Elimination, Matrix, Singular};
 pub use scalar::Scalar;
+
+#[cfg(test)]
+mod tests;

@@ -1,7 +1,10 @@
 //! The integration tests, one module per theme.
 
+#[path = "../circuits/mod.rs"]
+mod circuits;
 mod coils;
 mod e_series;
+mod engine;
 mod inductance_of_air_coils;
 mod plots;
 mod record;

@@ -3,7 +3,11 @@
 //! The march owns the loop: how long a step is, whether it is kept, what happens at events. A family owns its
 //! attempt: stages, iteration, the error estimate in x, and the dense output of the step.
 
+mod collocation;
+mod coupled;
 mod diagonal;
+mod radau_iia;
+mod split;
 mod tr_bdf2;
 
 use super::dense::Dense;
@@ -11,10 +15,11 @@ use super::statistics::Statistics;
 use super::system::{Point, System};
 use super::trouble::Trouble;
 use crate::math::Elimination;
+use collocation::Collocation;
 use diagonal::Diagonal;
 
 /// All methods; the first is the one that is taken unless another is asked for.
-pub const METHODS: &[Method] = &[tr_bdf2::METHOD];
+pub const METHODS: &[Method] = &[radau_iia::METHOD, tr_bdf2::METHOD];
 
 /// An implicit one-step method.
 #[derive(Clone, Copy, Debug)]
@@ -25,6 +30,9 @@ pub struct Method {
     pub order: u32,
     /// Order of the error estimate: it falls like this power of the step.
     pub estimated: u32,
+    /// Local tolerance for an accuracy a of the whole run, as a share of each unknown's swing: `local.0 a^local.1`.
+    /// Calibrated on four circuits with stored readings (`tests/suite/engine.rs`).
+    pub local: (f64, f64),
     /// What its stages look like.
     pub family: Family,
 }
@@ -34,6 +42,8 @@ pub struct Method {
 pub enum Family {
     /// Stages solved one after the other with one matrix, the first explicit, the last at the step's end.
     Diagonal(Table),
+    /// Radau's collocation with three stages, solved together.
+    Collocation3,
 }
 
 /// Coefficients of a diagonally implicit method (Butcher's table, stiffly accurate, first stage explicit).
@@ -50,6 +60,12 @@ pub struct Table {
 }
 
 impl Method {
+    /// Tolerated error of a step, as a share of an unknown's swing, for an accuracy of the whole run. Where the
+    /// estimate's order is not that of the errors which pile up, the one is not proportional to the other.
+    pub fn local_tolerance(&self, accuracy: f64) -> f64 {
+        self.local.0 * accuracy.powf(self.local.1)
+    }
+
     /// The method of this name.
     pub fn named(name: &str) -> Option<&'static Method> {
         METHODS.iter().find(|method| method.name == name)
@@ -79,13 +95,19 @@ pub(crate) struct Trial<'a> {
 /// A family's memory.
 #[derive(Debug)]
 pub(crate) enum Stepper {
-    Diagonal(Diagonal),
+    Diagonal(Box<Diagonal>),
+    Collocation3(Box<Collocation<3>>),
 }
 
 impl Stepper {
     pub fn new<S: System + ?Sized>(method: &Method, system: &S, elimination: Elimination) -> Self {
         match method.family {
-            Family::Diagonal(table) => Stepper::Diagonal(Diagonal::new(table, system, elimination)),
+            Family::Diagonal(table) => {
+                Stepper::Diagonal(Box::new(Diagonal::new(table, system, elimination)))
+            }
+            Family::Collocation3 => {
+                Stepper::Collocation3(Box::new(Collocation::new(system, elimination)))
+            }
         }
     }
 
@@ -93,6 +115,7 @@ impl Stepper {
     pub fn restart(&mut self) {
         match self {
             Stepper::Diagonal(stepper) => stepper.restart(),
+            Stepper::Collocation3(stepper) => stepper.restart(),
         }
     }
 
@@ -105,6 +128,7 @@ impl Stepper {
     ) -> Attempt {
         match self {
             Stepper::Diagonal(stepper) => stepper.attempt(system, trial, counted),
+            Stepper::Collocation3(stepper) => stepper.attempt(system, trial, counted),
         }
     }
 
@@ -112,6 +136,7 @@ impl Stepper {
     pub fn end(&self) -> &[f64] {
         match self {
             Stepper::Diagonal(stepper) => stepper.end(),
+            Stepper::Collocation3(stepper) => stepper.end(),
         }
     }
 
@@ -119,6 +144,7 @@ impl Stepper {
     pub fn lay(&mut self) {
         match self {
             Stepper::Diagonal(stepper) => stepper.lay(),
+            Stepper::Collocation3(stepper) => stepper.lay(),
         }
     }
 
@@ -126,6 +152,7 @@ impl Stepper {
     pub fn dense(&self) -> Dense<'_> {
         match self {
             Stepper::Diagonal(stepper) => stepper.dense(),
+            Stepper::Collocation3(stepper) => stepper.dense(),
         }
     }
 
@@ -133,6 +160,7 @@ impl Stepper {
     pub fn keep(&mut self) {
         match self {
             Stepper::Diagonal(stepper) => stepper.keep(),
+            Stepper::Collocation3(stepper) => stepper.keep(),
         }
     }
 }

@@ -3,3 +3,4 @@
 mod events;
 mod order;
 mod problems;
+mod starts;

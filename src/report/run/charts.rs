@@ -366,7 +366,7 @@ fn knee_line(report: &CoilReport) -> Option<LimitLine> {
     let value = a.flux_density + share * (b.flux_density - a.flux_density);
     Some(LimitLine {
         label: format!(
-            "70 % of the inductance left in {} at {}",
+            "{}: 70 % of L left, {}",
             report.name,
             engineering(value, "T", 3)
         ),

@@ -86,7 +86,7 @@ fn a_linear_coil_is_clamped_by_a_breakdown() {
   k: {kind: switch, nodes: [drive, ground], closed_resistance: 1 µΩ, open_resistance: 1 TΩ, transition: 1 ns,
       initially: closed, opens_at: [1 ms]}
   z: {kind: suppressor_diode, nodes: [drive, rail], directions: both, breakdown_voltage: 100 V, breakdown_resistance: 100 Ω}
-analysis: {transient: {duration: 3 ms, accuracy: 1e-6}}
+analysis: {transient: {duration: 1.35 ms, accuracy: 1e-6}}
 readings:
   release: {signal: current through l, take: time_until, falls_to: 7.5 mA, from: k opens}
   kick: {signal: voltage at drive, take: highest}

@@ -135,6 +135,35 @@ impl March {
     }
 }
 
+/// Tells an estimate that is made of rounding from one that is made of error: it does not fall with the step.
+///
+/// A charge that follows a node of tens of volts has a current whose rounding grows as the step shrinks, and where a
+/// tolerance asks for less than that no step is short enough. After some tries in which the estimate stayed, the step is
+/// as good as the numbers can tell.
+#[derive(Default)]
+struct Floor {
+    last: Option<(f64, f64)>,
+    stayed: u32,
+}
+
+impl Floor {
+    /// Takes a step that was too inaccurate; true once its estimate has proved to be a floor.
+    fn reached(&mut self, length: f64, error: f64) -> bool {
+        if let Some((before, error_before)) = self.last {
+            // Even an algebraic unknown at a corner gains as the step does; a floor gains nothing.
+            let fell = error < error_before * (length / before).sqrt();
+            self.stayed = if fell { 0 } else { self.stayed + 1 };
+        }
+        self.last = Some((length, error));
+        self.stayed >= MOST_STAYS && error < MOST_ROUNDING
+    }
+}
+
+/// Tries in a row whose estimate may stay before it counts as rounding.
+const MOST_STAYS: u32 = 12;
+/// Tolerances beyond which an estimate that stays is no rounding but a fault.
+const MOST_ROUNDING: f64 = 100.0;
+
 struct Run<'a, 'o, S: ?Sized> {
     system: &'a S,
     span: Span<'a>,
@@ -225,6 +254,7 @@ impl<S: System + ?Sized> Run<'_, '_, S> {
     fn step(&mut self, stop: f64) -> Result<(End, ControlFlow<()>), MarchError> {
         let mut aim = f64::INFINITY;
         let mut located = 0;
+        let mut floor = Floor::default();
         loop {
             let (to, at_stop) = self.goal(stop.min(aim));
             let trial = Trial {
@@ -242,7 +272,7 @@ impl<S: System + ?Sized> Run<'_, '_, S> {
                 .stepper
                 .attempt(self.system, trial, self.counted)
             {
-                Attempt::Solved { error, .. } if error <= 1.0 => {
+                Attempt::Solved { error, .. } if error <= 1.0 || floor.reached(length, error) => {
                     let end = match self.crossing(to, located) {
                         Crossing::None => None,
                         Crossing::Here(guard) => Some(End::Guard(guard)),
@@ -323,7 +353,8 @@ impl<S: System + ?Sized> Run<'_, '_, S> {
     ) -> Result<(), MarchError> {
         self.counted.rejected += 1;
         self.length = length * factor;
-        if length > self.shortest() {
+        // The difference of two instants rounds: twice the shortest step is still the shortest.
+        if length > 2.0 * self.shortest() {
             return Ok(());
         }
         Err(MarchError {

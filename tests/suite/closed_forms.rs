@@ -24,11 +24,35 @@ readings:
         &[],
     ));
     let charge = |t: f64| 10.0 * (1.0 - (-t / 1e-3).exp());
-    check("RC charging", SOURCE, value(&out, "one"), charge(1e-3), Bound::Relative(1e-6));
-    check("RC charging", SOURCE, value(&out, "two"), 0.01 * (-2.0f64).exp(), Bound::Relative(1e-5));
-    check("RC charging", SOURCE, value(&out, "half"), 1e-3 * 2f64.ln(), Bound::Relative(1e-5));
+    check(
+        "RC charging",
+        SOURCE,
+        value(&out, "one"),
+        charge(1e-3),
+        Bound::Relative(1e-6),
+    );
+    check(
+        "RC charging",
+        SOURCE,
+        value(&out, "two"),
+        0.01 * (-2.0f64).exp(),
+        Bound::Relative(1e-5),
+    );
+    check(
+        "RC charging",
+        SOURCE,
+        value(&out, "half"),
+        1e-3 * 2f64.ln(),
+        Bound::Relative(1e-5),
+    );
     let heat = 0.5 * 1e-6 * 100.0 * (1.0 - (-10.0f64).exp());
-    check("RC charging", SOURCE, value(&out, "heat"), heat, Bound::Relative(1e-5));
+    check(
+        "RC charging",
+        SOURCE,
+        value(&out, "heat"),
+        heat,
+        Bound::Relative(1e-5),
+    );
 }
 
 #[test]
@@ -46,9 +70,21 @@ readings:
         &[],
     ));
     let (tau, last) = (5e-3, 0.06);
-    check("RL build-up", SOURCE, value(&out, "five"), last * (1.0 - (-1.0f64).exp()), Bound::Relative(1e-6));
+    check(
+        "RL build-up",
+        SOURCE,
+        value(&out, "five"),
+        last * (1.0 - (-1.0f64).exp()),
+        Bound::Relative(1e-6),
+    );
     let mean = last * (1.0 - tau / 10e-3 * (1.0 - (-2.0f64).exp()));
-    check("RL build-up", SOURCE, value(&out, "mean"), mean, Bound::Relative(1e-6));
+    check(
+        "RL build-up",
+        SOURCE,
+        value(&out, "mean"),
+        mean,
+        Bound::Relative(1e-6),
+    );
 }
 
 #[test]
@@ -70,9 +106,27 @@ readings:
     let w = (w0 * w0 - a * a).sqrt();
     let v = |t: f64| 1.0 - (-a * t).exp() * ((w * t).cos() + a / w * (w * t).sin());
     let top = std::f64::consts::PI / w;
-    check("RLC ringing", SOURCE, value(&out, "peak"), v(top), Bound::Relative(2e-6));
-    check("RLC ringing", SOURCE, out.reading("peak").and_then(|r| r.time).expect("a peak"), top, Bound::Relative(1e-3));
-    check("RLC ringing", SOURCE, value(&out, "when"), v(200e-6), Bound::Absolute(2e-6));
+    check(
+        "RLC ringing",
+        SOURCE,
+        value(&out, "peak"),
+        v(top),
+        Bound::Relative(2e-6),
+    );
+    check(
+        "RLC ringing",
+        SOURCE,
+        out.reading("peak").and_then(|r| r.time).expect("a peak"),
+        top,
+        Bound::Relative(1e-3),
+    );
+    check(
+        "RLC ringing",
+        SOURCE,
+        value(&out, "when"),
+        v(200e-6),
+        Bound::Absolute(2e-6),
+    );
 }
 
 #[test]
@@ -95,8 +149,20 @@ readings:
     ));
     let (i0, tau, clamp): (f64, f64, f64) = (24.0 / 640.0, 1.2 / 740.0, 100.0 / 740.0);
     let release = tau * ((i0 + clamp) / (0.0075 + clamp)).ln();
-    check("clamped linear coil", SOURCE, value(&out, "release"), release, Bound::Relative(1e-5));
-    check("clamped linear coil", SOURCE, value(&out, "kick"), 124.0 + 100.0 * i0, Bound::Relative(1e-5));
+    check(
+        "clamped linear coil",
+        SOURCE,
+        value(&out, "release"),
+        release,
+        Bound::Relative(1e-5),
+    );
+    check(
+        "clamped linear coil",
+        SOURCE,
+        value(&out, "kick"),
+        124.0 + 100.0 * i0,
+        Bound::Relative(1e-5),
+    );
 }
 
 #[test]
@@ -119,5 +185,11 @@ readings:
 ",
         &[],
     ));
-    check("coupled inductors of coefficient 1", SOURCE, value(&out, "out"), 20.0, Bound::Relative(2e-4));
+    check(
+        "coupled inductors of coefficient 1",
+        SOURCE,
+        value(&out, "out"),
+        20.0,
+        Bound::Relative(2e-4),
+    );
 }

@@ -1,8 +1,11 @@
 //! The integration tests, one module per theme.
 
+#[path = "../circuits/mod.rs"]
+mod circuits;
 mod closed_forms;
 mod coils;
 mod e_series;
+mod engine;
 mod inductance_of_air_coils;
 mod netlists;
 mod peers;

@@ -7,7 +7,11 @@ use std::path::Path;
 
 /// Reads a netlist from text; panics with the messages where it is wrong.
 pub fn from_text(text: &str, overrides: &[&str]) -> Netlist {
-    let input = Input::Text { name: "test".into(), bytes: text.as_bytes().to_vec(), folder: None };
+    let input = Input::Text {
+        name: "test".into(),
+        bytes: text.as_bytes().to_vec(),
+        folder: None,
+    };
     sound(read(&input, &owned(overrides)))
 }
 
@@ -24,14 +28,19 @@ fn owned(overrides: &[&str]) -> Vec<String> {
 fn sound(read: Result<Netlist, coilbreak::run::ReadError>) -> Netlist {
     read.unwrap_or_else(|error| {
         let failure = error.failure();
-        let text = coilbreak::diag::draw_all(&failure.diagnostics, &failure.sources, coilbreak::diag::Paint::Plain);
+        let text = coilbreak::diag::draw_all(
+            &failure.diagnostics,
+            &failure.sources,
+            coilbreak::diag::Paint::Plain,
+        );
         panic!("the netlist is wrong:\n{text}")
     })
 }
 
 /// Runs a netlist; panics where the simulation cannot be completed.
 pub fn outcome(netlist: &Netlist) -> Outcome {
-    run(netlist, &mut |_, _| ControlFlow::Continue(())).unwrap_or_else(|failure| panic!("{failure:?}"))
+    run(netlist, &mut |_, _| ControlFlow::Continue(()))
+        .unwrap_or_else(|failure| panic!("{failure:?}"))
 }
 
 /// The value of a reading.

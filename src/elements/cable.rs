@@ -1,9 +1,18 @@
 //! Cable: a go and a return conductor as a chain of T sections, each half series impedance, shunt capacitance, half
-//! series impedance. Per-metre values are those of the loop, go and return together. Where both ends of the return are
-//! one node the whole loop impedance lies in the go conductor; otherwise half lies in each.
+//! series impedance. Per-metre values are those of the loop, go and return together.
+//!
+//! ```text
+//! near  --- R/2 L/2 ---+--- R L ---+--- R/2 L/2 ---  far        I_k in the series branches,
+//!                      C           C                            u_k across the capacitances
+//! return near ---------+-----------+--------------- return far
+//! ```
+//! The loop carries the currents I_k. Where both ends of the return are one node, all of the drop lies in the go
+//! conductor. Otherwise half of it lies in each, and a current J that comes back by another way flows in both
+//! conductors side by side: go carries I + J/2, return I - J/2. A loop inductance tells nothing of the field of J, so J
+//! meets the conductors' resistance alone: (v_near + v_return_near) - (v_far + v_return_far) = J R length / 2.
 
 use super::claims::{Claims, Measure, Wanted};
-use super::element::{Element, Energy, Path, PathKind, Point, Unknown, Unsound};
+use super::element::{Element, Energy, Path, PathKind, Point, Unknown, Unsound, sum};
 use super::kind::{ElementKind, Made, Surroundings, Terminal};
 use super::stamper::Stamper;
 use crate::netlist::{Fields, Key, Takes, Value, Values};
@@ -61,21 +70,20 @@ struct Cable {
     keys: [Value; 4],
     asked_sections: usize,
     shared_return: bool,
-    /// Series resistance [Ω] and inductance [H] of one whole section and conductor.
+    /// Series resistance [Ω] and inductance [H] of one whole section, go and return together.
     resistance: f64,
     inductance: f64,
     /// Shunt capacitance of one section [F].
     capacitance: f64,
-    go: Conductor,
-    back: Option<Conductor>,
     terminals: [Unknown; 4],
-}
-
-/// One conductor: `points` from near to far, `currents[k]` from `points[k]` to `points[k + 1]`.
-#[derive(Default)]
-struct Conductor {
-    points: Vec<Unknown>,
+    /// Loop currents from near to far.
     currents: Vec<Unknown>,
+    /// Voltages across the capacitances from near to far, one fewer than currents.
+    voltages: Vec<Unknown>,
+    /// The current that both conductors carry side by side; none with a shared return.
+    common: Option<Unknown>,
+    /// Terminals whose currents others follow, each with the unknown that carries it.
+    followed: Vec<(usize, Unknown)>,
 }
 
 fn read(fields: &Fields<'_>, _around: &Surroundings<'_>) -> Option<Made> {
@@ -109,9 +117,11 @@ fn read(fields: &Fields<'_>, _around: &Surroundings<'_>) -> Option<Made> {
         resistance: 0.0,
         inductance: 0.0,
         capacitance: 0.0,
-        go: Conductor::default(),
-        back: None,
         terminals: [Unknown::GROUND; 4],
+        currents: Vec::new(),
+        voltages: Vec::new(),
+        common: None,
+        followed: Vec::new(),
     };
     let names = ["near", "far", "return_near", "return_far"];
     let terminals = names
@@ -128,7 +138,7 @@ fn read(fields: &Fields<'_>, _around: &Surroundings<'_>) -> Option<Made> {
 impl Cable {
     /// Fraction of a section's series impedance in branch k: half at both ends of the chain.
     fn share(&self, k: usize) -> f64 {
-        let branches = self.go.currents.len();
+        let branches = self.currents.len();
         if branches == 1 {
             self.asked_sections as f64
         } else if k == 0 || k + 1 == branches {
@@ -138,29 +148,65 @@ impl Cable {
         }
     }
 
-    fn conductors(&self) -> impl Iterator<Item = &Conductor> {
-        std::iter::once(&self.go).chain(&self.back)
-    }
-
-    /// The return's point opposite point k of the go conductor.
-    fn opposite(&self, k: usize) -> Unknown {
-        self.back
-            .as_ref()
-            .map_or(self.terminals[2], |back| back.points[k])
-    }
-}
-
-impl Conductor {
-    fn claim(claims: &mut Claims<'_>, ends: (Unknown, Unknown), inner: usize) -> Self {
-        let mut points = vec![ends.0];
-        let mut currents = Vec::with_capacity(inner + 1);
-        for _ in 0..inner {
-            currents.push(claims.unknown("cable current", Measure::Current));
-            points.push(claims.unknown("cable voltage", Measure::Voltage));
+    /// The voltage at the near end of branch k, as a difference of unknowns.
+    fn voltage(&self, k: usize) -> (Unknown, Unknown) {
+        let [near, far, return_near, return_far] = self.terminals;
+        if k == 0 {
+            (near, return_near)
+        } else {
+            match self.voltages.get(k - 1) {
+                Some(&inner) => (inner, Unknown::GROUND),
+                None => (far, return_far),
+            }
         }
-        currents.push(claims.unknown("cable current", Measure::Current));
-        points.push(ends.1);
-        Conductor { points, currents }
+    }
+
+    /// Resistance of both conductors in series [Ω].
+    fn whole_resistance(&self) -> f64 {
+        self.resistance * self.asked_sections as f64
+    }
+
+    fn common(&self, x: &[f64]) -> f64 {
+        self.common.map_or(0.0, |common| common.of(x))
+    }
+
+    /// The current into a terminal as a sum of unknowns with factors.
+    fn into_terminal(&self, terminal: usize) -> [(Unknown, f64); 2] {
+        let (first, last) = (self.currents[0], self.currents[self.currents.len() - 1]);
+        let common = self.common.unwrap_or(Unknown::GROUND);
+        match terminal {
+            0 => [(first, 1.0), (common, 0.5)],
+            1 => [(last, -1.0), (common, -0.5)],
+            2 => [(first, -1.0), (common, 0.5)],
+            _ => [(last, 1.0), (common, -0.5)],
+        }
+    }
+
+    /// Adds the currents that enter the terminals to the rows of their nodes, and the law of what is common to both.
+    fn stamp_terminals(&self, x: &[f64], into: &mut Stamper<'_>) {
+        for (terminal, &node) in self.terminals.iter().enumerate() {
+            for (unknown, factor) in self.into_terminal(terminal) {
+                into.f(node, factor * unknown.of(x));
+                into.df(node, unknown, factor);
+            }
+        }
+        for &(terminal, carrier) in &self.followed {
+            into.f(carrier, carrier.of(x));
+            into.df(carrier, carrier, 1.0);
+            for (unknown, factor) in self.into_terminal(terminal) {
+                into.f(carrier, -factor * unknown.of(x));
+                into.df(carrier, unknown, -factor);
+            }
+        }
+        if let Some(common) = self.common {
+            for (&node, sign) in self.terminals.iter().zip([-1.0, 1.0, -1.0, 1.0]) {
+                into.f(common, sign * node.of(x));
+                into.df(common, node, sign);
+            }
+            let resistance = 0.5 * self.whole_resistance();
+            into.f(common, resistance * common.of(x));
+            into.df(common, common, resistance);
+        }
     }
 }
 
@@ -177,60 +223,65 @@ impl Element for Cable {
             });
         }
         let section = length / self.asked_sections as f64;
-        let part = if self.shared_return { 1.0 } else { 0.5 };
-        self.resistance = part * resistance * section;
-        self.inductance = part * inductance * section;
+        self.resistance = resistance * section;
+        self.inductance = inductance * section;
         self.capacitance = capacitance * section;
         Ok(())
     }
 
     fn claim(&mut self, claims: &mut Claims<'_>) {
         self.terminals = [0, 1, 2, 3].map(|k| claims.terminal(k));
-        let [near, far, return_near, return_far] = self.terminals;
         // Without capacitance all sections carry one current: a single branch of the whole length.
         let inner = if self.capacitance > 0.0 {
             self.asked_sections
         } else {
             0
         };
-        self.go = Conductor::claim(claims, (near, far), inner);
-        self.back = (!self.shared_return)
-            .then(|| Conductor::claim(claims, (return_near, return_far), inner));
-        let last = self.go.currents.len() - 1;
-        claims.offer(Wanted::Current(0), self.go.currents[0], 1.0);
-        claims.offer(Wanted::Current(1), self.go.currents[last], -1.0);
-        if let Some(back) = &self.back {
-            claims.offer(Wanted::Current(2), back.currents[0], 1.0);
-            claims.offer(Wanted::Current(3), back.currents[last], -1.0);
+        self.currents = vec![claims.unknown("cable current", Measure::Current)];
+        self.voltages.clear();
+        for _ in 0..inner {
+            self.voltages
+                .push(claims.unknown("cable voltage", Measure::Voltage));
+            self.currents
+                .push(claims.unknown("cable current", Measure::Current));
+        }
+        self.common = (!self.shared_return)
+            .then(|| claims.unknown("current common to both conductors", Measure::Current));
+        self.followed.clear();
+        for terminal in 0..4 {
+            let wanted = Wanted::Current(terminal);
+            if claims.wants(wanted) {
+                let current = claims.unknown("terminal current", Measure::Current);
+                claims.offer(wanted, current, 1.0);
+                self.followed.push((terminal, current));
+            }
         }
     }
 
     fn stamp(&self, at: Point<'_>, into: &mut Stamper<'_>) {
-        for conductor in self.conductors() {
-            for (k, &i) in conductor.currents.iter().enumerate() {
-                let (a, b) = (conductor.points[k], conductor.points[k + 1]);
-                let (resistance, inductance) = (
-                    self.share(k) * self.resistance,
-                    self.share(k) * self.inductance,
-                );
-                let current = i.of(at.x);
-                into.carry(a, b, i, current);
-                into.q(i, inductance * current);
-                into.dq(i, i, inductance);
-                into.f(i, resistance * current - (a.of(at.x) - b.of(at.x)));
-                into.df(i, i, resistance);
-                into.df(i, a, -1.0);
-                into.df(i, b, 1.0);
+        self.stamp_terminals(at.x, into);
+        for (k, &i) in self.currents.iter().enumerate() {
+            let (resistance, inductance) = (
+                self.share(k) * self.resistance,
+                self.share(k) * self.inductance,
+            );
+            into.q(i, inductance * i.of(at.x));
+            into.dq(i, i, inductance);
+            into.f(i, resistance * i.of(at.x));
+            into.df(i, i, resistance);
+            for ((plus, minus), sign) in [(self.voltage(k), -1.0), (self.voltage(k + 1), 1.0)] {
+                into.f(i, sign * (plus.of(at.x) - minus.of(at.x)));
+                into.df(i, plus, sign);
+                into.df(i, minus, -sign);
             }
         }
-        for k in 1..self.go.currents.len() {
-            let (a, b) = (self.go.points[k], self.opposite(k));
-            into.store(
-                a,
-                b,
-                self.capacitance * (a.of(at.x) - b.of(at.x)),
-                self.capacitance,
-            );
+        for (k, &u) in self.voltages.iter().enumerate() {
+            let (before, after) = (self.currents[k], self.currents[k + 1]);
+            into.f(u, after.of(at.x) - before.of(at.x));
+            into.df(u, after, 1.0);
+            into.df(u, before, -1.0);
+            into.q(u, self.capacitance * u.of(at.x));
+            into.dq(u, u, self.capacitance);
         }
     }
 
@@ -269,38 +320,32 @@ impl Element for Cable {
 
 impl Energy for Cable {
     fn currents(&self, at: Point<'_>, out: &mut [f64]) {
-        let ends = |conductor: &Conductor| {
-            let last = conductor.currents.len() - 1;
-            (
-                conductor.currents[0].of(at.x),
-                -conductor.currents[last].of(at.x),
-            )
-        };
-        (out[0], out[1]) = ends(&self.go);
-        match &self.back {
-            Some(back) => (out[2], out[3]) = ends(back),
-            // One node: what the capacitances bring there is the difference of the ends.
-            None => (out[2], out[3]) = (-out[0] - out[1], 0.0),
+        for (terminal, current) in out.iter_mut().enumerate() {
+            *current = sum(&self.into_terminal(terminal), at.x);
         }
     }
 
     fn loss(&self, at: Point<'_>) -> f64 {
-        self.conductors()
-            .flat_map(|conductor| conductor.currents.iter().enumerate())
+        let loop_loss: f64 = self
+            .currents
+            .iter()
+            .enumerate()
             .map(|(k, i)| self.share(k) * self.resistance * i.of(at.x).powi(2))
-            .sum()
+            .sum();
+        loop_loss + 0.25 * self.whole_resistance() * self.common(at.x).powi(2)
     }
 
     fn stored(&self, at: Point<'_>) -> f64 {
         let magnetic: f64 = self
-            .conductors()
-            .flat_map(|conductor| conductor.currents.iter().enumerate())
+            .currents
+            .iter()
+            .enumerate()
             .map(|(k, i)| self.share(k) * self.inductance * i.of(at.x).powi(2))
             .sum();
-        let electric: f64 = (1..self.go.currents.len())
-            .map(|k| {
-                self.capacitance * (self.go.points[k].of(at.x) - self.opposite(k).of(at.x)).powi(2)
-            })
+        let electric: f64 = self
+            .voltages
+            .iter()
+            .map(|u| self.capacitance * u.of(at.x).powi(2))
             .sum();
         0.5 * (magnetic + electric)
     }

@@ -168,7 +168,7 @@ pub type Terms = Vec<(Unknown, f64)>;
 
 /// Value of a linear form.
 #[inline]
-pub fn sum(terms: &Terms, x: &[f64]) -> f64 {
+pub fn sum(terms: &[(Unknown, f64)], x: &[f64]) -> f64 {
     terms
         .iter()
         .map(|&(unknown, factor)| factor * unknown.of(x))

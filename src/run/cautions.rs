@@ -68,7 +68,8 @@ fn unbroken_switches(netlist: &Netlist, outcome: &Outcome, cautions: &mut Vec<Di
         .iter()
         .filter(|entry| entry.kind.word == "switch")
     {
-        if entry.node.get("breakdown_voltage").is_some() || supply == 0.0 {
+        let broken_down = entry.node.get("breakdown_voltage").is_some();
+        if broken_down || supply == 0.0 || within_rating(outcome, &entry.name) {
             continue;
         }
         let Some(trace) = outcome.trace(&format!("voltage across {}", entry.name)) else {
@@ -91,6 +92,14 @@ fn unbroken_switches(netlist: &Netlist, outcome: &Outcome, cautions: &mut Vec<Di
             );
         }
     }
+}
+
+/// True where the voltage is rated and stays within: then nothing breaks down.
+fn within_rating(outcome: &Outcome, element: &str) -> bool {
+    outcome
+        .ratings
+        .iter()
+        .any(|rating| rating.element == element && rating.rating == "voltage" && rating.used.holds())
 }
 
 fn saturated_coils(netlist: &Netlist, outcome: &Outcome, cautions: &mut Vec<Diagnostic>) {

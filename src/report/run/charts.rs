@@ -1,17 +1,16 @@
 //! The pictures of a run: the kick zoomed on the interruption, the whole run, flux density, where the energy went.
 
+mod kick;
+
 use crate::report::chart::{
     Axis, Bar, BarPanel, Chart, Curve, CurvePanel, Instant, LimitLine, Mark, Panel, Style,
 };
 use crate::report::engineering::engineering;
 use crate::run::{CoilReport, LimitResult, Netlist, Outcome};
-use crate::signals::{Happening, Owner, Trace, resample::thinned};
+use crate::signals::{Trace, resample::thinned};
 
 /// Points of one curve: four per pixel column of the widest picture.
 const POINTS: usize = 5_000;
-
-/// The line under every picture of a voltage.
-const CAUTION: &str = "Prediction, to be confirmed on the bench with rated probes. Interrupted coils make voltages that injure.";
 
 /// A picture with the name of its file.
 pub struct Named {
@@ -27,7 +26,7 @@ pub fn charts(netlist: &Netlist, outcome: &Outcome) -> Vec<Named> {
     let switches: Vec<&str> = of_kind(netlist, "switch");
     let several = switches.len() > 1;
     for switch in &switches {
-        if let Some(chart) = kick(netlist, outcome, switch) {
+        if let Some(chart) = kick::kick(netlist, outcome, switch) {
             let file = if several {
                 format!("kick_{switch}")
             } else {
@@ -85,14 +84,18 @@ fn curve(trace: &Trace, name: &str, from: f64, to: f64) -> Curve {
     }
 }
 
+/// Takes whose results lie on the axis of their signal; a ripple is a difference and has no place there.
+const ON_THE_AXIS: [&str; 7] = [
+    "highest", "lowest", "peak", "mean", "rms", "final", "value_at",
+];
+
 /// The limits on readings of one signal, as lines.
 fn limit_lines(netlist: &Netlist, outcome: &Outcome, signals: &[&str]) -> Vec<LimitLine> {
     let of_signal = |limit: &&LimitResult| {
         netlist.readings.iter().any(|reading| {
             reading.name.text == limit.subject
+                && ON_THE_AXIS.contains(&reading.kind.word)
                 && signals.contains(&reading.signal.phrase.to_string().as_str())
-                && reading.result().symbol == limit.kind.symbol
-                && reading.signal.phrase.kind().symbol == limit.kind.symbol
         })
     };
     outcome
@@ -141,141 +144,6 @@ fn peak(trace: &Trace, from: f64, to: f64) -> Option<(f64, f64)> {
         .max_by(|a, b| a.1.abs().total_cmp(&b.1.abs()))
 }
 
-/// The switch's voltage and the coils' currents around the first opening.
-fn kick(netlist: &Netlist, outcome: &Outcome, switch: &str) -> Option<Chart> {
-    let owner = Owner {
-        element: switch.to_owned(),
-        winding: None,
-    };
-    let opens = *outcome.events.all(&owner, Happening::Opens).first()?;
-    let coils: Vec<(&str, &Trace)> = of_kind(netlist, "coil")
-        .into_iter()
-        .filter_map(|coil| Some((coil, outcome.trace(&format!("winding current of {coil}"))?)))
-        .collect();
-    let until = interruption_end(outcome, &coils, opens);
-    let from = (opens - 0.08 * (until - opens)).max(0.0);
-    let signal = format!("voltage across {switch}");
-    let trace = &shifted(outcome.trace(&signal)?, opens);
-    let coils: Vec<(&str, Trace)> = coils
-        .into_iter()
-        .map(|(coil, trace)| (coil, shifted(trace, opens)))
-        .collect();
-    let (from, until) = (from - opens, until - opens);
-    let node = netlist
-        .circuit
-        .find(switch)?
-        .terminals
-        .first()?
-        .node
-        .text
-        .clone();
-    let mut voltage = CurvePanel {
-        x: after_opening(from, until),
-        y: Axis::new(&signal, "V"),
-        curves: vec![curve(trace, switch, from, until)],
-        limits: limit_lines(netlist, outcome, &[&signal, &format!("voltage at {node}")]),
-        instants: vec![Instant {
-            label: format!("{switch} opens at {}", engineering(opens, "s", 4)),
-            at: 0.0,
-        }],
-        marks: Vec::new(),
-    };
-    let (at, value) = peak(trace, 0.0, until)?;
-    voltage.marks.push(Mark {
-        x: at,
-        y: value,
-        label: format!(
-            "peak {}, {} after opening",
-            engineering(value, "V", 4),
-            engineering(at, "s", 3)
-        ),
-    });
-    let mut panels = vec![Panel::Curves(voltage)];
-    if !coils.is_empty() {
-        panels.push(Panel::Curves(currents(netlist, &coils, from, until)));
-    }
-    let subtitle = super::text::answer(outcome);
-    let subtitle = subtitle
-        .strip_prefix(&format!("{}: ", outcome.title))
-        .unwrap_or(&subtitle)
-        .to_owned();
-    Some(Chart {
-        title: title(outcome, "the kick"),
-        subtitle,
-        panels,
-        caution: Some(CAUTION.into()),
-    })
-}
-
-/// The axis of a zoomed interruption: its zero is the opening.
-fn after_opening(from: f64, until: f64) -> Axis {
-    Axis::new("time after opening", "s").between(from, until)
-}
-
-/// A trace whose time counts from an instant.
-fn shifted(trace: &Trace, instant: f64) -> Trace {
-    let mut shifted = trace.clone();
-    for piece in &mut shifted.pieces {
-        piece.from -= instant;
-        piece.to -= instant;
-    }
-    shifted
-}
-
-fn currents(netlist: &Netlist, coils: &[(&str, Trace)], from: f64, until: f64) -> CurvePanel {
-    let limits = coils
-        .iter()
-        .flat_map(|(coil, _)| level_lines(netlist, &format!("winding current of {coil}")))
-        .collect();
-    CurvePanel {
-        x: after_opening(from, until),
-        y: Axis::new("winding current", "A"),
-        curves: coils
-            .iter()
-            .map(|(coil, trace)| curve(trace, coil, from, until))
-            .collect(),
-        limits,
-        ..CurvePanel::default()
-    }
-}
-
-/// Until when the interruption is worth looking at: the last instant at which a coil's current exceeds a fiftieth of
-/// what it was at the opening, and a third more.
-fn interruption_end(outcome: &Outcome, coils: &[(&str, &Trace)], opens: f64) -> f64 {
-    let end = outcome.reached;
-    let settles = |trace: &Trace| {
-        let at_opening = trace
-            .value_at(opens, crate::signals::Side::Before)
-            .unwrap_or(0.0)
-            .abs();
-        trace
-            .within(opens, end)
-            .filter(|piece| {
-                piece
-                    .extremes()
-                    .any(|(_, value)| value.abs() > 0.02 * at_opening)
-            })
-            .map(|piece| piece.to)
-            .last()
-            .unwrap_or(opens)
-    };
-    let settled = coils
-        .iter()
-        .map(|(_, trace)| settles(trace))
-        .fold(opens, f64::max);
-    let closes = outcome
-        .events
-        .in_order()
-        .into_iter()
-        .find(|(time, _, what)| *time > opens && *what == Happening::Closes)
-        .map_or(end, |(time, _, _)| time);
-    let wanted = opens + 1.33 * (settled - opens);
-    let wanted = if wanted > opens { wanted } else { end };
-    wanted
-        .min(end)
-        .min(closes.max(opens + 1e-3 * (end - opens)))
-}
-
 /// Every signal that a reading uses over the whole run, one panel per quantity.
 fn whole(netlist: &Netlist, outcome: &Outcome) -> Option<Chart> {
     let (from, until) = outcome.traces.first()?.span()?;
@@ -286,13 +154,18 @@ fn whole(netlist: &Netlist, outcome: &Outcome) -> Option<Chart> {
             continue;
         };
         let kind = trace.kind;
+        // A ratio is known by what it is of: `saturation of l1` is drawn over saturation.
+        let quantity = match name.split_once(" of ") {
+            Some((quantity, _)) if kind.symbol.is_empty() => quantity,
+            _ => kind.noun(),
+        };
         let found = panels
             .iter_mut()
-            .position(|panel| panel.y.unit == kind.symbol && panel.y.label == kind.noun());
+            .position(|panel| panel.y.unit == kind.symbol && panel.y.label == quantity);
         let k = found.unwrap_or_else(|| {
             panels.push(CurvePanel {
                 x: Axis::new("time", "s").between(from, until),
-                y: Axis::new(kind.noun(), kind.symbol),
+                y: Axis::new(quantity, kind.symbol),
                 ..CurvePanel::default()
             });
             panels.len() - 1
@@ -307,8 +180,13 @@ fn whole(netlist: &Netlist, outcome: &Outcome) -> Option<Chart> {
         return None;
     }
     let panels = panels.into_iter().take(4).map(Panel::Curves).collect();
+    let what = if from > 0.0 {
+        format!("from {} on", engineering(from, "s", 4))
+    } else {
+        "the whole run".into()
+    };
     Some(Chart {
-        title: title(outcome, "the whole run"),
+        title: title(outcome, &what),
         panels,
         ..Chart::default()
     })
@@ -385,6 +263,8 @@ fn energy(outcome: &Outcome) -> Option<Chart> {
             value: account.dissipated,
         })
         .collect();
+    // What dissipates nothing is no place where energy went.
+    bars.retain(|bar| bar.value != 0.0);
     if bars.is_empty() {
         return None;
     }

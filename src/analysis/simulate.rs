@@ -6,10 +6,11 @@ use super::task::Start;
 use crate::circuit::Circuit;
 use crate::dae::{
     Advance, Ending, March, MarchError, Method, Point, Span, StartError, State, Statistics,
-    Tolerances,
+    Tolerances, Trouble,
 };
 use crate::diag::Diagnostic;
 use crate::signals::{EventLog, Happening, Owner};
+use crate::units::{TIME, engineering};
 use std::ops::ControlFlow;
 
 /// Numbers of a transient [SI].
@@ -46,31 +47,60 @@ pub enum Failure {
 impl Failure {
     /// No start was found.
     pub fn start(circuit: &Circuit, error: StartError) -> Self {
-        let explained = error.unknown.map(|unknown| circuit.explain(unknown));
-        let whose = explained.as_ref().map_or(String::new(), |explained| {
-            format!(" for {}", explained.words)
-        });
+        let (whose, span) = blame(circuit, error.unknown, error.cause, "for");
         Failure::Stopped {
             headline: format!("no starting state was found{whose}: {}", error.cause),
-            help: "try `start: zero` in the transient, or look at the element named".into(),
-            span: explained.and_then(|explained| explained.span),
+            help: remedy(
+                error.cause,
+                "try `start: zero` in the transient, or look at the element named",
+            ),
+            span,
             time: 0.0,
         }
     }
 
     /// The march ended early.
     pub fn march(circuit: &Circuit, error: MarchError) -> Self {
-        let explained = error.unknown.map(|unknown| circuit.explain(unknown));
-        let whose = explained.as_ref().map_or(String::new(), |explained| {
-            format!(" in {}", explained.words)
-        });
+        let (whose, span) = blame(circuit, error.unknown, error.cause, "in");
+        let time = engineering(error.time, TIME, 7);
         Failure::Stopped {
-            headline: format!("the simulation stopped at {:.6e} s{whose}: {}", error.time, error.cause),
-            help: "a small capacitance across the element, a longer transition or a looser accuracy may help".into(),
-            span: explained.and_then(|explained| explained.span),
+            headline: format!("the simulation stopped at {time}{whose}: {}", error.cause),
+            help: remedy(
+                error.cause,
+                "a small capacitance across the element, a longer transition or a looser accuracy may help",
+            ),
+            span,
             time: error.time,
         }
     }
+}
+
+/// What is to blame, in words behind a preposition, and where it stands.
+fn blame(
+    circuit: &Circuit,
+    unknown: Option<usize>,
+    cause: Trouble,
+    preposition: &str,
+) -> (String, Option<crate::diag::Span>) {
+    let explained = match cause {
+        Trouble::Chattering { guard } => guard.and_then(|guard| circuit.explain_guard(guard)),
+        _ => unknown.map(|unknown| circuit.explain(unknown)),
+    };
+    let words = explained.as_ref().map_or(String::new(), |explained| {
+        format!(" {preposition} {}", explained.words)
+    });
+    (words, explained.and_then(|explained| explained.span))
+}
+
+/// What to try; a switch that chatters has a remedy of its own.
+fn remedy(cause: Trouble, otherwise: &str) -> String {
+    match cause {
+        Trouble::Chattering { .. } => {
+            "the signal that it watches jumps when it switches: widen the thresholds, or let a capacitance slow the signal"
+        }
+        _ => otherwise,
+    }
+    .into()
 }
 
 /// One thing that the observer of a simulation is shown.

@@ -3,7 +3,7 @@
 use super::simulate::Failure;
 use super::task::Start;
 use crate::circuit::Circuit;
-use crate::circuit::checks::inductive_loop;
+use crate::circuit::checks::without_rest;
 use crate::dae::{
     Cause, Evaluation, Point, State, System, Tolerances, Trouble, consistent_start, operating_point,
 };
@@ -20,21 +20,19 @@ pub fn start(circuit: &Circuit, from: Start) -> Result<(State, Vec<(usize, Happe
         x: vec![0.0; circuit.size()],
         mode: circuit.start_mode(),
     };
-    if from == Start::OperatingPoint
-        && let Some(diagnostic) = inductive_loop(circuit)
-    {
-        return Err(Failure::Refused(Box::new(diagnostic)));
+    if from == Start::OperatingPoint {
+        refuse_without_rest(circuit)?;
     }
-    let mut settled = false;
+    let mut last = None;
     for _ in 0..MOST_ROUNDS {
         solve(circuit, from, &mut state, &tolerances)?;
-        if !watches_change(circuit, &mut state) {
-            settled = true;
+        last = watches_change(circuit, &mut state);
+        if last.is_none() {
             break;
         }
     }
-    if !settled {
-        let cause = Trouble::Chattering { guard: None };
+    if last.is_some() {
+        let cause = Trouble::Chattering { guard: last };
         return Err(Failure::start(
             circuit,
             crate::dae::StartError {
@@ -54,11 +52,17 @@ pub fn at_rest(circuit: &Circuit, mode: Vec<f64>) -> Result<State, Failure> {
         x: vec![0.0; circuit.size()],
         mode,
     };
-    if let Some(diagnostic) = inductive_loop(circuit) {
-        return Err(Failure::Refused(Box::new(diagnostic)));
-    }
+    refuse_without_rest(circuit)?;
     solve(circuit, Start::OperatingPoint, &mut state, &fine(circuit))?;
     Ok(state)
+}
+
+/// Refuses, by name, a circuit whose structure allows no state at rest.
+fn refuse_without_rest(circuit: &Circuit) -> Result<(), Failure> {
+    match without_rest(circuit) {
+        Some(diagnostic) => Err(Failure::Refused(Box::new(diagnostic))),
+        None => Ok(()),
+    }
 }
 
 fn solve(
@@ -106,8 +110,8 @@ fn fine(circuit: &Circuit) -> Tolerances {
     }
 }
 
-/// Lets every watch whose threshold is passed already change its switch at once; true where one did.
-fn watches_change(circuit: &Circuit, state: &mut State) -> bool {
+/// Lets every watch whose threshold is passed already change its switch at once; the last guard of one that did.
+fn watches_change(circuit: &Circuit, state: &mut State) -> Option<usize> {
     let mut guards = vec![-1.0; circuit.guard_size()];
     circuit.guards(
         Point {
@@ -117,13 +121,14 @@ fn watches_change(circuit: &Circuit, state: &mut State) -> bool {
         },
         &mut guards,
     );
-    let mut changed = false;
+    let mut changed = None;
     for (which, guard) in guards.iter().enumerate() {
-        if *guard >= 0.0 {
-            changed |= circuit.transition(Cause::Guard(which), 0.0, &mut state.x, &mut state.mode);
+        let cause = Cause::Guard(which);
+        if *guard >= 0.0 && circuit.transition(cause, 0.0, &mut state.x, &mut state.mode) {
+            changed = Some(which);
         }
     }
-    if changed {
+    if changed.is_some() {
         // At a start a switch is where it is commanded to be, not on its way.
         for entry in &circuit.entries {
             if let (Some(switching), false) = (entry.element.switching(), entry.guards.is_empty()) {

@@ -3,14 +3,14 @@
 use super::checks::CHECKS;
 use super::numbering::Unfollowed;
 use super::{Circuit, Entry, GROUND, Refused};
-use crate::diag::{Diagnostic, Span};
+use crate::diag::{Diagnostic, Sink, Span};
 use crate::elements::{
     ElementKind, KINDS, Made, Surroundings, Unknown, Unsound, kind::COMMON_KEYS,
 };
 use crate::magnetics::Library;
-use crate::netlist::{Fields, Key, NamedNode, Node, Parameters, Reader, Takes, Values};
+use crate::netlist::{Fields, Key, NamedNode, Node, Parameters, Reader, Takes, Value, Values};
 use crate::signals::{Rated, Ratings, read_ratings};
-use crate::units;
+use crate::units::{self, Amount};
 use std::collections::BTreeMap;
 
 /// The keys at the top of a netlist.
@@ -88,27 +88,32 @@ pub struct Built {
     pub ratings: Vec<Ratings>,
 }
 
+/// What is asked of a circuit.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Demand {
+    /// That it can be solved: what breaks the rules of structure is an error.
+    Solvable,
+    /// That its elements are sound; coils alone, without source and ground, will do.
+    Elements,
+}
+
 /// Builds the circuit of a netlist whose top is `top`. `probe` says whose terminal currents will be asked for.
 /// Errors go to the reader's sink.
-pub fn build(top: &Fields<'_>, probe: &dyn Fn(&str) -> bool) -> Built {
+pub fn build(top: &Fields<'_>, demand: Demand, probe: &dyn Fn(&str) -> bool) -> Built {
     let mut ratings = Vec::new();
-    let circuit = build_all(top, probe, &mut ratings);
+    let circuit = read_elements(top, &mut ratings)
+        .and_then(|entries| assemble(entries, top.reader(), demand, probe));
     Built { circuit, ratings }
 }
 
-fn build_all(
-    top: &Fields<'_>,
-    probe: &dyn Fn(&str) -> bool,
-    ratings: &mut Vec<Ratings>,
-) -> Option<Circuit> {
+/// Every element of a netlist; None where one of them is wrong.
+fn read_elements(top: &Fields<'_>, ratings: &mut Vec<Ratings>) -> Option<Vec<Entry>> {
     let reader = top.reader();
-    let ambient = top.value("ambient");
-    let reference_temperature = top.value("reference_temperature");
     let library = Library::read(top);
     let around = Surroundings {
         library: &library,
-        ambient: ambient?,
-        reference_temperature: reference_temperature?,
+        ambient: temperature(top, "ambient"),
+        reference_temperature: temperature(top, "reference_temperature"),
     };
     let parts = Parts::read(top);
     let mut entries = Vec::new();
@@ -121,16 +126,23 @@ fn build_all(
         return None;
     }
     parts.check_unused_kinds();
-    if reader.sink.has_errors() {
-        return None;
-    }
-    assemble(entries, reader, probe)
+    (!reader.sink.has_errors()).then_some(entries)
+}
+
+/// A temperature of the file. Where it is wrong, room temperature stands in, so that reading on finds the other errors.
+fn temperature(top: &Fields<'_>, key: &str) -> Value {
+    top.value(key).unwrap_or_else(|| {
+        let kind = units::TEMPERATURE;
+        let room = Amount::exactly(298.15, kind.dimension.unwrap_or_default());
+        top.reader().register(key, kind, room, None)
+    })
 }
 
 /// Joins elements to a circuit: nodes, numbers, checks.
 fn assemble(
     entries: Vec<Entry>,
     reader: &Reader<'_>,
+    demand: Demand,
     probe: &dyn Fn(&str) -> bool,
 ) -> Option<Circuit> {
     let parameters = reader.parameters.borrow().clone();
@@ -151,14 +163,16 @@ fn assemble(
         report_unfollowed(&circuit, &unfollowed, reader);
         return None;
     }
+    let aside = Sink::new();
+    let sink = match demand {
+        Demand::Solvable => reader.sink,
+        Demand::Elements => &aside,
+    };
     for check in CHECKS {
-        (check.run)(&circuit, reader.sink);
+        (check.run)(&circuit, sink);
     }
-    if reader.sink.has_errors() {
-        None
-    } else {
-        Some(circuit)
-    }
+    circuit.solvable = !sink.has_errors();
+    (circuit.solvable || demand == Demand::Elements).then_some(circuit)
 }
 
 /// The entries of `parts`, by name.
@@ -382,6 +396,7 @@ impl Circuit {
             mode_size: 0,
             guard_size: 0,
             by_name,
+            solvable: false,
         }
     }
 
@@ -403,9 +418,16 @@ impl Circuit {
     }
 }
 
-/// Points at the key that is to blame, where it is written.
+/// Points at the key that is to blame (`square.duty`), where it is written; at what holds it where it is not.
 fn key_span(entry: &Entry, key: &str) -> Span {
-    entry.node.get(key).map_or(entry.span, |node| node.span)
+    let mut at = (&entry.node, entry.span);
+    for part in key.split('.') {
+        match at.0.get(part) {
+            Some(node) => at = (node, node.span),
+            None => break,
+        }
+    }
+    at.1
 }
 
 /// The diagnostic of a refused element.
@@ -431,7 +453,7 @@ fn report_unfollowed(circuit: &Circuit, unfollowed: &Unfollowed, reader: &Reader
     let key = if entry.node.get("follows").is_some() {
         "follows"
     } else {
-        "watches"
+        "watches.signal"
     };
     reader.sink.report(
         Diagnostic::error("unknown-signal", format!("`{}` cannot be followed: {}", unfollowed.phrase, unfollowed.why))

@@ -13,6 +13,18 @@ pub struct Explained {
 }
 
 impl Circuit {
+    /// Which element a guard is of.
+    pub fn explain_guard(&self, guard: usize) -> Option<Explained> {
+        let entry = self
+            .entries
+            .iter()
+            .find(|entry| entry.guards.contains(&guard))?;
+        Some(Explained {
+            words: format!("the switching of `{}`", entry.name),
+            span: Some(entry.span),
+        })
+    }
+
     /// What an unknown is.
     pub fn explain(&self, unknown: usize) -> Explained {
         match self.unknowns.get(unknown) {

@@ -7,7 +7,7 @@ mod numbering;
 mod system;
 mod taps;
 
-pub use build::{Built, TOP_KEYS, build, refusal};
+pub use build::{Built, Demand, TOP_KEYS, build, refusal};
 pub use explain::Explained;
 pub use taps::Tap;
 
@@ -69,6 +69,7 @@ pub struct Circuit {
     mode_size: usize,
     guard_size: usize,
     by_name: BTreeMap<String, usize>,
+    solvable: bool,
 }
 
 /// A value that makes no sensible circuit: which element, and why.
@@ -107,6 +108,11 @@ impl Circuit {
     pub fn complete(&mut self, parameters: Parameters) {
         self.values = parameters.nominal();
         self.parameters = parameters;
+    }
+
+    /// True where the structure allows a solution; false for coils that lie on a table.
+    pub fn is_solvable(&self) -> bool {
+        self.solvable
     }
 
     /// The values in force.

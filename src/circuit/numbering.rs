@@ -266,12 +266,27 @@ pub(super) fn winding_of(entry: &Entry, owner: &Owner) -> Result<usize, String> 
             .windings
             .iter()
             .position(|winding| winding == name)
-            .ok_or_else(|| format!("`{}` has no winding `{name}`", entry.name)),
+            .ok_or_else(|| no_winding(entry, name)),
         None if entry.windings.len() > 1 => Err(format!(
             "`{}` has several windings: {}",
             entry.name,
             entry.windings.join(", ")
         )),
         None => Ok(0),
+    }
+}
+
+fn no_winding(entry: &Entry, name: &str) -> String {
+    if entry.windings.is_empty() {
+        format!(
+            "`{}` is a {} and has no windings",
+            entry.name, entry.kind.word
+        )
+    } else {
+        format!(
+            "`{}` has no winding `{name}`; it has {}",
+            entry.name,
+            entry.windings.join(", ")
+        )
     }
 }

@@ -111,10 +111,10 @@ impl Circuit {
                 match entry.element.quantity(*quantity, winding, at) {
                     Some(_) => Ok(Tap::Of(k, *quantity, winding)),
                     None => Err(format!(
-                        "`{}` is a {} and has no `{}`",
+                        "`{}` is a {} and has no {}",
                         entry.name,
                         entry.kind.word,
-                        quantity.words()
+                        quantity.noun()
                     )),
                 }
             }

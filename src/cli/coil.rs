@@ -98,9 +98,7 @@ fn page(coils: &[CoilReport]) -> String {
             crate::report::engineering::fixed(1e6 * coil.path_area, 2),
             crate::report::engineering::fixed(1e9 * coil.path_volume, 0),
             engineering_or_dash(coil.mean_turn, "m", 4),
-            coil.fringing.as_ref().map_or(String::new(), |(rule, factor)| format!(
-                ", fringing by `{rule}`: factor {factor:.3} (any such rule is good to about 10 %)"
-            )),
+            fringing(coil),
         );
         let mut table = Table::new()
             .column("current", Align::Right)
@@ -121,4 +119,17 @@ fn page(coils: &[CoilReport]) -> String {
         out += &table.render(common::screen());
     }
     out
+}
+
+/// What the field beside the gap adds, where a rule counts it.
+fn fringing(coil: &CoilReport) -> String {
+    match &coil.fringing {
+        Some((rule, factor)) if rule != "none" => {
+            format!(
+                ", fringing by `{rule}`: factor {factor:.3} (any such rule is good to about 10 %)"
+            )
+        }
+        Some(_) => ", fringing not counted".into(),
+        None => String::new(),
+    }
 }

@@ -6,7 +6,7 @@ use crate::diag::{Diagnostic, Paint, Sources, draw_all, to_json};
 use crate::netlist::Input;
 use crate::report::files::FileError;
 use crate::report::tables::Screen;
-use crate::run::{Netlist, ReadError, read};
+use crate::run::{Netlist, ReadError};
 use serde_json::Value;
 use std::io::{IsTerminal, Read, Write};
 use std::path::{Path, PathBuf};
@@ -27,6 +27,18 @@ pub struct Source {
 impl Source {
     /// Reads the netlist, or prints why not and gives the exit code.
     pub fn read(&self) -> Result<Netlist, u8> {
+        self.read_by(crate::run::read)
+    }
+
+    /// Reads a netlist of which only the coils matter: nothing else has to be there.
+    pub fn read_coils(&self) -> Result<Netlist, u8> {
+        self.read_by(crate::run::read_coils)
+    }
+
+    fn read_by(
+        &self,
+        read: fn(&Input, &[String]) -> Result<Netlist, ReadError>,
+    ) -> Result<Netlist, u8> {
         let input = if self.file.as_os_str() == "-" {
             let mut bytes = Vec::new();
             if let Err(error) = std::io::stdin().read_to_end(&mut bytes) {
@@ -50,11 +62,6 @@ impl Source {
             let failure = error.failure();
             self.fail(code, &failure.diagnostics, &failure.sources)
         })
-    }
-
-    /// Reads a netlist of which only the coils matter: nothing else has to be there.
-    pub fn read_coils(&self) -> Result<Netlist, u8> {
-        self.read()
     }
 
     /// Prints diagnostics where they belong and returns the exit code.

@@ -234,8 +234,13 @@ impl Element for Switch {
             return Err(Unsound {
                 word: "out-of-range",
                 key: "open_resistance",
-                headline: format!("open, the switch has {open:.3e} Ω, closed {closed:.3e} Ω"),
-                help: "`open_resistance` exceeds `closed_resistance`".into(),
+                headline: format!(
+                    "open, the switch has {}, closed {}",
+                    units::engineering(open, units::RESISTANCE, 4),
+                    units::engineering(closed, units::RESISTANCE, 4)
+                ),
+                help: "`open_resistance` must exceed `closed_resistance`; are they exchanged?"
+                    .into(),
             });
         }
         self.closed = -closed.ln();

@@ -235,7 +235,7 @@ impl Command {
                 }
                 Err(Unsound {
                     word: "out-of-range",
-                    key: "square",
+                    key: "square.duty",
                     headline: format!("a duty of {duty} never opens the switch"),
                     help:
                         "the duty lies between 0 and 1; without a square write `initially: closed`"
@@ -251,8 +251,9 @@ impl Command {
                     word: "no-hysteresis",
                     key: "watches",
                     headline: format!(
-                        "the upper threshold {:e} is not above the lower {:e}",
-                        watch.high, watch.low
+                        "the upper threshold {} is not above the lower {}",
+                        units::engineering(watch.high, watch.phrase.kind(), 6),
+                        units::engineering(watch.low, watch.phrase.kind(), 6)
                     ),
                     help: "leave a gap between the thresholds, or the switch would chatter".into(),
                 })
@@ -328,7 +329,10 @@ fn check_instants(at: &[(f64, bool)]) -> Result<(), Unsound> {
         return Err(Unsound {
             word: "out-of-range",
             key: if first.1 { "closes_at" } else { "opens_at" },
-            headline: format!("the instant {:e} s lies before the start", first.0),
+            headline: format!(
+                "the instant {} lies before the start",
+                units::engineering(first.0, units::TIME, 6)
+            ),
             help: "time runs from 0 s; the state before is `initially`".into(),
         });
     }
@@ -337,7 +341,10 @@ fn check_instants(at: &[(f64, bool)]) -> Result<(), Unsound> {
         Some(pair) => Err(Unsound {
             word: "same-instant",
             key: "opens_at",
-            headline: format!("the switch gets two commands at {:e} s", pair[0].0),
+            headline: format!(
+                "the switch gets two commands at {}",
+                units::engineering(pair[0].0, units::TIME, 6)
+            ),
             help: "give each instant once, in `opens_at` or in `closes_at`".into(),
         }),
     }

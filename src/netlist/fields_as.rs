@@ -1,7 +1,7 @@
 //! Reading of fields whose kind is known only where they are read, and of choices between keys.
 
 use super::fields::{Fields, NamedNode, join};
-use super::keys::Key;
+use super::keys::{Key, Takes};
 use super::names::{Named, nearest};
 use super::node::{Data, Node};
 use super::parameters::Value;
@@ -20,7 +20,7 @@ impl<'a> Fields<'a> {
         match self.node_and_path(key) {
             Some((node, path)) => self.reader().value(node, &path, kind),
             None => {
-                self.missing(key);
+                self.missing_as(key, Takes::Quantity(kind));
                 None
             }
         }
@@ -103,14 +103,22 @@ impl<'a> Fields<'a> {
 
     /// A quantity within bounds, both allowed.
     pub fn within(&self, key: &str, low: f64, high: f64) -> Option<Value> {
-        self.checked(key, &format!("between {low} and {high}"), |amount| {
+        let bound = |value: f64| {
+            if value == 0.0 || value.abs() >= 1e-3 {
+                format!("{value}")
+            } else {
+                format!("{value:e}")
+            }
+        };
+        let must_be = format!("between {} and {}", bound(low), bound(high));
+        self.checked(key, &must_be, |amount| {
             amount.low >= low && amount.high <= high
         })
     }
 
-    /// A positive quantity that is needed because another key stands beside it.
+    /// A positive quantity that is needed where another key stands beside it.
     pub fn needed_with(&self, key: &str, other: &str) -> Option<Value> {
-        if self.has(key) {
+        if self.has(key) || !self.has(other) {
             return self.positive(key);
         }
         let headline = format!("`{other}` needs `{key}` beside it");

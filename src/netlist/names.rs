@@ -39,7 +39,11 @@ pub fn nearest<'a>(word: &str, candidates: impl IntoIterator<Item = &'a str>) ->
             distance = distance.min(2);
         }
         let allowed = length.div_ceil(3).max(1);
-        if distance <= allowed && best.is_none_or(|(least, _)| distance < least) {
+        // Words without a common letter, such as the nodes `a` and `b`, are not meant for each other.
+        if distance <= allowed
+            && distance < length
+            && best.is_none_or(|(least, _)| distance < least)
+        {
             best = Some((distance, candidate));
         }
     }
@@ -69,6 +73,7 @@ mod tests {
         assert_eq!(nearest("cap", words), Some("capacitance"));
         assert_eq!(nearest("flux", words), None);
         assert_eq!(nearest("", words), None);
+        assert_eq!(nearest("a", ["b", "c"]), None);
     }
 
     #[test]

@@ -96,10 +96,9 @@ fn unbroken_switches(netlist: &Netlist, outcome: &Outcome, cautions: &mut Vec<Di
 
 /// True where the voltage is rated and stays within: then nothing breaks down.
 fn within_rating(outcome: &Outcome, element: &str) -> bool {
-    outcome
-        .ratings
-        .iter()
-        .any(|rating| rating.element == element && rating.rating == "voltage" && rating.used.holds())
+    outcome.ratings.iter().any(|rating| {
+        rating.element == element && rating.rating == "voltage" && rating.used.holds()
+    })
 }
 
 fn saturated_coils(netlist: &Netlist, outcome: &Outcome, cautions: &mut Vec<Diagnostic>) {

@@ -100,6 +100,9 @@ pub fn coil_report(
 fn resting_currents(circuit: &Circuit) -> Vec<(usize, usize, f64)> {
     use crate::analysis::{Start, start};
     let mut found: Vec<(usize, usize, f64)> = Vec::new();
+    if !circuit.is_solvable() {
+        return found;
+    }
     let states = [
         start(circuit, Start::OperatingPoint)
             .ok()

@@ -13,7 +13,7 @@ mod outcome;
 
 pub use cautions::coils as coil_cautions;
 pub use coils::{CoilReport, CurvePoint, coil_reports};
-pub use netlist::{Netlist, ReadError, Sizing, read, read_document};
+pub use netlist::{Netlist, ReadError, Sizing, read, read_coils, read_document};
 pub use outcome::{LimitResult, Outcome, RatingResult, ReadingResult, Work};
 
 use crate::analysis::{Analysis, Failure, Ledger, Settings, Simulation, Transient, Wish};

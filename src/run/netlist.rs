@@ -1,8 +1,9 @@
 //! Reads a whole netlist: circuit, analysis, readings, limits and the wishes for sizing, all errors in one go.
 
 use super::obvious;
-use crate::analysis::{Analysis, task};
-use crate::circuit::{Built, Circuit, TOP_KEYS, build};
+use crate::analysis::{Analysis, Start, task};
+use crate::circuit::checks::without_rest;
+use crate::circuit::{Built, Circuit, Demand, TOP_KEYS, build};
 use crate::diag::{Diagnostic, Sink, Sources};
 use crate::limits::{Limit, read_limits};
 use crate::netlist::{
@@ -135,11 +136,23 @@ impl ReadError {
 /// # Errors
 /// A file that cannot be read, or every error that the text has.
 pub fn read(input: &Input, overrides: &[String]) -> Result<Netlist, ReadError> {
+    read_as(input, overrides, Demand::Solvable)
+}
+
+/// Reads a netlist of which only the coils matter: neither source nor ground need be there.
+///
+/// # Errors
+/// As [`read`].
+pub fn read_coils(input: &Input, overrides: &[String]) -> Result<Netlist, ReadError> {
+    read_as(input, overrides, Demand::Elements)
+}
+
+fn read_as(input: &Input, overrides: &[String], demand: Demand) -> Result<Netlist, ReadError> {
     let loaded = load(input, overrides).map_err(|error| match error {
         LoadError::Unreadable(failure) => ReadError::Unreadable(failure),
         LoadError::Wrong(failure) => ReadError::Wrong(failure),
     })?;
-    read_loaded(loaded)
+    read_loaded(loaded, demand)
 }
 
 /// Reads a netlist from a tree, such as a variant with a suppressor in it.
@@ -147,21 +160,22 @@ pub fn read(input: &Input, overrides: &[String]) -> Result<Netlist, ReadError> {
 /// # Errors
 /// Every error that the tree has.
 pub fn read_document(document: Document, sources: Sources) -> Result<Netlist, ReadError> {
-    read_loaded(Loaded {
+    let loaded = Loaded {
         document,
         sources,
         sink: Sink::new(),
-    })
+    };
+    read_loaded(loaded, Demand::Solvable)
 }
 
-fn read_loaded(loaded: Loaded) -> Result<Netlist, ReadError> {
+fn read_loaded(loaded: Loaded, demand: Demand) -> Result<Netlist, ReadError> {
     let Loaded {
         mut document,
         mut sources,
         sink,
     } = loaded;
     obvious::add(&mut document, &mut sources);
-    let read = read_top(&document, &sink);
+    let read = read_top(&document, demand, &sink);
     let diagnostics = sink.sorted();
     match read {
         Some(parts) if !sink.has_errors() => Ok(Netlist {
@@ -195,7 +209,7 @@ struct Parts {
     defaults: Vec<DefaultUsed>,
 }
 
-fn read_top(document: &Document, sink: &Sink) -> Option<Parts> {
+fn read_top(document: &Document, demand: Demand, sink: &Sink) -> Option<Parts> {
     let reader = Reader::new(sink);
     let top = Fields::new(&document.root, "", TOP_KEYS, &reader);
     let title = if top.has("title") {
@@ -207,7 +221,7 @@ fn read_top(document: &Document, sink: &Sink) -> Option<Parts> {
     let written = top.has("analysis");
     let analysis = task::read(&top);
     let readings = read_readings(&top);
-    let Built { circuit, ratings } = build(&top, &|_| true);
+    let Built { circuit, ratings } = build(&top, demand, &|_| true);
     let limits = read_limits(&top, &readings, &ratings);
     let sizing = if top.has("sizing") {
         read_sizing(&top)
@@ -224,6 +238,11 @@ fn read_top(document: &Document, sink: &Sink) -> Option<Parts> {
         (None, false) => Analysis::OperatingPoint,
         (None, true) => return None,
     };
+    if demand == Demand::Solvable && begins_at_rest(&analysis) {
+        without_rest(&circuit)
+            .into_iter()
+            .for_each(|diagnostic| sink.report(diagnostic));
+    }
     let defaults = reader.defaults.borrow().clone();
     Some(Parts {
         title: title.unwrap_or_default(),
@@ -235,6 +254,13 @@ fn read_top(document: &Document, sink: &Sink) -> Option<Parts> {
         normal_spread,
         defaults,
     })
+}
+
+fn begins_at_rest(analysis: &Analysis) -> bool {
+    match analysis {
+        Analysis::OperatingPoint => true,
+        Analysis::Transient(transient) => transient.start == Start::OperatingPoint,
+    }
 }
 
 /// Every signal that a reading names is there, and so is every element whose event it waits for.

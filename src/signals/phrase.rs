@@ -233,6 +233,11 @@ impl fmt::Display for Owner {
 }
 
 impl Quantity {
+    /// What it is, without the preposition: `winding current`.
+    pub fn noun(self) -> &'static str {
+        self.words().trim_end_matches(" of").trim_end_matches(" in")
+    }
+
     /// The phrase before the element's name: `flux density in`.
     pub fn words(self) -> &'static str {
         match self {

@@ -22,6 +22,18 @@ pub struct Amount {
     pub dimension: Dimension,
 }
 
+impl Amount {
+    /// A value [SI] without a spread, of a dimension.
+    pub fn exactly(value: f64, dimension: Dimension) -> Self {
+        Amount {
+            nominal: value,
+            low: value,
+            high: value,
+            dimension,
+        }
+    }
+}
+
 /// Reads `4.7 kΩ`, `24 V ± 10 %`, `25 °C within -25 °C .. 70 °C` as a quantity of this kind.
 ///
 /// # Errors

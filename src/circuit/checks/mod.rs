@@ -1,5 +1,6 @@
 //! Structure checks: what no values could make solvable is refused by name. One file per check, one line here.
 
+mod capacitive_cuts;
 mod connections;
 mod current_cuts;
 mod grounded;
@@ -26,7 +27,13 @@ pub const CHECKS: &[Check] = &[
     connections::CHECK,
 ];
 
-pub use source_loops::inductive_loop;
+use capacitive_cuts::capacitive_cut;
+use source_loops::inductive_loop;
+
+/// Why a sound circuit has no state at rest, if it has none.
+pub fn without_rest(circuit: &Circuit) -> Option<crate::diag::Diagnostic> {
+    inductive_loop(circuit).or_else(|| capacitive_cut(circuit))
+}
 
 /// Disjoint sets of nodes; ground is the last number.
 pub(super) struct Sets {

@@ -22,6 +22,8 @@ pub struct WaveformKind {
     pub about: &'static str,
     /// Its keys.
     pub keys: &'static [Key],
+    /// True where the word itself is the only key: `points: [[t, v], ...]` has no mapping of its own.
+    pub bare: bool,
     /// Reads the keys; values are of the given kind.
     pub read: fn(&Fields<'_>, Kind) -> Option<Box<dyn Waveform>>,
 }
@@ -41,6 +43,8 @@ pub trait Waveform: Send + Sync {
 
 /// The waveform of one source, with its clock.
 pub struct Wave {
+    /// The key behind which it stands.
+    key: &'static str,
     waveform: Box<dyn Waveform>,
 }
 
@@ -56,6 +60,7 @@ impl Wave {
         if !fields.is_map(key) {
             let value = fields.value_as(key, kind)?;
             return Some(Wave {
+                key,
                 waveform: Box::new(constant::Constant::new(value)),
             });
         }
@@ -79,17 +84,25 @@ impl Wave {
             fields.unknown_word(&entry.name, "waveform", &words);
             return None;
         };
-        let inner = fields.inside(&entry, found.keys);
+        let inner = if found.bare {
+            fields.map_with(key, found.keys)?
+        } else {
+            fields.inside(&entry, found.keys)
+        };
         let waveform = (found.read)(&inner, kind);
         inner.finish();
         Some(Wave {
+            key,
             waveform: waveform?,
         })
     }
 
     /// Re-derives the numbers.
     pub fn derive(&mut self, values: &Values) -> Result<(), Unsound> {
-        self.waveform.derive(values)
+        self.waveform.derive(values).map_err(|reason| Unsound {
+            key: self.key,
+            ..reason
+        })
     }
 
     /// Claims the mode that holds the segment's number.

@@ -14,6 +14,7 @@ pub const KIND: WaveformKind = WaveformKind {
         Takes::Pairs(units::TIME, units::ANY),
         "points in the order of time; two at one instant are an ideal jump",
     )],
+    bare: true,
     read,
 };
 
@@ -43,8 +44,9 @@ impl Waveform for Points {
                 word: "disordered-points",
                 key: "points",
                 headline: format!(
-                    "the point at {:e} s comes after the one at {:e} s",
-                    pair[1].0, pair[0].0
+                    "the point at {} comes after the one at {}",
+                    units::engineering(pair[1].0, units::TIME, 6),
+                    units::engineering(pair[0].0, units::TIME, 6)
                 ),
                 help: "write the points in the order of time".into(),
             }),

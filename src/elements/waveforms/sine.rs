@@ -44,6 +44,7 @@ pub const KIND: WaveformKind = WaveformKind {
             "start of the sine",
         ),
     ],
+    bare: false,
     read,
 };
 

@@ -44,6 +44,7 @@ pub const KIND: WaveformKind = WaveformKind {
             "instant of the first rising edge",
         ),
     ],
+    bare: false,
     read,
 };
 
@@ -110,8 +111,8 @@ impl Waveform for Square {
                 key: "edge",
                 headline: "the edges are longer than the levels between them".into(),
                 help: format!(
-                    "`edge` may last up to {:e} s here",
-                    duty.min(1.0 - duty) / frequency
+                    "`edge` may last up to {} here",
+                    units::engineering(duty.min(1.0 - duty) / frequency, units::TIME, 6)
                 ),
             });
         }

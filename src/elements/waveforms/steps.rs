@@ -22,6 +22,7 @@ pub const KIND: WaveformKind = WaveformKind {
             "duration of each edge; 0 s is an ideal jump",
         ),
     ],
+    bare: false,
     read,
 };
 
@@ -61,8 +62,9 @@ impl Waveform for Steps {
                     word: "disordered-steps",
                     key: "at",
                     headline: format!(
-                        "the step at {:e} s begins before the one at {:e} s has ended",
-                        pair[1].0, pair[0].0
+                        "the step at {} begins before the one at {} has ended",
+                        units::engineering(pair[1].0, units::TIME, 6),
+                        units::engineering(pair[0].0, units::TIME, 6)
                     ),
                     help: "instants rise, with at least the duration of `edge` between them".into(),
                 });

@@ -183,6 +183,11 @@ impl<'a> Fields<'a> {
 
     /// Reports that a key has to be written; where it is only misspelt, `finish` says so.
     pub fn missing(&self, key: &str) {
+        self.missing_as(key, self.key(key).takes);
+    }
+
+    /// The same for a key whose table leaves open what it takes.
+    pub(in crate::netlist) fn missing_as(&self, key: &str, takes: Takes) {
         let entry = self.key(key);
         if self
             .own
@@ -203,9 +208,9 @@ impl<'a> Fields<'a> {
             format!("{subject} needs `{key}`, {}", entry.about),
         )
         .at(self.head(), format!("`{key}` is missing"));
-        if let Takes::Quantity(kind) = entry.takes {
+        if let Takes::Quantity(kind) | Takes::Waveform(kind) = takes {
             diagnostic = diagnostic.help(format!("{} is written in {}", kind.name, kind.examples));
-        } else if let Takes::Word(words) = entry.takes {
+        } else if let Takes::Word(words) = takes {
             diagnostic = diagnostic.help(format!("`{key}` is one of {}", words.join(", ")));
         }
         self.reader.sink.report(diagnostic);

@@ -1,6 +1,6 @@
 //! A panel of horizontal bars: names at the left, values at the bars' ends, a common zero.
 
-use crate::report::chart::{Axis, Bar, BarPanel};
+use crate::report::chart::{Axis, Bar, BarPanel, Scale};
 use crate::report::engineering::engineering;
 
 use super::ink;
@@ -148,7 +148,7 @@ fn draw_axis(ruler: &Ruler, frame: &Rect, measure: &dyn Measure, page: &mut Draw
 fn draw_bar(bar: &Bar, value: &str, middle: f64, row: f64, ruler: &Ruler, page: &mut Drawing) {
     let (Some(zero), Some(end)) = (
         ruler.at(0.0),
-        ruler.at(if bar.value.is_finite() {
+        ruler.at(if range::fits(bar.value, Scale::Linear) {
             bar.value
         } else {
             0.0

@@ -34,7 +34,7 @@ pub fn read_document(
     if root.is_empty() {
         let diagnostic = Diagnostic::error("empty-file", format!("{name} holds no netlist"))
             .at(whole, "nothing but blanks and comments")
-            .help("`coilbreak new` lists starter netlists");
+            .help("begin with one of the files in `netlists/`");
         sink.report(diagnostic);
         return None;
     }
@@ -105,7 +105,7 @@ fn checked_text<'b>(
             String::new(),
             0,
             "nothing here",
-            "`coilbreak new` lists starter netlists",
+            "begin with one of the files in `netlists/`",
         );
         return None;
     }

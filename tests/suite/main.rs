@@ -1,11 +1,15 @@
 //! The integration tests, one module per theme.
 
+mod bad_input;
+mod binary;
 #[path = "../circuits/mod.rs"]
 mod circuits;
 mod closed_forms;
 mod coils;
+mod command_line;
 mod e_series;
 mod engine;
+mod floors;
 mod inductance_of_air_coils;
 mod netlists;
 mod peers;
@@ -13,5 +17,7 @@ mod plots;
 mod record;
 mod rings;
 mod saturating_cores;
+mod shipped_netlists;
+mod structure;
 mod table;
 mod wire;

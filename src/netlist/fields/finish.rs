@@ -57,12 +57,18 @@ impl<'a> Fields<'a> {
                     .help(mended)
             }
             Some(near) => diagnostic.at(entry.key_span, format!("did you mean `{near}`?")),
-            None => {
-                let known: Vec<&str> = words(&self.tables).collect();
-                diagnostic
-                    .at(entry.key_span, "unknown")
-                    .help(format!("keys here: {}", known.join(", ")))
-            }
+            None => match nearest(&entry.key, words(&self.tables)) {
+                Some(near) => {
+                    let label = format!("did you mean `{near}`, which is written already?");
+                    diagnostic.at(entry.key_span, label)
+                }
+                None => {
+                    let known: Vec<&str> = words(&self.tables).collect();
+                    diagnostic
+                        .at(entry.key_span, "unknown")
+                        .help(format!("keys here: {}", known.join(", ")))
+                }
+            },
         };
         self.reader.sink.report(diagnostic);
     }

@@ -171,7 +171,7 @@ impl Cable {
     }
 
     /// The current into a terminal as a sum of unknowns with factors.
-    fn into_terminal(&self, terminal: usize) -> [(Unknown, f64); 2] {
+    fn terminal_current(&self, terminal: usize) -> [(Unknown, f64); 2] {
         let (first, last) = (self.currents[0], self.currents[self.currents.len() - 1]);
         let common = self.common.unwrap_or(Unknown::GROUND);
         match terminal {
@@ -185,7 +185,7 @@ impl Cable {
     /// Adds the currents that enter the terminals to the rows of their nodes, and the law of what is common to both.
     fn stamp_terminals(&self, x: &[f64], into: &mut Stamper<'_>) {
         for (terminal, &node) in self.terminals.iter().enumerate() {
-            for (unknown, factor) in self.into_terminal(terminal) {
+            for (unknown, factor) in self.terminal_current(terminal) {
                 into.f(node, factor * unknown.of(x));
                 into.df(node, unknown, factor);
             }
@@ -193,7 +193,7 @@ impl Cable {
         for &(terminal, carrier) in &self.followed {
             into.f(carrier, carrier.of(x));
             into.df(carrier, carrier, 1.0);
-            for (unknown, factor) in self.into_terminal(terminal) {
+            for (unknown, factor) in self.terminal_current(terminal) {
                 into.f(carrier, -factor * unknown.of(x));
                 into.df(carrier, unknown, -factor);
             }
@@ -321,7 +321,7 @@ impl Element for Cable {
 impl Energy for Cable {
     fn currents(&self, at: Point<'_>, out: &mut [f64]) {
         for (terminal, current) in out.iter_mut().enumerate() {
-            *current = sum(&self.into_terminal(terminal), at.x);
+            *current = sum(&self.terminal_current(terminal), at.x);
         }
     }
 

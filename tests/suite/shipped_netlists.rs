@@ -8,6 +8,9 @@ use coilbreak::elements::{
     Claims, Element, Follower, Point, Quantity, Stamper, Switching, Unknown, Unsound,
 };
 use coilbreak::netlist::{Input, Values};
+use coilbreak::report::chart::Size;
+use coilbreak::report::plots;
+use coilbreak::report::run::charts::charts;
 use coilbreak::run::{Netlist, Outcome, read, run};
 use std::ops::ControlFlow;
 
@@ -73,6 +76,55 @@ fn the_ledger_closes_and_closes_better_at_a_finer_accuracy() {
             path.display()
         );
     }
+}
+
+/// The pictures of a shipped netlist as SVG text, by file name.
+fn pictures(name: &str) -> Vec<(String, String)> {
+    let path = netlists_in("netlists")
+        .into_iter()
+        .find(|path| path.ends_with(format!("{name}.yaml")))
+        .expect("it is shipped");
+    let netlist = netlist(&path, &[]);
+    charts(&netlist, &outcome(&netlist))
+        .into_iter()
+        .map(|named| {
+            let svg = plots::svg(&named.chart, Size::default()).expect("it can be drawn");
+            (named.file, svg)
+        })
+        .collect()
+}
+
+fn picture(name: &str, file: &str) -> String {
+    let all = pictures(name);
+    let found = all.into_iter().find(|(known, _)| known == file);
+    found.unwrap_or_else(|| panic!("{name} has no {file}")).1
+}
+
+#[test]
+fn a_kick_that_is_over_at_once_is_drawn_on_a_time_of_its_own() {
+    let kick = picture("valve_on_cable", "kick");
+    for piece in [
+        "time after opening [µs]",
+        "time after opening [ms]",
+        "peak 40.",
+        "driver_voltage 60 V",
+    ] {
+        assert!(kick.contains(piece), "no `{piece}`");
+    }
+    // A kick that takes a good part of the release is seen in one picture.
+    let slow = picture("relay_rc_snubber", "kick");
+    assert_eq!(slow.matches("time after opening").count(), 1);
+    assert!(slow.contains("release level 8 mA"));
+}
+
+#[test]
+fn a_bound_on_a_difference_is_no_level() {
+    let run = picture("buck_telemetry", "run");
+    assert!(run.contains("voltage at out") && run.contains("saturation 0.3"));
+    assert!(
+        !run.contains("output_ripple"),
+        "a ripple of 50 mV is not a potential of 50 mV"
+    );
 }
 
 /// An element whose own loss law is off by a factor; everything else is the element's.

@@ -134,8 +134,7 @@ error[unknown-key]: `resistence` is no key of `elements.load`
   --> --set:1:1
    |
  1 | elements.load.resistence=4 Ω
-   | ^^^^^^^^^^^^^^^^^^^^^^^^ unknown
-   = help: keys here: resistance
+   | ^^^^^^^^^^^^^^^^^^^^^^^^ did you mean `resistance`, which is written already?
 "
     );
 }

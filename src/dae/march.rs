@@ -2,7 +2,7 @@
 //!
 //! A step is tried, weighed and kept or shortened. The clock's events are ends of steps; a guard that rises within
 //! a step is located on the step's polynomial and the step is taken anew up to it. What happens at an event is in
-//! [`super::event`].
+//! `event`.
 
 use super::advance::{Advance, Step};
 use super::control::Control;

@@ -112,7 +112,10 @@ pub fn read_limits(top: &Fields<'_>, readings: &[Reading], ratings: &[Ratings]) 
     };
     let read = top.entries(KEY.name).into_iter().filter_map(|entry| {
         let fields = Fields::new(entry.node, entry.path.clone(), KEYS, top.reader());
-        let margin = fields.non_negative("margin");
+        // `margin: 20` means 2000 %, which nobody does.
+        let margin = fields.checked("margin", "between 0 and 10, such as `20 %`", |margin| {
+            margin.low >= 0.0 && margin.high <= 10.0
+        });
         let on = known.read(&fields);
         fields.finish();
         Some(Limit {

@@ -96,11 +96,12 @@ pub fn coil_report(
     }
 }
 
-/// The largest winding current of each coil at rest, with the switches as they start and with all of them closed.
+/// The largest winding current of each coil at rest, with the switches as they start and with all of them closed;
+/// nothing for a coil that carries no current then, or where a switch never rests.
 fn resting_currents(circuit: &Circuit) -> Vec<(usize, usize, f64)> {
     use crate::analysis::{Start, start};
     let mut found: Vec<(usize, usize, f64)> = Vec::new();
-    if !circuit.is_solvable() {
+    if !circuit.is_solvable() || never_rests(circuit) {
         return found;
     }
     let states = [
@@ -127,6 +128,9 @@ fn resting_currents(circuit: &Circuit) -> Vec<(usize, usize, f64)> {
                 else {
                     continue;
                 };
+                if current == 0.0 {
+                    continue;
+                }
                 match found
                     .iter_mut()
                     .find(|(owner, nth, _)| *owner == k && *nth == winding)
@@ -139,6 +143,14 @@ fn resting_currents(circuit: &Circuit) -> Vec<(usize, usize, f64)> {
         }
     }
     found
+}
+
+/// True where a switch is driven by a square wave: what its coils carry is no matter of rest.
+fn never_rests(circuit: &Circuit) -> bool {
+    circuit
+        .entries
+        .iter()
+        .any(|entry| entry.node.get("square").is_some())
 }
 
 /// The state at rest with every switch closed.

@@ -172,7 +172,7 @@ fn wrong_limits_are_told_what_is_wrong() {
         ),
         (
             "reading: kick, at_most: 60 V, margin: -10 %",
-            "margin must be zero or more, got",
+            "margin must be between 0 and 10, such as `20 %`, got",
         ),
         (
             "reading: kick, at_most: 60 V, margins: 10 %",

@@ -110,6 +110,13 @@ impl<'a> Fields<'a> {
                 _ => {
                     let headline = format!("{key} takes a list, got {}", node.what());
                     let help = match node.text() {
+                        Some(text)
+                            if !text.is_empty()
+                                && matches!(self.key(key).takes, Takes::Names(_)) =>
+                        {
+                            let names: Vec<&str> = text.split_whitespace().collect();
+                            format!("{key}: [{}]", shortened(&names.join(", ")))
+                        }
                         Some(text) if !text.is_empty() => format!("{key}: [{}]", shortened(text)),
                         _ => format!("{key}: {example}"),
                     };

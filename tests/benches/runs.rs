@@ -30,14 +30,20 @@ fn relay(criterion: &mut Criterion) {
     group.bench_function("read", |bench| bench.iter(|| netlist(black_box(&file))));
     let relay = netlist(&file);
     group.bench_function("run", |bench| {
-        bench.iter(|| run(black_box(&relay), &mut go_on).map(|outcome| outcome.reached).unwrap_or(f64::NAN));
+        bench.iter(|| {
+            run(black_box(&relay), &mut go_on)
+                .map(|outcome| outcome.reached)
+                .unwrap_or(f64::NAN)
+        });
     });
     group.finish();
 }
 
 /// The simulation alone: start, pilot and run with nobody watching. Returns the steps of the run.
 fn simulate(netlist: &Netlist, accuracy: f64) -> u64 {
-    let Analysis::Transient(transient) = &netlist.analysis else { panic!("the benchmark's netlist is a transient") };
+    let Analysis::Transient(transient) = &netlist.analysis else {
+        panic!("the benchmark's netlist is a transient")
+    };
     let values = netlist.circuit.values();
     let settings = Settings {
         duration: values[transient.duration],
@@ -45,15 +51,23 @@ fn simulate(netlist: &Netlist, accuracy: f64) -> u64 {
         start: transient.start,
         longest_step: f64::INFINITY,
     };
-    let simulation = Simulation { circuit: &netlist.circuit, settings, method: method() };
+    let simulation = Simulation {
+        circuit: &netlist.circuit,
+        settings,
+        method: method(),
+    };
     let wishes = netlist
         .readings
         .iter()
-        .map(|reading| Wish { window: reading.window(values), unknowns: Vec::new() })
+        .map(|reading| Wish {
+            window: reading.window(values),
+            unknowns: Vec::new(),
+        })
         .collect();
     let scales = simulation.pilot(wishes).expect("the pilot runs");
-    let (counted, _) =
-        simulation.run_scaled(&scales, &mut |_, _, _| ControlFlow::Continue(())).expect("the simulation runs");
+    let (counted, _) = simulation
+        .run_scaled(&scales, &mut |_, _, _| ControlFlow::Continue(()))
+        .expect("the simulation runs");
     counted.accepted
 }
 
@@ -94,7 +108,11 @@ fn nodes(criterion: &mut Criterion) {
     let mut group = criterion.benchmark_group("step");
     group.sample_size(10);
     for count in [5, 20, 60] {
-        let netlist = netlist(&Input::Text { name: "chain".into(), bytes: chain(count).into(), folder: None });
+        let netlist = netlist(&Input::Text {
+            name: "chain".into(),
+            bytes: chain(count).into(),
+            folder: None,
+        });
         group.throughput(Throughput::Elements(simulate(&netlist, 1e-4)));
         group.bench_function(BenchmarkId::new("nodes", count), |bench| {
             bench.iter(|| simulate(black_box(&netlist), 1e-4));

@@ -4,7 +4,8 @@ use crate::netlists::{from_text, outcome, value};
 use crate::record::{Bound, check};
 use std::fmt::Write as _;
 
-const SOURCE: &str = "sparse general-purpose solver at 1e-12, case L, tests/data/peer_reference.json";
+const SOURCE: &str =
+    "sparse general-purpose solver at 1e-12, case L, tests/data/peer_reference.json";
 
 /// Case L: n sections of 1 uH + 0.1 ohm in series and 1 nF with 10 Mohm across, 50 ohm at both ends.
 fn ladder(sections: usize) -> String {
@@ -37,12 +38,18 @@ readings:
 
 #[test]
 fn a_ladder_of_a_hundred_sections_meets_the_reference() {
-    let json: serde_json::Value =
-        serde_json::from_str(include_str!("../data/peer_reference.json")).expect("the stored reference is JSON");
+    let json: serde_json::Value = serde_json::from_str(include_str!("../data/peer_reference.json"))
+        .expect("the stored reference is JSON");
     let out = outcome(&from_text(&ladder(100), &[]));
     for name in ["v1_1us", "v1_4us", "v50_4us", "v100_4us", "i1_4us"] {
         let expected = json["ladder"]["100"][name].as_f64().expect("a number");
-        check("ladder against a sparse solver", SOURCE, value(&out, name), expected, Bound::Relative(1e-3));
+        check(
+            "ladder against a sparse solver",
+            SOURCE,
+            value(&out, name),
+            expected,
+            Bound::Relative(1e-3),
+        );
     }
     assert!(out.ledger.imbalance < 1e-3, "{:e}", out.ledger.imbalance);
 }

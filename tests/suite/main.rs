@@ -11,6 +11,7 @@ mod e_series;
 mod engine;
 mod floors;
 mod inductance_of_air_coils;
+mod ladder;
 mod netlists;
 mod peers;
 mod plots;

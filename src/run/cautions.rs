@@ -16,6 +16,8 @@ pub fn add(netlist: &Netlist, outcome: &mut Outcome) {
     let mut cautions = Vec::new();
     unbroken_switches(netlist, outcome, &mut cautions);
     saturated_coils(netlist, outcome, &mut cautions);
+    beyond_the_curve(netlist, outcome, &mut cautions);
+    releases_from_current(netlist, &mut cautions);
     unevaluated_ratings(outcome, &mut cautions);
     cautions.extend(coils(&netlist.circuit));
     outcome.cautions.extend(cautions);
@@ -131,6 +133,62 @@ fn saturated_coils(netlist: &Netlist, outcome: &Outcome, cautions: &mut Vec<Diag
                 .help("there the figures rest on the magnetization far out: give the material a measured `curve`"),
             );
         }
+    }
+}
+
+/// A flux density beyond the last point of a measured curve: the rest is vacuum by assumption.
+fn beyond_the_curve(netlist: &Netlist, outcome: &Outcome, cautions: &mut Vec<Diagnostic>) {
+    for entry in &netlist.circuit.entries {
+        let windings = entry.element.windings();
+        let Some(end) = windings
+            .first()
+            .and_then(|figures| figures.wound.linkage.path().known_to())
+        else {
+            continue;
+        };
+        let Some(trace) = outcome.trace(&format!("flux density in {}", entry.name)) else {
+            continue;
+        };
+        let peak = largest(trace);
+        if peak > end {
+            let tesla =
+                |value: f64| crate::units::engineering(value, crate::units::FLUX_DENSITY, 3);
+            cautions.push(
+                Diagnostic::caution(
+                    "beyond-the-curve",
+                    format!(
+                        "`{}` reaches {}, its material's curve ends at {}",
+                        entry.name,
+                        tesla(peak),
+                        tesla(end)
+                    ),
+                )
+                .at(entry.span, "this coil")
+                .help("beyond its end the curve goes on with the slope of vacuum: give it more points"),
+            );
+        }
+    }
+}
+
+/// A release read from a winding current: an armature moves later than its current falls.
+fn releases_from_current(netlist: &Netlist, cautions: &mut Vec<Diagnostic>) {
+    use crate::signals::{Phrase, Quantity};
+    let of_current = netlist.readings.iter().find(|reading| {
+        reading.kind.word.starts_with("time_until")
+            && matches!(
+                reading.signal.phrase,
+                Phrase::Of(Quantity::WindingCurrent, _)
+            )
+    });
+    if let Some(reading) = of_current {
+        cautions.push(
+            Diagnostic::caution(
+                "release-from-current",
+                format!("`{}` is taken from the current alone", reading.name.text),
+            )
+            .at(reading.name.span, "no armature is modelled")
+            .help("eddy currents, the armature's way and contact bounce come on top: measure them on the bench"),
+        );
     }
 }
 

@@ -10,6 +10,11 @@ const GROWTH: f64 = 6.0;
 /// and a step that was too inaccurate is tried again at least this share as long.
 const SHRINKAGE: f64 = 0.1;
 
+/// A second failure in a row shortens the step at least so much: the error does not follow its order there.
+const REPEATED: f64 = 0.5;
+/// Factor for trying a step again whose stages could not be solved.
+const STALLED: f64 = 0.25;
+
 /// Memory of the control.
 #[derive(Clone, Copy, Debug)]
 pub(crate) struct Control {
@@ -17,6 +22,8 @@ pub(crate) struct Control {
     order: f64,
     /// Length and error of the last kept step; none after an event.
     last: Option<(f64, f64)>,
+    /// Attempts given up since a step was kept.
+    failures: u32,
 }
 
 impl Control {
@@ -24,12 +31,14 @@ impl Control {
         Control {
             order: f64::from(order),
             last: None,
+            failures: 0,
         }
     }
 
     /// An event: the errors so far tell nothing about the steps to come.
     pub fn restart(&mut self) {
         self.last = None;
+        self.failures = 0;
     }
 
     /// Factor for the step after a kept one of this length and error.
@@ -44,11 +53,21 @@ impl Control {
             None => plain,
         };
         self.last = Some((length, error.max(1e-2)));
-        factor.clamp(SHRINKAGE, GROWTH)
+        let most = if self.failures > 0 { 1.0 } else { GROWTH };
+        self.failures = 0;
+        factor.clamp(SHRINKAGE, most)
     }
 
     /// Factor for trying a step again that had this error.
-    pub fn again(&self, error: f64) -> f64 {
-        (CAUTION * error.powf(-1.0 / self.order)).clamp(SHRINKAGE, 0.9)
+    pub fn again(&mut self, error: f64) -> f64 {
+        self.failures += 1;
+        let most = if self.failures > 1 { REPEATED } else { 0.9 };
+        (CAUTION * error.powf(-1.0 / self.order)).clamp(SHRINKAGE, most)
+    }
+
+    /// Factor for trying a step again whose stages could not be solved.
+    pub fn after_stall(&mut self) -> f64 {
+        self.failures += 1;
+        STALLED
     }
 }

@@ -8,6 +8,7 @@ use super::advance::{Advance, Step};
 use super::control::Control;
 use super::crossing::{Crossing, Watch};
 use super::event::Events;
+use super::experience::Experience;
 use super::methods::{Attempt, Method, Stepper, Trial};
 use super::statistics::Statistics;
 use super::system::{Cause, Point, System};
@@ -79,6 +80,7 @@ struct Scratch {
     control: Control,
     watch: Watch,
     events: Events,
+    experience: Experience,
     weights: Vec<f64>,
     before: Vec<f64>,
 }
@@ -119,6 +121,7 @@ impl March {
             control: Control::new(self.method.estimated),
             watch: Watch::new(system),
             events: Events::new(system, self.elimination),
+            experience: Experience::default(),
             weights: vec![0.0; system.size()],
             before: vec![0.0; system.size()],
         });
@@ -134,35 +137,6 @@ impl March {
         run.whole()
     }
 }
-
-/// Tells an estimate that is made of rounding from one that is made of error: it does not fall with the step.
-///
-/// A charge that follows a node of tens of volts has a current whose rounding grows as the step shrinks, and where a
-/// tolerance asks for less than that no step is short enough. After some tries in which the estimate stayed, the step is
-/// as good as the numbers can tell.
-#[derive(Default)]
-struct Floor {
-    last: Option<(f64, f64)>,
-    stayed: u32,
-}
-
-impl Floor {
-    /// Takes a step that was too inaccurate; true once its estimate has proved to be a floor.
-    fn reached(&mut self, length: f64, error: f64) -> bool {
-        if let Some((before, error_before)) = self.last {
-            // Even an algebraic unknown at a corner gains as the step does; a floor gains nothing.
-            let fell = error < error_before * (length / before).sqrt();
-            self.stayed = if fell { 0 } else { self.stayed + 1 };
-        }
-        self.last = Some((length, error));
-        self.stayed >= MOST_STAYS && error < MOST_ROUNDING
-    }
-}
-
-/// Tries in a row whose estimate may stay before it counts as rounding.
-const MOST_STAYS: u32 = 12;
-/// Tolerances beyond which an estimate that stays is no rounding but a fault.
-const MOST_ROUNDING: f64 = 100.0;
 
 struct Run<'a, 'o, S: ?Sized> {
     system: &'a S,
@@ -254,7 +228,6 @@ impl<S: System + ?Sized> Run<'_, '_, S> {
     fn step(&mut self, stop: f64) -> Result<(End, ControlFlow<()>), MarchError> {
         let mut aim = f64::INFINITY;
         let mut located = 0;
-        let mut floor = Floor::default();
         loop {
             let (to, at_stop) = self.goal(stop.min(aim));
             let trial = Trial {
@@ -272,7 +245,7 @@ impl<S: System + ?Sized> Run<'_, '_, S> {
                 .stepper
                 .attempt(self.system, trial, self.counted)
             {
-                Attempt::Solved { error, .. } if error <= 1.0 || floor.reached(length, error) => {
+                Attempt::Solved { error, .. } if error <= 1.0 => {
                     let end = match self.crossing(to, located) {
                         Crossing::None => None,
                         Crossing::Here(guard) => Some(End::Guard(guard)),
@@ -290,6 +263,10 @@ impl<S: System + ?Sized> Run<'_, '_, S> {
                     });
                     let factor = self.scratch.control.next(length, error);
                     // A step cut short by an event says little about the steps after it, unless it would shrink.
+                    let hard = self.scratch.stepper.is_hard();
+                    self.scratch
+                        .experience
+                        .learn(length * factor.clamp(0.5, 2.0), hard);
                     self.length = if at_stop {
                         self.length.max(length * factor)
                     } else {
@@ -298,16 +275,13 @@ impl<S: System + ?Sized> Run<'_, '_, S> {
                     return Ok((end, self.keep(to)));
                 }
                 Attempt::Solved { error, unknown } => {
-                    self.shrink(
-                        length,
-                        self.scratch.control.again(error),
-                        unknown,
-                        Trouble::Inaccurate,
-                    )?;
+                    let factor = self.scratch.control.again(error);
+                    self.shrink(length, factor, unknown, Trouble::Inaccurate)?;
                 }
                 Attempt::Stalled { unknown, cause } => {
                     self.counted.unsettled += 1;
-                    self.shrink(length, 0.25, unknown, cause)?;
+                    let factor = self.scratch.control.after_stall();
+                    self.shrink(length, factor, unknown, cause)?;
                 }
             }
         }
@@ -399,13 +373,18 @@ impl<S: System + ?Sized> Run<'_, '_, S> {
             &mut scratch.watch,
             self.counted,
         )?;
+        let event = scratch.events.advance(self.state);
         if changed {
             scratch.stepper.restart();
             scratch.control.restart();
+            if let Some((length, hard)) = scratch.experience.recall(&event) {
+                self.length = length;
+                scratch.stepper.expect_hard(hard);
+            }
             self.span
                 .tolerances
                 .weigh(&self.state.x, &mut scratch.weights);
         }
-        Ok((self.observer)(&scratch.events.advance(self.state)))
+        Ok((self.observer)(&event))
     }
 }

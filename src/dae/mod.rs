@@ -9,6 +9,7 @@ mod control;
 mod crossing;
 pub mod dense;
 mod event;
+mod experience;
 pub mod march;
 pub mod methods;
 mod newton;

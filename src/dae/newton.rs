@@ -6,7 +6,7 @@
 
 use super::statistics::Statistics;
 use super::system::{Evaluation, Point, System};
-use super::tolerances::{largest, rounding};
+use super::tolerances::{lags, largest, rounding};
 use super::trouble::Trouble;
 use crate::math::{Elimination, Matrix};
 
@@ -52,11 +52,10 @@ pub(crate) struct Newton {
     pub matrix: Matrix<f64>,
     pub out: Evaluation,
     step: Vec<f64>,
+    step_before: Vec<f64>,
     rest: Vec<f64>,
     /// Rate for which the factors hold; not a number where there are none.
     factored: f64,
-    /// Ratio of the last two steps' sizes in the last solution.
-    contraction: f64,
 }
 
 impl Newton {
@@ -67,9 +66,9 @@ impl Newton {
             matrix: Matrix::new(size, &pattern.starts, &pattern.rows, elimination),
             out: evaluation(size, pattern.len()),
             step: vec![0.0; size],
+            step_before: vec![0.0; size],
             rest: Vec::with_capacity(size),
             factored: f64::NAN,
-            contraction: 1.0,
         }
     }
 
@@ -125,7 +124,7 @@ impl Newton {
     ) -> Result<(), Failure> {
         let mut before = f64::INFINITY;
         let mut culprit = 0;
-        let mut eta = self.contraction.max(0.02).powf(0.8);
+        let mut eta = 1.0;
         let mut kept = !rules.fresh && self.factored == equation.rate;
         for iteration in 0..rules.longest {
             self.evaluate(system, equation, x, !kept, counted)?;
@@ -158,19 +157,22 @@ impl Newton {
                 f64::NAN
             };
             if iteration > 0 && rate.is_finite() {
-                self.contraction = rate.min(1.0);
                 eta = if rate < 1.0 {
                     rate / (1.0 - rate)
                 } else {
                     f64::INFINITY
                 };
             }
-            if size == 0.0
-                || eta.min(1e3) * size <= rules.close
-                || (iteration > 0 && size <= 1e-3 * rules.close)
-            {
+            let close = if before.is_finite() {
+                eta * size <= rules.close
+                    && !lags(&self.step, &self.step_before, weights, rules.close)
+            } else {
+                size <= 0.1 * rules.close
+            };
+            if close {
                 return Ok(());
             }
+            self.step_before.copy_from_slice(&self.step);
             if rate > 0.5 && size <= self.noise(equation, x, weights) {
                 return Ok(());
             }

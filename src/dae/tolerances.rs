@@ -44,6 +44,19 @@ pub(crate) fn largest(v: &[f64], weights: &[f64]) -> (f64, usize) {
     most
 }
 
+/// True where some entry of a Newton step is above `close` tolerances and has hardly fallen since the step `before`.
+///
+/// An exponential law far above its solution moves by one and the same small voltage in every iteration: beside a
+/// quickly falling entry elsewhere that looks like convergence, and is not.
+#[inline]
+pub(crate) fn lags(step: &[f64], before: &[f64], weights: &[f64], close: f64) -> bool {
+    let entries = step.iter().zip(before).zip(weights);
+    entries.into_iter().any(|((step, before), weight)| {
+        let size = (step * weight).abs();
+        size > close && size > 0.3 * (before * weight).abs()
+    })
+}
+
 /// What rounding may do to a row whose terms are of this size; the sign alternates from row to row.
 #[inline]
 pub(crate) fn rounding(row: usize, terms: f64) -> f64 {

@@ -77,7 +77,11 @@ impl Relay {
         };
         let mut swings = vec![24.0, 0.054, kick, 0.3, 0.054];
         if self.suppressor != Suppressor::None {
-            swings.push(kick);
+            swings.push(if self.suppressor == Suppressor::Diode {
+                1.0
+            } else {
+                kick
+            });
         }
         swings
     }

@@ -70,8 +70,9 @@ fn the_ledger_closes_and_closes_better_at_a_finer_accuracy() {
             .ledger
             .imbalance;
         assert!(usual < CLOSES, "{}: {usual:e}", path.display());
+        // Four decades below the bound it is chance whether the next steps close the ledger better still.
         assert!(
-            fine < usual,
+            fine < usual || fine < 1e-4 * CLOSES,
             "{}: {usual:e} at 1e-4, {fine:e} at 1e-5",
             path.display()
         );

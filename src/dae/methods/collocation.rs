@@ -14,7 +14,7 @@ use super::super::newton::evaluation;
 use super::super::pattern::Pattern;
 use super::super::statistics::Statistics;
 use super::super::system::{Evaluation, Point, System};
-use super::super::tolerances::{largest, rounding};
+use super::super::tolerances::{lags, largest, rounding};
 use super::super::trouble::Trouble;
 use super::coupled::Coupled;
 use super::radau_iia::Coefficients;
@@ -24,6 +24,8 @@ use crate::math::{Elimination, Singular};
 
 /// The iteration may leave this share of a tolerance.
 const CLOSE: f64 = 0.03;
+/// A first Newton step below this share of a tolerance is the last one.
+const VERY_CLOSE: f64 = 0.003;
 /// Iterations at most with one pair of slopes, and with those of each stage.
 const LONGEST: [usize; 2] = [6, 14];
 /// Slopes are taken anew for the next step when the iteration contracted more slowly than this.
@@ -32,54 +34,57 @@ const SLOW: f64 = 0.01;
 const BRISK: f64 = 0.1;
 /// The last polynomial is continued at most so many of its own lengths.
 const FAR: f64 = 4.0;
-/// After so many failed attempts the rounding of charges is suspected.
-const ODD: u32 = 4;
-/// Where within a step the polynomial is looked at when slopes change much, besides its start: between the stages.
-const BETWEEN: [f64; 2] = [0.4, 0.85];
 /// After slopes common to all stages have failed, so many steps start with the stages' own.
 const PATIENCE: u32 = 10;
 
 /// Memory of the family.
 #[derive(Debug)]
 pub(crate) struct Collocation<const S: usize> {
-    table: Coefficients<S>,
-    pattern: Pattern,
-    split: Split<S>,
-    coupled: Coupled<S>,
+    pub(super) table: Coefficients<S>,
+    pub(super) pattern: Pattern,
+    pub(super) split: Split<S>,
+    pub(super) coupled: Coupled<S>,
     /// Values at the start and at the stages, one row each.
-    stages: Vec<f64>,
+    pub(super) stages: Vec<f64>,
     /// Evaluation at the start, and whether it is there.
-    base: Evaluation,
-    based: bool,
-    outs: Vec<Evaluation>,
-    probe: Evaluation,
+    pub(super) base: Evaluation,
+    pub(super) based: bool,
+    pub(super) outs: Vec<Evaluation>,
+    pub(super) probe: Evaluation,
+    /// Evaluation at the end of the step tried last, and whether it is there.
+    pub(super) next: Evaluation,
+    pub(super) next_ready: bool,
     /// Length [s] for which the split factors hold; zero where there are none.
-    factored: f64,
+    pub(super) factored: f64,
     /// How the split iteration contracted last.
-    contraction: f64,
+    pub(super) contraction: f64,
     /// Steps still to be begun with the stages' own slopes.
-    hard: u32,
+    pub(super) hard: u32,
     /// The step tried last was solved with the stages' own slopes.
-    own: bool,
+    pub(super) own: bool,
     /// Newton step of each stage, one row each.
-    steps: Vec<f64>,
-    defect: Vec<f64>,
-    error: Vec<f64>,
-    coefficients: Vec<f64>,
-    laid: f64,
-    origin: f64,
-    tried: f64,
+    pub(super) steps: Vec<f64>,
+    /// The one before it.
+    pub(super) steps_before: Vec<f64>,
+    pub(super) defect: Vec<f64>,
+    pub(super) error: Vec<f64>,
+    /// Values at the start, after the estimate has settled what was not.
+    pub(super) settled: Vec<f64>,
+    pub(super) coefficients: Vec<f64>,
+    pub(super) laid: f64,
+    pub(super) origin: f64,
+    pub(super) tried: f64,
     /// True until a step is kept after a restart or a rejection: the estimate is then filtered once more.
-    careful: bool,
+    pub(super) careful: bool,
     /// Attempts since a step was kept.
-    failures: u32,
+    pub(super) failures: u32,
 }
 
 /// Why the stages were not solved.
 #[derive(Clone, Copy, Debug)]
-struct Failure {
-    unknown: usize,
-    cause: Trouble,
+pub(super) struct Failure {
+    pub unknown: usize,
+    pub cause: Trouble,
 }
 
 impl From<Singular> for Failure {
@@ -103,13 +108,17 @@ impl<const S: usize> Collocation<S> {
             based: false,
             outs: (0..S).map(|_| evaluation(n, pattern.len())).collect(),
             probe: evaluation(n, pattern.len()),
+            next: evaluation(n, pattern.len()),
+            next_ready: false,
             factored: 0.0,
             contraction: 1.0,
             hard: 0,
             own: false,
             steps: vec![0.0; S * n],
+            steps_before: vec![0.0; S * n],
             defect: vec![0.0; n],
             error: vec![0.0; n],
+            settled: vec![0.0; n],
             coefficients: vec![0.0; (S + 1) * n],
             laid: 0.0,
             origin: 0.0,
@@ -122,6 +131,7 @@ impl<const S: usize> Collocation<S> {
 
     pub fn restart(&mut self) {
         self.based = false;
+        self.next_ready = false;
         self.factored = 0.0;
         self.contraction = 1.0;
         self.laid = 0.0;
@@ -129,6 +139,14 @@ impl<const S: usize> Collocation<S> {
         self.failures = 0;
         self.tried = 0.0;
         self.hard = 0;
+    }
+
+    pub fn expect_hard(&mut self, hard: bool) {
+        self.hard = if hard { PATIENCE } else { 0 };
+    }
+
+    pub fn is_hard(&self) -> bool {
+        self.own
     }
 
     pub fn attempt<Y: System + ?Sized>(
@@ -142,13 +160,98 @@ impl<const S: usize> Collocation<S> {
             self.failures += 1;
         }
         self.tried = trial.length;
-        match self.solve_stages(system, trial, counted) {
-            Ok(()) => self.weigh_error(system, trial, counted),
-            Err(failure) => Attempt::Stalled {
-                unknown: failure.unknown,
-                cause: failure.cause,
-            },
+        self.next_ready = false;
+        match self.whole(system, trial, counted) {
+            Ok((error, unknown)) => Attempt::Solved { error, unknown },
+            Err(Failure { unknown, cause }) => Attempt::Stalled { unknown, cause },
         }
+    }
+
+    /// Stages and error; the unknown that sets it.
+    fn whole<Y: System + ?Sized>(
+        &mut self,
+        system: &Y,
+        trial: Trial<'_>,
+        counted: &mut Statistics,
+    ) -> Result<(f64, usize), Failure> {
+        self.solve_stages(system, trial, counted)?;
+        let weighed = self.weigh_error(system, trial, counted)?;
+        if self.own || weighed.0 > 1.0 || self.end_holds(system, trial, counted)? {
+            return Ok(weighed);
+        }
+        self.hard = PATIENCE;
+        self.predict(system, trial);
+        self.iterate(system, trial, true, counted)?;
+        self.weigh_error(system, trial, counted)
+    }
+
+    /// True where some unknown of some stage has hardly moved less than in the iteration before.
+    fn lags(&self, weights: &[f64]) -> bool {
+        let n = self.defect.len();
+        let stages = self
+            .steps
+            .chunks_exact(n.max(1))
+            .zip(self.steps_before.chunks_exact(n.max(1)));
+        stages
+            .into_iter()
+            .any(|(step, before)| lags(step, before, weights, CLOSE))
+    }
+
+    /// True where the slopes at a stage differ much from the common ones: small steps are then no proof of a solution.
+    fn stages_differ(&self, length: f64) -> bool {
+        let rate = self.table.real / length;
+        self.outs.iter().any(|out| self.split.differs(out, rate))
+    }
+
+    /// True where the end of the step solves its equation with the slopes found there too.
+    ///
+    /// Slopes taken elsewhere may be far steeper than those at a stage (a junction conducts at the start, and does not
+    /// where the stage is believed to be): the iteration then creeps in steps that look small. The evaluation serves
+    /// as the start of the next step.
+    fn end_holds<Y: System + ?Sized>(
+        &mut self,
+        system: &Y,
+        trial: Trial<'_>,
+        counted: &mut Statistics,
+    ) -> Result<bool, Failure> {
+        let n = self.defect.len();
+        let time = trial.from.time + trial.length;
+        let x = &self.stages[S * n..];
+        system.evaluate(
+            Point {
+                time,
+                x,
+                mode: trial.from.mode,
+            },
+            true,
+            &mut self.next,
+        );
+        counted.evaluations += 1;
+        sound(&self.next)?;
+        self.next_ready = true;
+        if !self
+            .split
+            .differs(&self.next, self.table.real / trial.length)
+        {
+            return Ok(true);
+        }
+        let rates = self.table.inverse[S - 1].map(|w| w / trial.length);
+        for row in 0..n {
+            let start = self.base.q[row];
+            let mut sum = self.next.f[row] + rates[S - 1] * (self.next.q[row] - start);
+            for (rate, out) in rates.iter().zip(&self.outs[..S - 1]) {
+                sum += rate * (out.q[row] - start);
+            }
+            self.error[row] = -sum;
+        }
+        self.factored = 0.0;
+        self.split.take_slopes(&self.next);
+        self.split.factor_real(&self.table, trial.length)?;
+        counted.factorizations += 1;
+        self.split.solve_real(&mut self.error);
+        counted.solves += 1;
+        self.split.take_slopes(&self.base);
+        Ok(largest(&self.error, trial.weights).0 <= 1.0)
     }
 
     fn solve_stages<Y: System + ?Sized>(
@@ -179,18 +282,16 @@ impl<const S: usize> Collocation<S> {
         let same = (trial.length - self.factored).abs() <= 1e-6 * trial.length;
         let serves = same && self.contraction <= SLOW;
         if !self.based {
-            system.evaluate(trial.from, !serves, &mut self.base);
+            system.evaluate(trial.from, true, &mut self.base);
             counted.evaluations += 1;
             self.based = true;
             sound(&self.base)?;
-            if !serves {
-                self.split.take_slopes(&self.base);
-            }
         }
         if serves {
             return Ok(());
         }
         self.factored = 0.0;
+        self.split.take_slopes(&self.base);
         self.split.factor_real(&self.table, trial.length)?;
         counted.factorizations += 1;
         if self.hard == 0 {
@@ -241,15 +342,11 @@ impl<const S: usize> Collocation<S> {
         let longest = LONGEST[usize::from(own)];
         let mut before = f64::INFINITY;
         let mut rate = f64::INFINITY;
-        let mut eta = if own {
-            1.0
-        } else {
-            self.contraction.max(0.02).powf(0.8)
-        };
+        let mut eta = 1.0;
         let mut culprit = 0;
         for iteration in 0..longest {
             let anew = own && rate > BRISK;
-            self.evaluate(system, trial, anew, counted)?;
+            self.evaluate(system, trial, anew || !own, counted)?;
             if anew {
                 let rates = self.table.inverse.map(|row| row.map(|w| w / trial.length));
                 self.coupled.factor(&self.pattern, &rates, &self.outs)?;
@@ -286,9 +383,18 @@ impl<const S: usize> Collocation<S> {
                     }
                 }
             }
-            if eta * size <= CLOSE || size == 0.0 {
+            let close = if before.is_finite() {
+                eta * size <= CLOSE && !self.lags(trial.weights)
+            } else {
+                size <= VERY_CLOSE
+            };
+            if close {
+                if !own && self.stages_differ(trial.length) {
+                    break;
+                }
                 return Ok(());
             }
+            self.steps_before.copy_from_slice(&self.steps);
             before = size;
         }
         Err(Failure {
@@ -382,7 +488,7 @@ impl<const S: usize> Collocation<S> {
             }
         } else {
             self.split.solve(&self.table, &mut self.steps);
-            for steps in self.steps.chunks_exact(n) {
+            for steps in self.steps.chunks_exact(n.max(1)) {
                 most = most.max(largest(steps, trial.weights).0);
             }
         }
@@ -410,165 +516,6 @@ impl<const S: usize> Collocation<S> {
         (most.0, most.1, limited)
     }
 
-    fn weigh_error<Y: System + ?Sized>(
-        &mut self,
-        system: &Y,
-        trial: Trial<'_>,
-        counted: &mut Statistics,
-    ) -> Attempt {
-        self.collect_defect(trial.length);
-        let mut most = self.filtered(system, trial, counted);
-        if self.own {
-            for share in BETWEEN {
-                if most.0 > 1.0 {
-                    break;
-                }
-                match self.defect_within(system, trial, share, counted) {
-                    Ok(here) if here.0 > most.0 => most = here,
-                    Ok(_) => {}
-                    Err(Failure { unknown, cause }) => return Attempt::Stalled { unknown, cause },
-                }
-            }
-        }
-        let (mut error, unknown) = most;
-        if error > 1.0 && self.failures >= ODD && error <= self.error_noise(trial) {
-            // Shorter steps would only magnify the rounding of charges.
-            error = 1.0;
-        }
-        if error.is_finite() {
-            Attempt::Solved { error, unknown }
-        } else {
-            Attempt::Stalled {
-                unknown,
-                cause: Trouble::NotFinite,
-            }
-        }
-    }
-
-    /// The error that the rounding of charges alone feigns.
-    #[cold]
-    fn error_noise(&mut self, trial: Trial<'_>) -> f64 {
-        let rate = self.table.at_start.iter().map(|w| w.abs()).sum::<f64>() / trial.length;
-        for (row, error) in self.error.iter_mut().enumerate() {
-            *error = rounding(row, rate * self.base.q[row].abs() + self.base.f[row].abs());
-        }
-        self.split.solve_real(&mut self.error);
-        largest(&self.error, trial.weights).0
-    }
-
-    /// The defect through the real factors: an error in tolerances, and the unknown that sets it.
-    fn filtered<Y: System + ?Sized>(
-        &mut self,
-        system: &Y,
-        trial: Trial<'_>,
-        counted: &mut Statistics,
-    ) -> (f64, usize) {
-        let rows = self.defect.iter().zip(&self.base.f);
-        for (error, (defect, f)) in self.error.iter_mut().zip(rows) {
-            *error = -(f + defect);
-        }
-        self.split.solve_real(&mut self.error);
-        counted.solves += 1;
-        let first = largest(&self.error, trial.weights);
-        if !self.careful || first.0 <= 1.0 || !first.0.is_finite() {
-            return first;
-        }
-        // A fast part that has not settled at the start enlarges the estimate: filter it once more.
-        for (error, &start) in self.error.iter_mut().zip(trial.from.x) {
-            *error += start;
-        }
-        system.evaluate(
-            Point {
-                x: &self.error,
-                ..trial.from
-            },
-            false,
-            &mut self.probe,
-        );
-        counted.evaluations += 1;
-        let rows = self.defect.iter().zip(&self.probe.f);
-        for (error, (defect, f)) in self.error.iter_mut().zip(rows) {
-            *error = -(f + defect);
-        }
-        self.split.solve_real(&mut self.error);
-        counted.solves += 1;
-        let again = largest(&self.error, trial.weights);
-        if again.0 < first.0 { again } else { first }
-    }
-
-    /// The defect of the polynomial within the step, through the slopes found there. Where these change much, the
-    /// stages may all be sound (each held by something stiff) and the way between them is not.
-    fn defect_within<Y: System + ?Sized>(
-        &mut self,
-        system: &Y,
-        trial: Trial<'_>,
-        share: f64,
-        counted: &mut Statistics,
-    ) -> Result<(f64, usize), Failure> {
-        let n = self.defect.len();
-        let mut weights = [0.0; S];
-        let mut slopes = [0.0; S];
-        self.table.at(share, &mut weights, &mut slopes);
-        for row in 0..n {
-            let start = trial.from.x[row];
-            self.error[row] = start
-                + (0..S)
-                    .map(|j| weights[j] * (self.stages[(j + 1) * n + row] - start))
-                    .sum::<f64>();
-            let charge = self.base.q[row];
-            self.defect[row] = (0..S)
-                .map(|j| slopes[j] / trial.length * (self.outs[j].q[row] - charge))
-                .sum();
-        }
-        for column in 0..n {
-            for slot in self.pattern.starts[column]..self.pattern.starts[column + 1] {
-                for (j, out) in self.outs.iter().enumerate() {
-                    self.defect[self.pattern.rows[slot]] +=
-                        out.dq[slot] * slopes[j] / trial.length * self.steps[j * n + column];
-                }
-            }
-        }
-        let time = trial.from.time + share * trial.length;
-        let at = Point {
-            time,
-            x: &self.error,
-            mode: trial.from.mode,
-        };
-        system.evaluate(at, true, &mut self.probe);
-        counted.evaluations += 1;
-        sound(&self.probe)?;
-        self.split.take_slopes(&self.probe);
-        counted.factorizations += 1;
-        self.factored = 0.0;
-        self.split.factor_real(&self.table, trial.length)?;
-        let rows = self.defect.iter().zip(&self.probe.f);
-        for (error, (defect, f)) in self.error.iter_mut().zip(rows) {
-            *error = -(f + defect);
-        }
-        self.split.solve_real(&mut self.error);
-        counted.solves += 1;
-        self.split.take_slopes(&self.base);
-        Ok(largest(&self.error, trial.weights))
-    }
-
-    /// p'(0) of the charges' polynomial. The charges are those before the last Newton step, carried on by C.
-    fn collect_defect(&mut self, length: f64) {
-        let n = self.defect.len();
-        let rates = self.table.at_start.map(|w| w / length);
-        for row in 0..n {
-            let start = self.base.q[row];
-            self.defect[row] = (0..S)
-                .map(|j| rates[j] * (self.outs[j].q[row] - start))
-                .sum();
-        }
-        for column in 0..n {
-            let moved: f64 = (0..S).map(|j| rates[j] * self.steps[j * n + column]).sum();
-            for slot in self.pattern.starts[column]..self.pattern.starts[column + 1] {
-                self.defect[self.pattern.rows[slot]] += self.split.dq[slot] * moved;
-            }
-        }
-    }
-
     pub fn end(&self) -> &[f64] {
         let n = self.defect.len();
         &self.stages[S * n..]
@@ -591,7 +538,12 @@ impl<const S: usize> Collocation<S> {
 
     pub fn keep(&mut self) {
         self.origin = 1.0;
-        self.based = false;
+        // The end has been evaluated already where it was looked at.
+        self.based = self.next_ready;
+        if self.next_ready {
+            std::mem::swap(&mut self.base, &mut self.next);
+            self.next_ready = false;
+        }
         self.careful = false;
         self.failures = 0;
         self.tried = 0.0;
@@ -600,7 +552,7 @@ impl<const S: usize> Collocation<S> {
 }
 
 /// Fails with the first row whose value is not finite.
-fn sound(out: &Evaluation) -> Result<(), Failure> {
+pub(super) fn sound(out: &Evaluation) -> Result<(), Failure> {
     match out
         .f
         .iter()

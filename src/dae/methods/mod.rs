@@ -6,6 +6,7 @@
 mod collocation;
 mod coupled;
 mod diagonal;
+mod estimate;
 mod radau_iia;
 mod split;
 mod tr_bdf2;
@@ -19,7 +20,7 @@ use collocation::Collocation;
 use diagonal::Diagonal;
 
 /// All methods; the first is the one that is taken unless another is asked for.
-pub const METHODS: &[Method] = &[radau_iia::METHOD, tr_bdf2::METHOD];
+pub const METHODS: &[Method] = &[radau_iia::METHOD, radau_iia::FIVE, tr_bdf2::METHOD];
 
 /// An implicit one-step method.
 #[derive(Clone, Copy, Debug)]
@@ -44,6 +45,8 @@ pub enum Family {
     Diagonal(Table),
     /// Radau's collocation with three stages, solved together.
     Collocation3,
+    /// Radau's collocation with five stages, solved together.
+    Collocation5,
 }
 
 /// Coefficients of a diagonally implicit method (Butcher's table, stiffly accurate, first stage explicit).
@@ -97,6 +100,7 @@ pub(crate) struct Trial<'a> {
 pub(crate) enum Stepper {
     Diagonal(Box<Diagonal>),
     Collocation3(Box<Collocation<3>>),
+    Collocation5(Box<Collocation<5>>),
 }
 
 impl Stepper {
@@ -108,6 +112,9 @@ impl Stepper {
             Family::Collocation3 => {
                 Stepper::Collocation3(Box::new(Collocation::new(system, elimination)))
             }
+            Family::Collocation5 => {
+                Stepper::Collocation5(Box::new(Collocation::new(system, elimination)))
+            }
         }
     }
 
@@ -116,6 +123,25 @@ impl Stepper {
         match self {
             Stepper::Diagonal(stepper) => stepper.restart(),
             Stepper::Collocation3(stepper) => stepper.restart(),
+            Stepper::Collocation5(stepper) => stepper.restart(),
+        }
+    }
+
+    /// The stages of the next steps are expected to differ much in their slopes.
+    pub fn expect_hard(&mut self, hard: bool) {
+        match self {
+            Stepper::Diagonal(_) => {}
+            Stepper::Collocation3(stepper) => stepper.expect_hard(hard),
+            Stepper::Collocation5(stepper) => stepper.expect_hard(hard),
+        }
+    }
+
+    /// True where the stages of the step tried last differed much in their slopes.
+    pub fn is_hard(&self) -> bool {
+        match self {
+            Stepper::Diagonal(_) => false,
+            Stepper::Collocation3(stepper) => stepper.is_hard(),
+            Stepper::Collocation5(stepper) => stepper.is_hard(),
         }
     }
 
@@ -129,6 +155,7 @@ impl Stepper {
         match self {
             Stepper::Diagonal(stepper) => stepper.attempt(system, trial, counted),
             Stepper::Collocation3(stepper) => stepper.attempt(system, trial, counted),
+            Stepper::Collocation5(stepper) => stepper.attempt(system, trial, counted),
         }
     }
 
@@ -137,6 +164,7 @@ impl Stepper {
         match self {
             Stepper::Diagonal(stepper) => stepper.end(),
             Stepper::Collocation3(stepper) => stepper.end(),
+            Stepper::Collocation5(stepper) => stepper.end(),
         }
     }
 
@@ -145,6 +173,7 @@ impl Stepper {
         match self {
             Stepper::Diagonal(stepper) => stepper.lay(),
             Stepper::Collocation3(stepper) => stepper.lay(),
+            Stepper::Collocation5(stepper) => stepper.lay(),
         }
     }
 
@@ -153,6 +182,7 @@ impl Stepper {
         match self {
             Stepper::Diagonal(stepper) => stepper.dense(),
             Stepper::Collocation3(stepper) => stepper.dense(),
+            Stepper::Collocation5(stepper) => stepper.dense(),
         }
     }
 
@@ -161,6 +191,7 @@ impl Stepper {
         match self {
             Stepper::Diagonal(stepper) => stepper.keep(),
             Stepper::Collocation3(stepper) => stepper.keep(),
+            Stepper::Collocation5(stepper) => stepper.keep(),
         }
     }
 }

@@ -18,6 +18,15 @@ pub const METHOD: Method = Method {
     family: Family::Collocation3,
 };
 
+/// Five stages, order 9: for smooth problems and high accuracy.
+pub const FIVE: Method = Method {
+    name: "radau_iia_9",
+    order: 9,
+    estimated: 6,
+    local: (0.5, 1.0),
+    family: Family::Collocation5,
+};
+
 /// Coefficients for S stages; S is odd. W is the inverse of Butcher's matrix.
 #[derive(Clone, Debug)]
 pub(crate) struct Coefficients<const S: usize> {
@@ -27,6 +36,9 @@ pub(crate) struct Coefficients<const S: usize> {
     pub inverse: [[f64; S]; S],
     /// The same at the step's start.
     pub at_start: [f64; S],
+    /// The polynomial half-way between each stage and the next, and the number of the widest of these gaps.
+    pub between: Vec<Between<S>>,
+    pub widest: usize,
     /// T, in which W is block diagonal: W T = T diag(real, pairs).
     pub transform: [[f64; S]; S],
     /// Inverse of T.
@@ -37,21 +49,36 @@ pub(crate) struct Coefficients<const S: usize> {
     pub pairs: Vec<Complex64>,
 }
 
-impl<const S: usize> Coefficients<S> {
-    /// Weights of the stages' increments in the collocation polynomial's value at `share` of the step, and in its
-    /// slope per step.
-    pub fn at(&self, share: f64, weights: &mut [f64; S], slopes: &mut [f64; S]) {
-        for j in 0..S {
-            let (mut value, mut slope) = (1.0, 0.0);
-            for k in (0..=S).filter(|&k| k != j + 1) {
-                let reciprocal = 1.0 / (self.points[j + 1] - self.points[k]);
-                slope = (slope * (share - self.points[k]) + value) * reciprocal;
-                value *= (share - self.points[k]) * reciprocal;
-            }
-            (weights[j], slopes[j]) = (value, slope);
-        }
-    }
+/// The collocation polynomial at one point within the step.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Between<const S: usize> {
+    /// The point, as a share of the step.
+    pub share: f64,
+    /// Weights of the stages' increments in its value,
+    pub weights: [f64; S],
+    /// and in its slope per step.
+    pub slopes: [f64; S],
+}
 
+fn between<const S: usize>(points: &[f64], share: f64) -> Between<S> {
+    let mut at = Between {
+        share,
+        weights: [0.0; S],
+        slopes: [0.0; S],
+    };
+    for j in 0..S {
+        let (mut value, mut slope) = (1.0, 0.0);
+        for k in (0..=S).filter(|&k| k != j + 1) {
+            let reciprocal = 1.0 / (points[j + 1] - points[k]);
+            slope = (slope * (share - points[k]) + value) * reciprocal;
+            value *= (share - points[k]) * reciprocal;
+        }
+        (at.weights[j], at.slopes[j]) = (value, slope);
+    }
+    at
+}
+
+impl<const S: usize> Coefficients<S> {
     pub fn new() -> Self {
         let mut points = vec![0.0];
         points.extend(right_radau_points(S));
@@ -93,7 +120,17 @@ impl<const S: usize> Coefficients<S> {
             .try_inverse()
             .expect("the eigenvectors of distinct eigenvalues are independent");
         let array = |m: &DMatrix<f64>| std::array::from_fn(|i| std::array::from_fn(|j| m[(i, j)]));
+        let gaps = points[1..].windows(2);
+        let between: Vec<_> = gaps
+            .map(|gap| between(&points, 0.5 * (gap[0] + gap[1])))
+            .collect();
+        let width = |k: usize| points[k + 2] - points[k + 1];
+        let widest = (0..S - 1)
+            .max_by(|&a, &b| width(a).total_cmp(&width(b)))
+            .unwrap_or(0);
         Coefficients {
+            between,
+            widest,
             points,
             inverse,
             at_start,
@@ -117,8 +154,8 @@ fn right_radau_points(stages: usize) -> Vec<f64> {
         here - before
     };
     let mut points = Vec::new();
-    for cell in 0..999 {
-        let (mut low, mut high) = (f64::from(cell) / 1000.0, f64::from(cell + 1) / 1000.0);
+    for cell in 0..63 {
+        let (mut low, mut high) = (f64::from(cell) / 64.0, f64::from(cell + 1) / 64.0);
         if value(low) * value(high) > 0.0 {
             continue;
         }

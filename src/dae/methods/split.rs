@@ -9,6 +9,9 @@ use super::radau_iia::Coefficients;
 use crate::math::{Elimination, Matrix, Singular};
 use num_complex::Complex64;
 
+/// Slopes differ much when one is less than a third of the other.
+const MUCH: f64 = 0.67;
+
 /// Matrices and slopes; factors are kept for as long as they serve.
 #[derive(Debug)]
 pub(crate) struct Split<const S: usize> {
@@ -19,6 +22,8 @@ pub(crate) struct Split<const S: usize> {
     /// Slopes in use.
     pub dq: Vec<f64>,
     pub df: Vec<f64>,
+    /// Slots of the diagonal.
+    diagonal: Vec<usize>,
 }
 
 impl<const S: usize> Split<S> {
@@ -32,6 +37,7 @@ impl<const S: usize> Split<S> {
             right_pairs: vec![vec![Complex64::default(); n]; pairs],
             dq: vec![0.0; pattern.len()],
             df: vec![0.0; pattern.len()],
+            diagonal: (0..n).filter_map(|k| pattern.slot(k, k)).collect(),
         }
     }
 
@@ -39,6 +45,18 @@ impl<const S: usize> Split<S> {
     pub fn take_slopes(&mut self, out: &Evaluation) {
         self.dq.copy_from_slice(&out.dq);
         self.df.copy_from_slice(&out.df);
+    }
+
+    /// True where a diagonal entry of `rate` dq + df differs much between the slopes in use and those of `out`.
+    ///
+    /// The diagonal, because there an element's slope stands beside all else that holds its unknown: what changes
+    /// without weight (a junction that blocks more or less) does not show.
+    pub fn differs(&self, out: &Evaluation, rate: f64) -> bool {
+        self.diagonal.iter().any(|&slot| {
+            let used = rate * self.dq[slot] + self.df[slot];
+            let found = rate * out.dq[slot] + out.df[slot];
+            (used - found).abs() > MUCH * used.abs().max(found.abs())
+        })
     }
 
     /// Factors the real matrix, which also carries the error estimate.

@@ -67,6 +67,8 @@ fn equal_steps(method: &Method, problem: &Smooth, steps: usize) -> Errors {
 /// degree s (Hairer & Wanner II, theorems IV.5.8, VI.1.1, VII.4.9, from memory). TR-BDF2: 2, and 2 for index 2.
 fn expected(method: &Method, index: u32) -> (f64, f64) {
     match (method.name, index) {
+        ("radau_iia_9", 2) => (5.0, 5.0),
+        ("radau_iia_9", _) => (9.0, 6.0),
         ("radau_iia", 2) => (3.0, 3.0),
         ("radau_iia", _) => (5.0, 4.0),
         ("tr_bdf2", 2) => (2.0, 2.0),
@@ -79,23 +81,22 @@ fn expected(method: &Method, index: u32) -> (f64, f64) {
 fn every_method_meets_its_order_on_every_smooth_problem() {
     for method in METHODS {
         for problem in SMOOTH {
-            let coarse = equal_steps(method, problem, 16);
-            let fine = equal_steps(method, problem, 32);
+            // Before rounding is met, a high order is seen only near its limit of short steps.
+            let allowed = if method.order > 5 { 0.5 } else { 0.25 };
+            // Few steps for the values of a high order (soon they are exact to rounding), more for its polynomial.
+            let [few, more] = if method.order > 5 { [4, 8] } else { [16, 16] };
+            let ends = [few, 2 * few].map(|steps| equal_steps(method, problem, steps).ends);
+            let dense = [more, 2 * more].map(|steps| equal_steps(method, problem, steps).dense);
             for (unknown, &(name, index)) in problem.unknowns.iter().enumerate() {
-                let (at_ends, dense) = expected(method, index);
-                for (where_, order, before, after) in [
-                    ("ends", at_ends, coarse.ends[unknown], fine.ends[unknown]),
-                    (
-                        "dense output",
-                        dense,
-                        coarse.dense[unknown],
-                        fine.dense[unknown],
-                    ),
-                ] {
+                let (at_ends, between) = expected(method, index);
+                for (place, order, errors) in
+                    [("ends", at_ends, &ends), ("dense output", between, &dense)]
+                {
+                    let (before, after) = (errors[0][unknown], errors[1][unknown]);
                     let measured = (before / after).log2();
                     assert!(
-                        measured > order - 0.25 || after < 1e-12,
-                        "{} on {}, {name} ({where_}): {measured:.2} for {order}, error {after:e}",
+                        measured > order - allowed || after < 1e-12,
+                        "{} on {}, {name} ({place}): {measured:.2} for {order}, error {after:e}",
                         method.name,
                         problem.name
                     );

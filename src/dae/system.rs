@@ -74,7 +74,8 @@ pub trait System {
     fn guard_size(&self) -> usize {
         0
     }
-    /// Guards: an event falls where one rises from negative to zero or above. Continuous between events.
+    /// Guards: an event falls where one rises from negative to zero or above, and at the start of a march where one is
+    /// above zero already. Continuous between events.
     fn guards(&self, _at: Point<'_>, _out: &mut [f64]) {}
     /// Takes the event: changes the mode and, for a jump, x. Returns true where something changed.
     /// The q of rows that the transition leaves alone is kept by the solver, which then solves the rest anew.

@@ -7,6 +7,7 @@ mod collocation;
 mod coupled;
 mod diagonal;
 mod estimate;
+mod iteration;
 mod radau_iia;
 mod split;
 mod tr_bdf2;

@@ -1,6 +1,7 @@
 //! The engine against closed forms, conserved quantities and measured orders.
 
 mod events;
+mod hard;
 mod order;
 mod problems;
 mod starts;

@@ -11,6 +11,8 @@ pub struct Written<F> {
     pub size: usize,
     pub pattern: Pattern,
     pub law: F,
+    /// Shortens Newton steps, where a law asks for it.
+    pub limit: fn(&[f64], &mut [f64]) -> bool,
 }
 
 impl<F: Law> Written<F> {
@@ -20,6 +22,7 @@ impl<F: Law> Written<F> {
             size,
             pattern: Pattern::from_positions(size, &positions),
             law,
+            limit: |_, _| false,
         }
     }
 }
@@ -30,6 +33,9 @@ impl<F: Law> System for Written<F> {
     }
     fn pattern(&self) -> &Pattern {
         &self.pattern
+    }
+    fn limit(&self, x: &[f64], dx: &mut [f64]) -> bool {
+        (self.limit)(x, dx)
     }
     fn evaluate(&self, at: Point<'_>, slopes: bool, out: &mut Evaluation) {
         let n = self.size;

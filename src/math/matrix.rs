@@ -43,7 +43,7 @@ pub struct Matrix<T> {
 #[derive(Clone, Debug)]
 enum Factors<T> {
     Dense(DenseLu<T>),
-    Sparse(SparseLu<T>),
+    Sparse(Box<SparseLu<T>>),
 }
 
 impl<T: Scalar> Matrix<T> {
@@ -63,7 +63,7 @@ impl<T: Scalar> Matrix<T> {
             factors: if dense {
                 Factors::Dense(DenseLu::new(size))
             } else {
-                Factors::Sparse(SparseLu::new(size))
+                Factors::Sparse(Box::new(SparseLu::new(size)))
             },
         }
     }

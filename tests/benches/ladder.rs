@@ -22,7 +22,7 @@ const GROWTH: f64 = 1.15;
 const MARCHED: f64 = 0.4e-6;
 
 /// The matrix (rate dq + df) of a line, factored.
-fn matrix<T: Scalar>(ladder: &Ladder, rate: T) -> Matrix<T> {
+fn matrix<T: Scalar>(ladder: &Ladder, rate: T, elimination: Elimination) -> Matrix<T> {
     let (n, slots) = (ladder.size(), ladder.pattern().len());
     let mut out = Evaluation {
         f: vec![0.0; n],
@@ -41,7 +41,7 @@ fn matrix<T: Scalar>(ladder: &Ladder, rate: T) -> Matrix<T> {
         &mut out,
     );
     let pattern = ladder.pattern();
-    let mut matrix = Matrix::new(n, &pattern.starts, &pattern.rows, Elimination::Sparse);
+    let mut matrix = Matrix::new(n, &pattern.starts, &pattern.rows, elimination);
     for (value, (dq, df)) in matrix
         .values_mut()
         .iter_mut()
@@ -79,13 +79,13 @@ fn algebra(criterion: &mut Criterion) {
     for sections in SECTIONS {
         let ladder = Ladder::new(sections);
         group.throughput(Throughput::Elements(sections as u64));
-        let mut real = matrix(&ladder, 1e8);
-        let mut pair = matrix(&ladder, Complex64::new(1e8, 1e8));
+        let mut real = matrix(&ladder, 1e8, Elimination::Sparse);
+        let mut pair = matrix(&ladder, Complex64::new(1e8, 1e8), Elimination::Sparse);
         let mut x = vec![1.0; ladder.size()];
         let mut z = vec![Complex64::new(1.0, 1.0); ladder.size()];
         let id = |name: &str| BenchmarkId::new(name, sections);
         group.bench_function(id("order_and_factor"), |b| {
-            b.iter(|| matrix(black_box(&ladder), 1e8))
+            b.iter(|| matrix(black_box(&ladder), 1e8, Elimination::Sparse))
         });
         group.bench_function(id("factor_real"), |b| b.iter(|| real.factor()));
         group.bench_function(id("factor_complex"), |b| b.iter(|| pair.factor()));
@@ -95,6 +95,23 @@ fn algebra(criterion: &mut Criterion) {
         group.bench_function(id("solve_complex"), |b| {
             b.iter(|| pair.solve(black_box(&mut z)))
         });
+    }
+    group.finish();
+}
+
+/// Dense against sparse where circuits are small: the ground of the choice in `math::matrix`.
+fn small(criterion: &mut Criterion) {
+    let mut group = criterion.benchmark_group("small");
+    for sections in [1, 4, 10, 20] {
+        let ladder = Ladder::new(sections);
+        let mut x = vec![1.0; ladder.size()];
+        for elimination in [Elimination::Dense, Elimination::Sparse] {
+            let mut real = matrix(&ladder, 1e8, elimination);
+            let id =
+                |name: &str| BenchmarkId::new(format!("{name}_{elimination:?}"), ladder.size());
+            group.bench_function(id("factor"), |b| b.iter(|| real.factor()));
+            group.bench_function(id("solve"), |b| b.iter(|| real.solve(black_box(&mut x))));
+        }
     }
     group.finish();
 }
@@ -133,7 +150,7 @@ fn quickest(mut call: impl FnMut()) -> f64 {
 /// Times of one length: factorisation, solution, one step.
 fn times(method: &'static Method, sections: usize) -> [f64; 3] {
     let ladder = Ladder::new(sections);
-    let mut real = matrix(&ladder, 1e8);
+    let mut real = matrix(&ladder, 1e8, Elimination::Sparse);
     let mut x = vec![1.0; ladder.size()];
     let repeats = 200_000 / sections;
     let factor = quickest(|| (0..repeats).for_each(|_| real.factor().expect("regular")));
@@ -172,7 +189,7 @@ criterion_group! {
     name = benches;
     // Plots would need fonts that a bare machine does not have.
     config = Criterion::default().without_plots();
-    targets = algebra, steps
+    targets = small, algebra, steps
 }
 
 fn main() {

@@ -86,7 +86,9 @@ impl<const S: usize> Collocation<S> {
         let mut culprit = 0;
         for iteration in 0..longest {
             let anew = own && rate > BRISK;
-            self.evaluate(system, trial, anew || !own, counted)?;
+            // Common slopes are held against those found before a step is taken for the last one.
+            let slopes = anew || (!own && iteration > 0);
+            self.evaluate(system, trial, slopes, counted)?;
             if anew {
                 let rates = self.table.inverse.map(|row| row.map(|w| w / trial.length));
                 self.coupled.factor(&self.pattern, &rates, &self.outs)?;
@@ -129,7 +131,7 @@ impl<const S: usize> Collocation<S> {
                 size <= VERY_CLOSE
             };
             if close {
-                if !own && self.stages_differ(trial.length) {
+                if !own && iteration > 0 && self.stages_differ(trial.length) {
                     break;
                 }
                 return Ok(());

@@ -9,7 +9,6 @@ use super::super::matrix::Singular;
 use super::super::scalar::Scalar;
 use super::order::{Order, order};
 use sprs::CsMatI;
-use std::sync::Arc;
 
 /// While refilling, a pivot below this share of its column's largest scaled entry asks for a new order. It is far
 /// below the share asked of a new pivot, so that changing numbers seldom lead to a new order.
@@ -36,7 +35,7 @@ struct Structured {
 #[derive(Clone, Debug)]
 pub struct SparseLu<T> {
     size: usize,
-    structured: Option<Arc<Structured>>,
+    structured: Option<Structured>,
     lower: Vec<T>,
     upper: Vec<T>,
     reciprocals: Vec<T>,
@@ -122,18 +121,19 @@ impl<T: Scalar> SparseLu<T> {
         rows: &[usize],
         values: &[T],
     ) -> Result<(), Singular> {
-        if let Some(structured) = self.structured.clone()
-            && self
-                .refill(&structured, starts, rows, values, GUARD)
-                .is_ok()
-        {
-            return Ok(());
+        if let Some(structured) = self.structured.take() {
+            let served = self.refill(&structured, starts, rows, values, GUARD);
+            self.structured = Some(structured);
+            if served.is_ok() {
+                return Ok(());
+            }
         }
-        let structured = Arc::new(Structured::new(order(starts, rows, values)?));
+        let structured = Structured::new(order(starts, rows, values)?);
         self.lower.resize(structured.lower.nnz(), T::ZERO);
         self.upper.resize(structured.upper.nnz(), T::ZERO);
-        self.structured = Some(structured.clone());
-        self.refill(&structured, starts, rows, values, 0.0)
+        let done = self.refill(&structured, starts, rows, values, 0.0);
+        self.structured = Some(structured);
+        done
     }
 
     fn refill(

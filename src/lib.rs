@@ -58,4 +58,5 @@ pub mod report;
 pub mod run;
 pub mod signals;
 pub mod sizing;
+pub mod studies;
 pub mod units;

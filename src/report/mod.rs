@@ -8,4 +8,5 @@ pub mod files;
 pub mod json;
 pub mod plots;
 pub mod run;
+pub mod size;
 pub mod tables;

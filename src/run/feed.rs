@@ -4,10 +4,11 @@ use super::cautions;
 use super::coils::coil_reports;
 use super::netlist::Netlist;
 use super::outcome::{LimitResult, Outcome, RatingResult, ReadingResult, Work};
-use crate::analysis::{LedgerKeeper, simulate::Shown};
+use super::repeated::{Figures, RatingFigure};
+use crate::analysis::{Ledger, LedgerKeeper, simulate::Shown};
 use crate::circuit::{Circuit, Tap};
 use crate::dae::{Point, Step};
-use crate::limits::{On, RatingMeter, Sense};
+use crate::limits::{On, RatingMeter, RatingUse, Sense};
 use crate::readings::{Outcome as Found, Taking};
 use crate::signals::{EventLog, Phrase, Piece, Rated, Recorder, Watched};
 use crate::units::Kind;
@@ -23,14 +24,44 @@ struct Signal {
     energy: f64,
 }
 
+/// Signals by name, each once.
+#[derive(Default)]
+struct Signals(Vec<Signal>);
+
+impl Signals {
+    /// The number of a signal, new or known.
+    fn number(&mut self, name: String, kind: Kind, tap: Tap) -> usize {
+        let known = self.0.iter().position(|signal| signal.name == name);
+        known.unwrap_or_else(|| {
+            self.0.push(Signal {
+                name,
+                kind,
+                tap,
+                energy: 0.0,
+            });
+            self.0.len() - 1
+        })
+    }
+}
+
+/// What a run keeps besides readings and ratings.
+#[derive(Clone, Copy, Debug)]
+pub struct Keeps<'a> {
+    /// Instant [s] from which waveforms are kept; None for no waveform at all.
+    pub waveforms_from: Option<f64>,
+    /// Elements whose account is kept, by index; None for all.
+    pub accounts: Option<&'a [usize]>,
+}
+
 /// The watcher of one run.
 pub struct Feed {
     signals: Vec<Signal>,
     /// Readings, each with the number of its signal.
     readings: Vec<(usize, Taking)>,
     ratings: Vec<Metered>,
-    recorder: Recorder,
+    recorder: Option<Recorder>,
     recorded: usize,
+    accounts: Option<Vec<usize>>,
     keeper: Option<LedgerKeeper>,
     last: Last,
     log: EventLog,
@@ -46,6 +77,14 @@ struct Metered {
     meter: RatingMeter,
 }
 
+impl Metered {
+    fn used(&self, circuit: &Circuit) -> RatingUse {
+        let values = circuit.values();
+        let width = self.rated.width.map(|width| values[width]);
+        self.meter.finish(values[self.rated.value], width)
+    }
+}
+
 #[derive(Default)]
 struct Last {
     time: f64,
@@ -54,24 +93,10 @@ struct Last {
 }
 
 impl Feed {
-    /// Nothing seen yet; waveforms are kept from an instant [s] on.
-    pub fn new(netlist: &Netlist, record_from: f64) -> Self {
+    /// Nothing seen yet.
+    pub fn new(netlist: &Netlist, keeps: Keeps<'_>) -> Self {
         let circuit = &netlist.circuit;
-        let mut signals: Vec<Signal> = Vec::new();
-        let mut number = |name: String, kind: Kind, tap: Tap| {
-            signals
-                .iter()
-                .position(|signal| signal.name == name)
-                .unwrap_or_else(|| {
-                    signals.push(Signal {
-                        name,
-                        kind,
-                        tap,
-                        energy: 0.0,
-                    });
-                    signals.len() - 1
-                })
-        };
+        let mut signals = Signals::default();
         let readings = netlist
             .readings
             .iter()
@@ -81,36 +106,23 @@ impl Feed {
                     .tap(phrase)
                     .expect("the signals of all readings were checked when they were read");
                 (
-                    number(phrase.to_string(), phrase.kind(), tap),
+                    signals.number(phrase.to_string(), phrase.kind(), tap),
                     reading.start(circuit.values()),
                 )
             })
             .collect();
-        for (name, kind, tap) in unasked(circuit) {
-            number(name, kind, tap);
+        if keeps.waveforms_from.is_some() {
+            for (name, kind, tap) in unasked(circuit) {
+                signals.number(name, kind, tap);
+            }
         }
-        let recorded = signals.len();
-        let mut number = |name: String, kind: Kind, tap: Tap| {
-            signals
-                .iter()
-                .position(|signal| signal.name == name)
-                .unwrap_or_else(|| {
-                    signals.push(Signal {
-                        name,
-                        kind,
-                        tap,
-                        energy: 0.0,
-                    });
-                    signals.len() - 1
-                })
-        };
-        let ratings = metered(circuit, &mut number);
-        let recorder = Recorder::new(
-            signals[..recorded]
-                .iter()
-                .map(|signal| (signal.name.clone(), signal.kind)),
-            record_from,
-        );
+        let recorded = signals.0.len();
+        let ratings = metered(circuit, &mut signals);
+        let signals = signals.0;
+        let recorder = keeps.waveforms_from.map(|from| {
+            let named = |signal: &Signal| (signal.name.clone(), signal.kind);
+            Recorder::new(signals[..recorded].iter().map(named), from)
+        });
         let size = circuit.unknowns.len();
         Feed {
             values: vec![[0.0; 4]; signals.len()],
@@ -119,6 +131,7 @@ impl Feed {
             ratings,
             recorder,
             recorded,
+            accounts: keeps.accounts.map(<[usize]>::to_vec),
             keeper: None,
             last: Last::default(),
             log: EventLog::default(),
@@ -130,7 +143,10 @@ impl Feed {
     pub fn take(&mut self, circuit: &Circuit, shown: Shown<'_>, log: &EventLog) -> f64 {
         match shown {
             Shown::Start(at) => {
-                self.keeper = Some(LedgerKeeper::open(circuit, at));
+                self.keeper = Some(match self.accounts.take() {
+                    None => LedgerKeeper::open(circuit, at),
+                    Some(entries) => LedgerKeeper::of(entries, circuit, at),
+                });
                 self.keep(at, log);
             }
             Shown::Step(step) => self.step(circuit, step, log),
@@ -180,8 +196,9 @@ impl Feed {
         for metered in &mut self.ratings {
             metered.meter.feed(&piece(&self.values[metered.signal]));
         }
-        self.recorder
-            .step(step.from, step.to, &self.values[..self.recorded]);
+        if let Some(recorder) = &mut self.recorder {
+            recorder.step(step.from, step.to, &self.values[..self.recorded]);
+        }
         if let Some(keeper) = &mut self.keeper {
             keeper.step(circuit, step);
         }
@@ -216,33 +233,17 @@ impl Feed {
     }
 
     /// The outcome at the end of the run.
-    pub fn finish(self, netlist: &Netlist, duration: f64, work: Work) -> Outcome {
+    pub fn finish(mut self, netlist: &Netlist, duration: f64, work: Work) -> Outcome {
         let circuit = &netlist.circuit;
-        let at = Point {
-            time: self.last.time,
-            x: &self.last.x,
-            mode: &self.last.mode,
-        };
-        let ledger = self
-            .keeper
-            .map(|keeper| keeper.close(circuit, at))
-            .unwrap_or_default();
-        let found: Vec<Found> = self
-            .readings
-            .iter()
-            .map(|(_, taking)| taking.finish())
-            .collect();
+        let ledger = self.close(circuit);
+        let found = self.found();
         let readings = netlist
             .readings
             .iter()
             .zip(&found)
             .map(|(reading, found)| reading_result(&reading.name.text, found))
             .collect();
-        let ratings: Vec<RatingResult> = self
-            .ratings
-            .iter()
-            .map(|metered| rating_result(circuit, metered))
-            .collect();
+        let ratings = self.rated(circuit);
         let limits = limit_results(netlist, &found, &ratings);
         let mut outcome = Outcome {
             title: netlist.title.clone(),
@@ -258,11 +259,53 @@ impl Feed {
             coils: coil_reports(circuit),
             cautions: netlist.cautions.clone(),
             defaults: netlist.defaults.clone(),
-            traces: self.recorder.into_traces(),
+            traces: self.recorder.map_or(Vec::new(), Recorder::into_traces),
             events: self.log,
         };
         cautions::add(netlist, &mut outcome);
         outcome
+    }
+
+    /// The figures alone at the end of the run.
+    pub fn figures(mut self, circuit: &Circuit, work: Work) -> Figures {
+        Figures {
+            accounts: self.close(circuit).accounts,
+            readings: self.found(),
+            ratings: self
+                .ratings
+                .iter()
+                .map(|metered| RatingFigure {
+                    entry: metered.entry,
+                    rated: metered.rated,
+                    used: metered.used(circuit),
+                })
+                .collect(),
+            work,
+        }
+    }
+
+    fn close(&mut self, circuit: &Circuit) -> Ledger {
+        let at = Point {
+            time: self.last.time,
+            x: &self.last.x,
+            mode: &self.last.mode,
+        };
+        let keeper = self.keeper.take();
+        keeper.map_or(Ledger::default(), |keeper| keeper.close(circuit, at))
+    }
+
+    fn found(&self) -> Vec<Found> {
+        self.readings
+            .iter()
+            .map(|(_, taking)| taking.finish())
+            .collect()
+    }
+
+    fn rated(&self, circuit: &Circuit) -> Vec<RatingResult> {
+        self.ratings
+            .iter()
+            .map(|metered| rating_result(circuit, metered))
+            .collect()
     }
 }
 
@@ -370,7 +413,7 @@ fn named(
 }
 
 /// Every rating of every element with the signal that stresses it.
-fn metered(circuit: &Circuit, number: &mut dyn FnMut(String, Kind, Tap) -> usize) -> Vec<Metered> {
+fn metered(circuit: &Circuit, signals: &mut Signals) -> Vec<Metered> {
     let mut all = Vec::new();
     for (k, entry) in circuit.entries.iter().enumerate() {
         for rated in &entry.ratings {
@@ -392,7 +435,7 @@ fn metered(circuit: &Circuit, number: &mut dyn FnMut(String, Kind, Tap) -> usize
             // What the element has no waveform for is listed without a stress.
             let tap = tap.unwrap_or(Tap::Power(k));
             let name = format!("{} of {}", rated.rating.key, entry.name);
-            let signal = number(name, rated.rating.kind, tap);
+            let signal = signals.number(name, rated.rating.kind, tap);
             all.push(Metered {
                 entry: k,
                 rated: *rated,
@@ -427,12 +470,11 @@ fn reading_result(name: &str, found: &Found) -> ReadingResult {
 }
 
 fn rating_result(circuit: &Circuit, metered: &Metered) -> RatingResult {
-    let used = metered.meter.finish(circuit.values()[metered.rated.value]);
     RatingResult {
         element: circuit.entries[metered.entry].name.clone(),
         rating: metered.rated.rating.key.to_owned(),
         kind: metered.rated.rating.kind,
-        used,
+        used: metered.used(circuit),
     }
 }
 

@@ -10,18 +10,20 @@ mod feed;
 mod netlist;
 mod obvious;
 mod outcome;
+mod repeated;
 
 pub use cautions::coils as coil_cautions;
 pub use coils::{CoilReport, CurvePoint, coil_reports};
 pub use netlist::{Netlist, ReadError, Sizing, read, read_coils, read_document};
 pub use outcome::{LimitResult, Outcome, RatingResult, ReadingResult, Work};
+pub use repeated::{Figures, RatingFigure, again, pilot};
 
 use crate::analysis::{Analysis, Failure, Ledger, Settings, Simulation, Transient, Wish};
 use crate::circuit::{Circuit, Tap};
 use crate::dae::{Method, Point};
 use crate::elements::Unknown;
 use crate::signals::EventLog;
-use feed::Feed;
+use feed::{Feed, Keeps};
 use std::ops::ControlFlow;
 
 /// Told while a run goes on: simulated time and duration [s]; may stop it.
@@ -70,7 +72,11 @@ fn over_time(
         method: method(),
     };
     let scales = simulation.pilot(wishes(netlist))?;
-    let mut feed = Feed::new(netlist, circuit.values()[transient.record_from]);
+    let keeps = Keeps {
+        waveforms_from: Some(circuit.values()[transient.record_from]),
+        accounts: None,
+    };
+    let mut feed = Feed::new(netlist, keeps);
     let (counted, ending) = simulation.run_scaled(&scales, &mut |circuit, shown, log| {
         let time = feed.take(circuit, shown, log);
         progress(time, settings.duration)

@@ -60,6 +60,8 @@ pub struct Sizing {
     pub margin: Value,
     /// Suppressors to try; all without.
     pub try_only: Option<Vec<Named>>,
+    /// Elements that stay in place though they look like suppressors.
+    pub keep: Option<Vec<Named>>,
 }
 
 /// The keys of `sizing`.
@@ -87,6 +89,11 @@ pub const SIZING_KEYS: &[Key] = &[
         "margin asked of every rating",
     ),
     Key::optional("try", Takes::Names(0), "suppressors to try; all without"),
+    Key::optional(
+        "keep",
+        Takes::Names(0),
+        "elements that stay in place though they look like suppressors",
+    ),
 ];
 
 /// The keys of `release`.
@@ -344,6 +351,11 @@ fn read_sizing(top: &Fields<'_>) -> Option<Sizing> {
     } else {
         None
     };
+    let keep = if fields.has("keep") {
+        fields.names("keep")
+    } else {
+        None
+    };
     fields.finish();
     Some(Sizing {
         coil: coil?,
@@ -355,6 +367,7 @@ fn read_sizing(top: &Fields<'_>) -> Option<Sizing> {
         release_margin,
         margin: margin?,
         try_only,
+        keep,
     })
 }
 

@@ -42,6 +42,8 @@ pub enum Stress {
     Making,
     /// Largest magnitude at the instants of opening; 0 where nothing opens.
     Breaking,
+    /// Power of a pulse of the rated shape and width that heats as much as the largest pulse.
+    PulsePower,
     /// Largest energy of one pulse.
     PulseEnergy,
     /// Read and listed, with no stress beside it.
@@ -172,8 +174,8 @@ pub const RATINGS: &[RatingKind] = &[
         PULSE,
         units::POWER,
         Power,
-        NotEvaluatedYet,
-        "power of a pulse of a certain width",
+        PulsePower,
+        "power of an exponential pulse that falls to half in a certain width and heats as much as the largest pulse",
     ),
     rating(
         "pulse_energy",
@@ -208,8 +210,12 @@ pub const RATINGS: &[RatingKind] = &[
 const PULSE: &str = "pulse";
 
 const PULSE_KEYS: &[Key] = &[
-    Key::required("power", Takes::Quantity(units::POWER), "power of the pulse"),
-    Key::required("width", Takes::Quantity(units::TIME), "width of the pulse"),
+    Key::required("power", Takes::Quantity(units::POWER), "power at its start"),
+    Key::required(
+        "width",
+        Takes::Quantity(units::TIME),
+        "time in which it falls to half",
+    ),
 ];
 
 /// The keys of `ratings:`, made from [`RATINGS`].
@@ -220,7 +226,7 @@ const KEYS: [Key; RATINGS.len()] = {
     let mut k = 0;
     while k < RATINGS.len() {
         let takes = match RATINGS[k].stress {
-            NotEvaluatedYet if is_pulse(RATINGS[k].key) => Takes::Map(PULSE_KEYS),
+            PulsePower if is_pulse(RATINGS[k].key) => Takes::Map(PULSE_KEYS),
             _ => Takes::Quantity(RATINGS[k].kind),
         };
         keys[k] = Key {

@@ -26,7 +26,7 @@ const ROOMS: &[(&str, &[&str])] = &[
 ];
 
 /// Rooms that the table announces before they are built.
-const TO_COME: &[&str] = &["studies"];
+const TO_COME: &[&str] = &[];
 
 /// A word of the sources that only one room may use.
 const KEPT: &[(&str, &str)] = &[

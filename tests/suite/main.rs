@@ -16,6 +16,7 @@ mod netlists;
 mod peers;
 mod plots;
 mod record;
+mod release;
 mod rings;
 mod saturating_cores;
 mod shipped_netlists;

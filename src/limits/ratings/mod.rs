@@ -5,6 +5,7 @@
 
 mod at_rest;
 mod pulse;
+mod pulse_power;
 mod reverse;
 mod switched;
 
@@ -72,9 +73,13 @@ impl RatingMeter {
         }
     }
 
-    /// What was used of `rated` [SI].
-    pub fn finish(&self, rated: f64) -> RatingUse {
+    /// What was used of `rated` [SI]; of a pulse with its `width` [s] too.
+    pub fn finish(&self, rated: f64, width: Option<f64>) -> RatingUse {
         let taken = self.meter.as_ref().and_then(|meter| meter.finish());
+        let taken = taken.map(|taken| Taken {
+            value: taken.value * width.map_or(1.0, pulse_power::per_rise),
+            ..taken
+        });
         let taken = taken.filter(|taken| taken.value.is_finite());
         let used = taken
             .map(|taken| taken.value / rated)
@@ -108,6 +113,7 @@ fn meter(stress: Stress) -> Option<Box<dyn Meter>> {
         Stress::AtRest => Box::new(at_rest::AtRest::default()),
         Stress::Making => Box::new(switched::Making::default()),
         Stress::Breaking => Box::new(switched::Breaking::default()),
+        Stress::PulsePower => Box::new(pulse_power::PulsePower::default()),
         Stress::PulseEnergy => Box::new(pulse::PulseEnergy::default()),
         Stress::NotEvaluatedYet => return None,
     })

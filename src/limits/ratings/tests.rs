@@ -23,7 +23,7 @@ fn measured(key: &str, pieces: &[Piece], events: &[(Happening, f64)]) -> RatingU
         meter.feed(piece);
     }
     assert_eq!(told, events.len());
-    meter.finish(10.0)
+    meter.finish(10.0, None)
 }
 
 fn peak(key: &str, pieces: &[Piece]) -> f64 {

@@ -1,6 +1,6 @@
 //! The pictures of a run: the kick zoomed on the interruption, the whole run, flux density, where the energy went.
 
-mod kick;
+pub(in crate::report) mod kick;
 
 use crate::report::chart::{
     Axis, Bar, BarPanel, Chart, Curve, CurvePanel, Instant, LimitLine, Mark, Panel, Style,
@@ -72,7 +72,7 @@ fn title(outcome: &Outcome, what: &str) -> String {
     }
 }
 
-fn curve(trace: &Trace, name: &str, from: f64, to: f64) -> Curve {
+pub(in crate::report) fn curve(trace: &Trace, name: &str, from: f64, to: f64) -> Curve {
     let points = thinned(trace, from, to, POINTS)
         .into_iter()
         .map(|sample| (sample.time, sample.value))

@@ -98,7 +98,7 @@ fn after_opening(from: f64, until: f64) -> Axis {
 }
 
 /// A trace whose time counts from an instant.
-fn shifted(trace: &Trace, instant: f64) -> Trace {
+pub(in crate::report) fn shifted(trace: &Trace, instant: f64) -> Trace {
     let mut shifted = trace.clone();
     for piece in &mut shifted.pieces {
         piece.from -= instant;

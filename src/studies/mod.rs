@@ -1,0 +1,7 @@
+//! Studies: one netlist at many values.
+
+pub mod corners;
+mod spreads;
+
+pub use corners::{Corner, Side, Tried, Worst, worst};
+pub use spreads::{Spread, in_words, spreads};

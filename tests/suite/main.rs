@@ -15,6 +15,7 @@ mod ladder;
 mod netlists;
 mod peers;
 mod plots;
+mod readme;
 mod record;
 mod release;
 mod rings;

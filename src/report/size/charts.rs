@@ -84,12 +84,13 @@ fn over_each_other(comparison: &Comparison, outcomes: &[(usize, Outcome)]) -> Op
         let word = candidate.suppressor.word;
         if let Some(trace) = outcome.trace(&voltage) {
             let peak = peak(candidate);
+            // What leaves the panel would fill it from side to side: it is named instead of drawn.
             if peak > ceiling {
-                beyond.push(format!("{word} goes to {}", engineering(peak, "V", 3)));
+                beyond.push(format!("{word} ({})", engineering(peak, "V", 3)));
+            } else {
+                let curve = part(&shifted(trace, opens), word, from, until);
+                above.curves.push(curve);
             }
-            above
-                .curves
-                .push(part(&shifted(trace, opens), word, from, until));
         }
         let found = outcome.trace(&current);
         let found = found.or_else(|| outcome.trace(&format!("current through {}", facts.coil)));
@@ -101,7 +102,11 @@ fn over_each_other(comparison: &Comparison, outcomes: &[(usize, Outcome)]) -> Op
     }
     if !beyond.is_empty() {
         above.y.range = Some((-0.08 * ceiling, ceiling));
-        above.y.label = format!("{voltage} ({})", beyond.join(", "));
+        let left_out = format!("{} opens; not drawn: {}", facts.switch, beyond.join(", "));
+        above.instants = vec![Instant {
+            label: left_out,
+            at: 0.0,
+        }];
     }
     if let Some(reached) = comparison.candidates.iter().find_map(|c| c.study.as_ref()) {
         let level = reached.nominal().level;
@@ -157,7 +162,7 @@ fn trade_off(comparison: &Comparison) -> Option<Chart> {
     front.sort_by(|a, b| a.0.total_cmp(&b.0));
     if front.len() > 1 {
         panel.curves.push(Curve {
-            name: "none is better in both".into(),
+            name: "front: quicker costs voltage".into(),
             points: front,
             style: Style::Dashed,
         });

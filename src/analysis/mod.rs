@@ -1,13 +1,15 @@
 //! What a netlist asks to be computed, and the computing of it.
 
+pub mod failure;
 pub mod ledger;
 pub mod simulate;
 pub mod start;
 pub mod swings;
 pub mod task;
 
+pub use failure::Failure;
 pub use ledger::{Account, Ledger, LedgerKeeper};
-pub use simulate::{Failure, Settings, Simulation};
+pub use simulate::{Settings, Simulation};
 pub use start::start;
 pub use swings::{Swings, Wish};
 pub use task::{Analysis, Start, Transient};

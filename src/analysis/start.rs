@@ -1,6 +1,6 @@
 //! Where a simulation begins: at rest or uncharged, with the events of time zero taken.
 
-use super::simulate::Failure;
+use super::failure::Failure;
 use super::task::Start;
 use crate::circuit::Circuit;
 use crate::circuit::checks::without_rest;

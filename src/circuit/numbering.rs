@@ -1,6 +1,5 @@
 //! Numbers unknowns, modes and guards, joins followers to what they follow, and finds the sparsity pattern once.
 
-use super::taps::terminal_of;
 use super::{Circuit, Entry};
 use crate::dae::Pattern;
 use crate::elements::{Claimed, Claims, Measure, Offer, Point, Stamper, Terms, Unknown, Wanted};
@@ -289,4 +288,28 @@ fn no_winding(entry: &Entry, name: &str) -> String {
             entry.windings.join(", ")
         )
     }
+}
+
+/// The terminal of a name; windings are written `TRANSFORMER.WINDING.first`.
+pub(super) fn terminal_of(entry: &Entry, owner: &Owner, terminal: &str) -> Result<usize, String> {
+    let full = match &owner.winding {
+        Some(winding) => format!("{winding}.{terminal}"),
+        None => terminal.to_owned(),
+    };
+    entry
+        .terminals
+        .iter()
+        .position(|known| known.name == full)
+        .ok_or_else(|| {
+            let names: Vec<&str> = entry
+                .terminals
+                .iter()
+                .map(|known| known.name.as_str())
+                .collect();
+            format!(
+                "`{}` has no terminal `{full}`; it has {}",
+                entry.name,
+                names.join(", ")
+            )
+        })
 }

@@ -1,6 +1,6 @@
 //! Signals of a circuit: from a phrase to a function of the point.
 
-use super::numbering::{terminal_pair, winding_of};
+use super::numbering::{terminal_of, terminal_pair, winding_of};
 use super::{Circuit, Entry};
 use crate::dae::Point;
 use crate::elements::{Quantity, Unknown};
@@ -19,30 +19,6 @@ pub enum Tap {
     Energy(usize),
     /// A quantity of an element's own, of one winding.
     Of(usize, Quantity, usize),
-}
-
-/// The terminal of a name; windings are written `TRANSFORMER.WINDING.first`.
-pub(super) fn terminal_of(entry: &Entry, owner: &Owner, terminal: &str) -> Result<usize, String> {
-    let full = match &owner.winding {
-        Some(winding) => format!("{winding}.{terminal}"),
-        None => terminal.to_owned(),
-    };
-    entry
-        .terminals
-        .iter()
-        .position(|known| known.name == full)
-        .ok_or_else(|| {
-            let names: Vec<&str> = entry
-                .terminals
-                .iter()
-                .map(|known| known.name.as_str())
-                .collect();
-            format!(
-                "`{}` has no terminal `{full}`; it has {}",
-                entry.name,
-                names.join(", ")
-            )
-        })
 }
 
 impl Circuit {

@@ -1,6 +1,7 @@
 //! What an element asks for when the unknowns are numbered.
 
-use super::element::{Quantity, Unknown};
+use super::unknown::Unknown;
+use crate::signals::Quantity;
 
 /// What an unknown measures; its tolerance is scaled among its own kind.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]

@@ -22,6 +22,7 @@ pub mod stamper;
 pub mod suppressor_diode;
 pub mod switch;
 pub mod switch_command;
+pub mod unknown;
 pub mod voltage_source;
 pub mod waveforms;
 pub mod zener;

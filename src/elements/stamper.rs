@@ -3,7 +3,7 @@
 //! Every element touches the same (row, column) positions in the same order at every call, so the positions
 //! are recorded once and turned into a list of slots; afterwards each `df` or `dq` takes the next slot.
 
-use super::element::Unknown;
+use super::unknown::Unknown;
 use crate::dae::Evaluation;
 
 /// Slot of a position that belongs to ground and is dropped.

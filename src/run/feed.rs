@@ -216,7 +216,7 @@ impl Feed {
             step.from + 2.0 * length / 3.0,
             step.to,
         ];
-        self.samples[0].copy_from_slice(step.x0);
+        step.at(times[0], &mut self.samples[0]);
         step.at(times[1], &mut self.samples[1]);
         step.at(times[2], &mut self.samples[2]);
         self.samples[3].copy_from_slice(step.x1);

@@ -193,3 +193,42 @@ readings:
         Bound::Relative(2e-4),
     );
 }
+
+#[test]
+fn a_capacitor_across_an_ideal_source_draws_what_its_edge_asks() {
+    // i = C dv/dt on the edge alone, energy C v^2/2; the current is fixed by the source's slope (index 2).
+    let out = outcome(&from_text(
+        "elements:
+  s: {kind: voltage_source, nodes: [a, ground], voltage: {steps: {at: [[0 s, 0 V], [1 ms, 24 V]], edge: 1 µs}}}
+  c: {kind: capacitor, nodes: [a, ground], capacitance: 1 µF}
+analysis: {transient: {duration: 2 ms}}
+readings:
+  most: {signal: current through c, take: highest}
+  least: {signal: current through c, take: lowest}
+  energy: {signal: energy in c, take: final}
+",
+        &[],
+    ));
+    let subject = "capacitor across an ideal source";
+    check(
+        subject,
+        SOURCE,
+        value(&out, "most"),
+        24.0,
+        Bound::Relative(1e-4),
+    );
+    check(
+        subject,
+        SOURCE,
+        value(&out, "least"),
+        0.0,
+        Bound::Absolute(1e-3),
+    );
+    check(
+        subject,
+        SOURCE,
+        value(&out, "energy"),
+        288e-6,
+        Bound::Relative(1e-4),
+    );
+}

@@ -282,6 +282,10 @@ impl<const S: usize> Collocation<S> {
     pub fn lay(&mut self) {
         let n = self.defect.len();
         self.coefficients.copy_from_slice(&self.stages);
+        if self.careful {
+            let (start, later) = self.coefficients.split_at_mut(n);
+            start_anew(&self.table.points, start, later);
+        }
         divide_differences(&self.table.points, &mut self.coefficients, n);
         self.laid = self.tried;
         self.origin = 0.0;
@@ -306,6 +310,31 @@ impl<const S: usize> Collocation<S> {
         self.failures = 0;
         self.tried = 0.0;
         self.hard = self.hard.saturating_sub(1);
+    }
+}
+
+/// Lets the polynomial of a first step start where its stages say, for unknowns that jumped.
+///
+/// A current that is fixed by the slope of a source (a capacitor across it, index 2) has no value of its own at a corner:
+/// what stands there is the one before it. The stages know better; where the start lies farther from their own
+/// polynomial than they lie from one another, that is a jump and no bend.
+fn start_anew(points: &[f64], start: &mut [f64], later: &[f64]) {
+    let n = start.len();
+    for (which, value) in start.iter_mut().enumerate() {
+        let (mut at_start, mut low, mut high) = (0.0, f64::INFINITY, f64::NEG_INFINITY);
+        for (k, stage) in later.iter().skip(which).step_by(n).enumerate() {
+            // Lagrange's weight of this stage at the step's start.
+            let others = points.iter().skip(1).enumerate().filter(|(j, _)| *j != k);
+            let weight: f64 = others
+                .map(|(_, other)| other / (other - points[k + 1]))
+                .product();
+            at_start += weight * stage;
+            low = low.min(*stage);
+            high = high.max(*stage);
+        }
+        if (*value - at_start).abs() > (high - low) + 1e-9 * at_start.abs() {
+            *value = at_start;
+        }
     }
 }
 

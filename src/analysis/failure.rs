@@ -1,0 +1,83 @@
+//! Why a simulation could not be completed, in words that name the element and what to try.
+
+use crate::circuit::Circuit;
+use crate::dae::{MarchError, StartError, Trouble};
+use crate::diag::Diagnostic;
+use crate::units::{TIME, engineering};
+
+/// Why a simulation could not be completed.
+#[derive(Clone, Debug)]
+pub enum Failure {
+    /// The circuit has no such solution; the netlist is to be changed.
+    Refused(Box<Diagnostic>),
+    /// The solver gave up.
+    Stopped {
+        /// The sentence that says what, where and when.
+        headline: String,
+        /// What to try.
+        help: String,
+        /// Where the element's name stands, if one is to blame.
+        span: Option<crate::diag::Span>,
+        /// Simulated time reached [s].
+        time: f64,
+    },
+}
+
+impl Failure {
+    /// No start was found.
+    pub fn start(circuit: &Circuit, error: StartError) -> Self {
+        let (whose, span) = blame(circuit, error.unknown, error.cause, "for");
+        Failure::Stopped {
+            headline: format!("no starting state was found{whose}: {}", error.cause),
+            help: remedy(
+                error.cause,
+                "try `start: zero` in the transient, or look at the element named",
+            ),
+            span,
+            time: 0.0,
+        }
+    }
+
+    /// The march ended early.
+    pub fn march(circuit: &Circuit, error: MarchError) -> Self {
+        let (whose, span) = blame(circuit, error.unknown, error.cause, "in");
+        let time = engineering(error.time, TIME, 7);
+        Failure::Stopped {
+            headline: format!("the simulation stopped at {time}{whose}: {}", error.cause),
+            help: remedy(
+                error.cause,
+                "a small capacitance across the element, a longer transition or a looser accuracy may help",
+            ),
+            span,
+            time: error.time,
+        }
+    }
+}
+
+/// What is to blame, in words behind a preposition, and where it stands.
+fn blame(
+    circuit: &Circuit,
+    unknown: Option<usize>,
+    cause: Trouble,
+    preposition: &str,
+) -> (String, Option<crate::diag::Span>) {
+    let explained = match cause {
+        Trouble::Chattering { guard } => guard.and_then(|guard| circuit.explain_guard(guard)),
+        _ => unknown.map(|unknown| circuit.explain(unknown)),
+    };
+    let words = explained.as_ref().map_or(String::new(), |explained| {
+        format!(" {preposition} {}", explained.words)
+    });
+    (words, explained.and_then(|explained| explained.span))
+}
+
+/// What to try; a switch that chatters has a remedy of its own.
+fn remedy(cause: Trouble, otherwise: &str) -> String {
+    match cause {
+        Trouble::Chattering { .. } => {
+            "the signal that it watches jumps when it switches: widen the thresholds, or let a capacitance slow the signal"
+        }
+        _ => otherwise,
+    }
+    .into()
+}

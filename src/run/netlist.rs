@@ -373,6 +373,17 @@ fn read_sizing(top: &Fields<'_>) -> Option<Sizing> {
 
 fn check_sizing(circuit: &Circuit, sizing: Option<&Sizing>, sink: &Sink) {
     let Some(sizing) = sizing else { return };
+    for named in sizing.keep.iter().flatten() {
+        if circuit.find(&named.text).is_none() {
+            let names = circuit.entries.iter().map(|entry| entry.name.as_str());
+            let near = crate::netlist::nearest(&named.text, names);
+            let label = near.map_or("not an element of this netlist".into(), |near| {
+                format!("did you mean `{near}`?")
+            });
+            let headline = format!("there is no element `{}` to keep", named.text);
+            sink.report(Diagnostic::error("unknown-element", headline).at(named.span, label));
+        }
+    }
     for (named, wanted) in [(&sizing.coil, "coil"), (&sizing.switch, "switch")] {
         let right = |word: &str| word == wanted || (wanted == "coil" && word == "inductor");
         if circuit

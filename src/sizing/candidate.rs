@@ -88,7 +88,7 @@ pub struct Hunt<'a> {
     choices: Vec<Choices>,
     names: Vec<String>,
     between: String,
-    /// Corners at which something was worst so far.
+    /// Corners at which something was worst so far, that of the least margin first.
     corners: Vec<Corner>,
     best: Option<Evaluated>,
     least_bad: Option<Evaluated>,
@@ -241,7 +241,9 @@ impl<'a> Hunt<'a> {
             .filter(|&k| !evaluated.study.verdict(k).holds)
             .min_by(|&a, &b| {
                 let slack = |k: usize| evaluated.study.worst.margin(k);
-                slack(a).total_cmp(&slack(b))
+                // Where a limit says the same as a rating, the rating is named.
+                let limit = |k: usize| evaluated.trial.checks[k].rating.is_none();
+                slack(a).total_cmp(&slack(b)).then(limit(a).cmp(&limit(b)))
             });
         let Some(check) = failing else { return };
         let verdict = evaluated.study.verdict(check);
@@ -290,10 +292,7 @@ impl<'a> Hunt<'a> {
     /// Tries one choice of parts: all corners the first time, then those known to be bad.
     fn look(&mut self, picks: &[Pick]) -> Result<Evaluated, Trouble> {
         let mut trial = Trial::new(self.ground, &self.addition(picks))?;
-        let known = self
-            .corners
-            .iter()
-            .any(|corner| corner.len() == trial.spreads.len());
+        let known = self.knows_corners(&trial);
         let study = if known {
             let corners = self.corners.clone();
             self.counted(&mut trial, |trial| trial.glance(&corners))?
@@ -308,6 +307,22 @@ impl<'a> Hunt<'a> {
             study,
             whole: !known,
         })
+    }
+
+    fn knows_corners(&self, trial: &Trial) -> bool {
+        let fits = |corner: &Corner| corner.len() == trial.spreads.len();
+        self.corners.iter().any(fits)
+    }
+
+    /// The least margin of a choice of parts at nominal values and at the worst corner known.
+    fn height(&mut self, picks: &[Pick]) -> Result<f64, Trouble> {
+        let mut trial = Trial::new(self.ground, &self.addition(picks))?;
+        if !self.knows_corners(&trial) {
+            return Ok(self.look(picks)?.study.slack());
+        }
+        let corners: Vec<Corner> = self.corners.first().cloned().into_iter().collect();
+        let study = self.counted(&mut trial, |trial| trial.estimate(&corners))?;
+        Ok(study.slack())
     }
 
     fn counted(
@@ -333,7 +348,7 @@ impl<'a> Hunt<'a> {
             let mut at = picks.clone();
             at[place] = (step, 0);
             let at = hunt.largest_sizes(at);
-            let height = hunt.look(&at)?.study.slack();
+            let height = hunt.height(&at)?;
             known.insert(step, height);
             Ok(height)
         };
@@ -478,25 +493,42 @@ impl<'a> Hunt<'a> {
 
     /// What set the size: what the next harsher step does not hold, or the rating that a smaller size does not.
     fn set_by(&self, chosen: &Evaluated) -> Option<SetBy> {
-        let holds = chosen.study.holds();
-        if let Some(main) = self.place(Search::Harshest) {
-            let (step, size) = chosen.picks[main];
-            let part = self.names[main].clone();
-            let own = self.choices[main].steps[step][size].shown();
-            if let (true, Some(blocked)) = (holds, self.blocked.get(&(step + 1))) {
-                let kept = crate::units::engineering(100.0 * blocked.margin?, "%", 3);
-                let asked = crate::units::engineering(100.0 * blocked.asked, "%", 3);
-                return Some(SetBy {
-                    sentence: format!(
-                        "{own} is the last that holds: with {} `{}` would keep a margin of {kept} of the {asked} asked",
-                        blocked.shown, blocked.check
-                    ),
-                    part,
-                    rating: blocked.check.clone(),
-                });
-            }
+        let main = self
+            .place(Search::Harshest)
+            .filter(|_| chosen.study.holds());
+        let Some(main) = main else {
+            return self.size_set_by(chosen);
+        };
+        let (step, size) = chosen.picks[main];
+        let part = self.names[main].clone();
+        let own = self.choices[main].steps[step][size].shown();
+        let percent = |share: f64| crate::units::engineering(100.0 * share, "%", 3);
+        if let Some(blocked) = self.blocked.get(&(step + 1)) {
+            let kept = blocked.margin.map_or("none".into(), percent);
+            return Some(SetBy {
+                sentence: format!(
+                    "{own} is the last that holds: with {} `{}` would keep a margin of {kept} of the {} asked",
+                    blocked.shown,
+                    blocked.check,
+                    percent(blocked.asked)
+                ),
+                part,
+                rating: blocked.check.clone(),
+            });
         }
-        self.size_set_by(chosen)
+        let checks = 0..chosen.trial.checks.len();
+        let tightest = checks.min_by(|&a, &b| {
+            let worst = &chosen.study.worst;
+            worst.margin(a).total_cmp(&worst.margin(b))
+        })?;
+        let check = chosen.trial.checks[tightest].name.clone();
+        Some(SetBy {
+            sentence: format!(
+                "{own} is the last of those to choose from; `{check}` comes next to stopping it"
+            ),
+            part,
+            rating: check,
+        })
     }
 
     /// The rating that rules a smaller size out; where there is none smaller, the rating that is used most.

@@ -6,10 +6,26 @@ use super::facts::Facts;
 use super::fillings::{Filling, StandardKind};
 use crate::diag::Diagnostic;
 use crate::run::Netlist;
-use crate::units::{CAPACITANCE, CURRENT, TIME, engineering};
+use crate::units::{CAPACITANCE, CURRENT, TIME, VOLTAGE, engineering};
 
+/// Beyond this loss of inductance a coil is past its knee.
+const PAST_THE_KNEE: f64 = 0.5;
+/// A kick this many times the supply counts as unsuppressed.
+const UNSUPPRESSED: f64 = 4.0;
 /// A snubber below this many times the stray capacitance is not told from it.
 const ABOVE_STRAY: f64 = 10.0;
+
+/// What every suppressor brings along, whatever the netlist.
+pub const ALWAYS: &[&str] = &[
+    "figures are predictions: confirm them on the bench with rated probes",
+    "an interrupted coil makes voltages that injure people and destroy parts; energy remains after switch-off",
+    "a suppressor fails short (fuse it) or open (the kick returns)",
+    "a diode put in the wrong way round shorts the driver",
+    "a slow release wears contacts and changes stopping times: safety functions are re-assessed",
+    "mains-connected parts need the proper class, a fusible resistor and a bleed",
+    "emission is not predicted; `ground` is not protective earth",
+    "mains and safety circuits follow the local code and a licensed practitioner",
+];
 
 /// What hangs on the netlist and the results.
 pub fn cautions(netlist: &Netlist, comparison: &Comparison) -> Vec<Diagnostic> {
@@ -26,6 +42,8 @@ pub fn cautions(netlist: &Netlist, comparison: &Comparison) -> Vec<Diagnostic> {
         cautions.push(Diagnostic::caution("no-voltage-limit", headline).help(help));
     }
     release(netlist, comparison, &mut cautions);
+    knee(comparison, &mut cautions);
+    unbroken(netlist, comparison, &mut cautions);
     rate(netlist, comparison, &mut cautions);
     moving_sources(netlist, &mut cautions);
     for candidate in &comparison.candidates {
@@ -39,10 +57,9 @@ fn release(netlist: &Netlist, comparison: &Comparison, cautions: &mut Vec<Diagno
     let sizing = netlist.sizing.as_ref();
     let named = sizing.is_some_and(|s| s.release_current.is_some() || s.release_voltage.is_some());
     if !named {
-        let level = super::trial::DEFAULT_RELEASE * comparison.facts.nominal.current.abs();
         let headline = format!(
             "no release current is given: 10 % of the operating current, {}, is taken for it",
-            engineering(level, CURRENT, 3)
+            engineering(comparison.level, CURRENT, 3)
         );
         let help = "sizing: {release: {current: 8 mA, within: 25 ms, margin: 10 %}}";
         cautions.push(Diagnostic::caution("release-assumed", headline).help(help));
@@ -52,6 +69,42 @@ fn release(netlist: &Netlist, comparison: &Comparison, cautions: &mut Vec<Diagno
     cautions.push(Diagnostic::caution("release-from-current", headline).help(
         "moving parts, eddy currents and contact bounce come on top; measure them on the bench",
     ));
+}
+
+/// A coil past its knee rests on its magnetization far out.
+fn knee(comparison: &Comparison, cautions: &mut Vec<Diagnostic>) {
+    let facts = &comparison.facts;
+    if facts.saturation_high > PAST_THE_KNEE {
+        let headline = format!(
+            "`{}` is driven past its knee: at worst {:.0} % of its inductance is gone",
+            facts.coil,
+            100.0 * facts.saturation_high
+        );
+        cautions.push(Diagnostic::caution("past-the-knee", headline).help(
+            "the figures rest on the magnetization far out: give the material a measured `curve`",
+        ));
+    }
+}
+
+/// A real switch breaks down or arcs over before it sees an unsuppressed kick.
+fn unbroken(netlist: &Netlist, comparison: &Comparison, cautions: &mut Vec<Diagnostic>) {
+    let facts = &comparison.facts;
+    let entry = netlist.circuit.find(&facts.switch);
+    let breaks = entry.is_some_and(|entry| entry.node.get("breakdown_voltage").is_some());
+    let bare = comparison.candidates.iter().find(|c| c.fitted.is_empty());
+    let kick = bare.and_then(|bare| Some(bare.study.as_ref()?.nominal().peak_voltage));
+    let kick = kick.filter(|kick| *kick > UNSUPPRESSED * facts.nominal.open_voltage.abs());
+    if let (Some(kick), false) = (kick, breaks) {
+        let headline = format!(
+            "without a suppressor `{}` would see {}: a real one breaks down or arcs before that",
+            facts.switch,
+            engineering(kick, VOLTAGE, 3)
+        );
+        cautions.push(
+            Diagnostic::caution("no-breakdown", headline)
+                .help("the figure shows that a suppressor is needed, not what would be measured"),
+        );
+    }
 }
 
 fn rate(netlist: &Netlist, comparison: &Comparison, cautions: &mut Vec<Diagnostic>) {

@@ -27,6 +27,8 @@ pub struct AtRest {
     pub energy: f64,
     /// Resistance of the winding at its temperature.
     pub resistance: f64,
+    /// Share of its inductance that the coil has lost at that current.
+    pub saturation: f64,
 }
 
 /// What is known of the circuit before any suppressor.
@@ -48,6 +50,8 @@ pub struct Facts {
     pub open_voltage_high: f64,
     /// Highest energy of the field [J].
     pub energy_high: f64,
+    /// Largest share of its inductance that the coil has lost.
+    pub saturation_high: f64,
     /// Lowest resistance of the winding, cold [Ω].
     pub resistance_low: f64,
     /// Inductance at zero current [H].
@@ -100,7 +104,13 @@ impl Facts {
             set(&mut netlist.circuit, &all, corner)?;
             let rest = places.rest(&netlist.circuit)?;
             let (current, voltage) = (rest.current.abs(), rest.open_voltage.abs());
-            Ok::<_, Failure>(vec![-current, -voltage, -rest.energy, rest.resistance])
+            Ok::<_, Failure>(vec![
+                -current,
+                -voltage,
+                -rest.energy,
+                rest.resistance,
+                -rest.saturation,
+            ])
         })?;
         set(&mut netlist.circuit, &all, &vec![Side::Nominal; all.len()])?;
         let circuit = &netlist.circuit;
@@ -115,6 +125,7 @@ impl Facts {
             open_voltage_high: -extremes.margin(1),
             energy_high: -extremes.margin(2),
             resistance_low: extremes.margin(3),
+            saturation_high: -extremes.margin(4),
             inductance: inductance(circuit, coil_entry),
             stray: figure(circuit, coil_entry, "self_capacitance").unwrap_or(0.0),
             allowed_voltage: None,
@@ -168,12 +179,14 @@ impl Places {
             ..at
         };
         let current = coil.element.quantity(Quantity::WindingCurrent, 0, own);
+        let saturation = coil.element.quantity(Quantity::Saturation, 0, own);
         Ok(AtRest {
             current: current.unwrap_or(0.0),
             coil_voltage: voltage(coil, &closed),
             open_voltage: voltage(switch, &open),
             energy: circuit.stored(self.coil, at),
             resistance: winding_resistance(circuit, coil),
+            saturation: saturation.unwrap_or(0.0),
         })
     }
 

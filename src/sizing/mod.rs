@@ -22,6 +22,7 @@ mod taken_out;
 mod trial;
 
 pub use candidate::{Candidate, Fitted, SetBy};
+pub use cautions::ALWAYS as CAUTIONS;
 pub use checks::{Check, RELEASE};
 pub use cycle::{COARSE, Cycle, FINE};
 pub use facts::{AtRest, Facts};
@@ -36,11 +37,12 @@ use crate::analysis::Failure;
 use crate::diag::{Diagnostic, Sources};
 use crate::netlist::{Document, nearest};
 use crate::run::{Netlist, Outcome, Sizing};
+use crate::studies::workers;
 use candidate::Hunt;
 use catalogue::Catalogue;
 use cycle::Names;
 use rig::Rig;
-use trial::{Addition, Ground, Trial};
+use trial::{Addition, DEFAULT_RELEASE, Ground, Trial};
 
 /// Told while a sizing goes on: the share done and what is being tried.
 pub type Progress<'a> = dyn FnMut(f64, &str) + 'a;
@@ -60,6 +62,8 @@ pub struct Comparison {
     pub quickness_counts: bool,
     /// The cycle that was run (a candidate's open phase may have been longer).
     pub cycle: Cycle,
+    /// The release current at nominal values [A].
+    pub level: f64,
     /// Candidates in the order in which they were tried.
     pub candidates: Vec<Candidate>,
     /// How each stands.
@@ -88,38 +92,48 @@ pub fn size(netlist: &Netlist, progress: &mut Progress<'_>) -> Result<Comparison
     let catalogue = Catalogue::read(&rig.document, &mut rig.sources);
     let mut facts = facts(&rig, &names)?;
     let transition = transition(netlist, &rig.switch);
-    let ground = Ground {
+    let mut ground = Ground {
         rig: &rig,
         names: &names,
         cycle: Cycle::of(facts.time_constant(), transition),
-        current: facts.nominal.current,
+        level: DEFAULT_RELEASE * facts.nominal.current.abs(),
     };
     let bare = Trial::new(&ground, &Addition::default()).map_err(failure)?;
+    ground.level = bare.level();
     facts.allowed_voltage = allowed_voltage(&bare);
     let bounded = facts.allowed_voltage.is_some();
-    let mut candidates: Vec<Candidate> = Vec::new();
-    for (k, &suppressor) in tried.iter().enumerate() {
-        let choices = (suppressor.choices)(&facts, &catalogue);
-        let mut tick = |runs: usize| {
-            let within = runs as f64 / (runs as f64 + EXPECTED_RUNS);
-            let done = (k as f64 + within) / tried.len() as f64;
-            progress(done, suppressor.word);
-        };
-        tick(0);
-        candidates.push(Hunt::new(&ground, &facts, suppressor, choices, &mut tick).candidate());
-    }
+    let mut done = vec![0.0; tried.len()];
+    let candidates = workers::in_order(
+        tried.len(),
+        workers::at_hand(),
+        |k, report| {
+            let choices = (tried[k].choices)(&facts, &catalogue);
+            let mut tick = |runs: usize| report.tell(runs);
+            let candidate = Hunt::new(&ground, &facts, tried[k], choices, &mut tick).candidate();
+            report.tell(usize::MAX);
+            candidate
+        },
+        &mut |k, runs| {
+            done[k] = match runs {
+                usize::MAX => 1.0,
+                runs => runs as f64 / (runs as f64 + EXPECTED_RUNS),
+            };
+            progress(done.iter().sum::<f64>() / tried.len() as f64, tried[k].word);
+        },
+    );
     let standings: Vec<Standing> = candidates
         .iter()
         .map(|candidate| ranking::standing(candidate, bounded))
         .collect();
     let quickness_counts = sizing.release_within.is_some();
     let figures: Vec<Option<(f64, f64)>> = candidates.iter().map(figures).collect();
-    let cycle = ground.cycle;
+    let (cycle, level) = (ground.cycle, ground.level);
     let mut comparison = Comparison {
         title: netlist.title.clone(),
         bounded,
         quickness_counts,
         cycle,
+        level,
         recommended: ranking::recommended(&standings, quickness_counts),
         front: ranking::front(&figures),
         standings,
@@ -144,7 +158,7 @@ impl Comparison {
             rig: &self.rig,
             names: &self.names,
             cycle: self.cycle_of(candidate),
-            current: self.facts.nominal.current,
+            level: self.level,
         };
         let (mut document, mut sources) = ground.document(&candidate.addition);
         let accuracy = format!("{FINE:e}");
@@ -223,7 +237,7 @@ fn facts(rig: &Rig, names: &Names) -> Result<Facts, Failure> {
         rig,
         names,
         cycle: Cycle::of(1.0, 0.0),
-        current: 1.0,
+        level: 1.0,
     };
     let mut bare = Trial::new(&ground, &Addition::default()).map_err(failure)?;
     Facts::find(&mut bare.netlist, &rig.coil, &rig.switch)

@@ -12,9 +12,9 @@ pub struct Standing {
     pub holds: bool,
     /// Number of added elements.
     pub parts: usize,
-    /// Release time at its worst corner; infinity where it never lets go.
+    /// Release time at its worst corner; infinity where it never lets go, no number where it was not simulated.
     pub slowest: f64,
-    /// Highest switch voltage of all corners.
+    /// Highest switch voltage of all corners; no number where it was not simulated.
     pub highest: f64,
 }
 
@@ -66,7 +66,8 @@ pub fn front(figures: &[Option<(f64, f64)>]) -> Vec<usize> {
 /// How a candidate stands. `bounded` says whether anything bounds the voltage across the switch.
 pub fn standing(candidate: &Candidate, bounded: bool) -> Standing {
     let reached = candidate.study.iter().flat_map(|study| &study.reached);
-    let (mut slowest, mut highest) = (0.0_f64, 0.0_f64);
+    // The larger of a number and none is the number.
+    let (mut slowest, mut highest) = (f64::NAN, f64::NAN);
     for reached in reached {
         slowest = slowest.max(reached.release.unwrap_or(f64::INFINITY));
         highest = highest.max(reached.peak_voltage);

@@ -81,15 +81,18 @@ impl Study {
         &self.reached[0]
     }
 
-    /// The worst corners of all checks, each once.
+    /// The worst corners of all checks, each once, that of the least margin first.
     pub fn worst_corners(&self) -> Vec<Corner> {
-        let mut numbers = self.worst.at.clone();
-        numbers.sort_unstable();
-        numbers.dedup();
-        numbers
-            .iter()
-            .map(|&k| self.worst.tried[k].corner.clone())
-            .collect()
+        let mut checks: Vec<usize> = (0..self.worst.at.len()).collect();
+        checks.sort_by(|&a, &b| self.worst.margin(a).total_cmp(&self.worst.margin(b)));
+        let mut corners: Vec<Corner> = Vec::new();
+        for check in checks {
+            let corner = self.worst.corner(check);
+            if !corners.contains(corner) {
+                corners.push(corner.clone());
+            }
+        }
+        corners
     }
 }
 
@@ -165,8 +168,8 @@ pub struct Ground<'a> {
     pub names: &'a Names,
     /// The cycle that is run.
     pub cycle: Cycle,
-    /// Winding current with the switch closed [A].
-    pub current: f64,
+    /// Release current at nominal values [A].
+    pub level: f64,
 }
 
 impl Ground<'_> {
@@ -174,9 +177,13 @@ impl Ground<'_> {
     pub fn document(&self, addition: &Addition) -> (Document, crate::diag::Sources) {
         let mut document = self.rig.document.clone();
         let mut sources = self.rig.sources.clone();
-        let level = DEFAULT_RELEASE * self.current.abs();
-        self.names
-            .write(self.rig, self.cycle, level, &mut document, &mut sources);
+        self.names.write(
+            self.rig,
+            self.cycle,
+            self.level,
+            &mut document,
+            &mut sources,
+        );
         for (name, part) in &addition.parts {
             document.insert(&format!("parts.{name}"), part.clone());
         }
@@ -220,7 +227,7 @@ impl Trial {
         let level = if sizing.release_current.is_some() || sizing.release_voltage.is_some() {
             Level::Sizing
         } else {
-            Level::Fixed(DEFAULT_RELEASE * ground.current.abs())
+            Level::Fixed(ground.level)
         };
         Ok(Trial {
             added: added.collect(),
@@ -251,11 +258,21 @@ impl Trial {
         Ok(study)
     }
 
-    /// Runs the nominal corner and these alone.
+    /// Runs the nominal corner and these alone, and what fails or nearly does once more.
     ///
     /// # Errors
     /// A simulation that could not be completed.
     pub fn glance(&mut self, corners: &[Corner]) -> Result<Study, Trouble> {
+        let mut study = self.estimate(corners)?;
+        self.confirm(&mut study)?;
+        Ok(study)
+    }
+
+    /// Runs the nominal corner and these alone, at [`COARSE`].
+    ///
+    /// # Errors
+    /// A simulation that could not be completed.
+    pub fn estimate(&mut self, corners: &[Corner]) -> Result<Study, Trouble> {
         let nominal = vec![Side::Nominal; self.spreads.len()];
         let mut tried: Vec<Tried> = Vec::new();
         for corner in std::iter::once(&nominal).chain(corners) {
@@ -268,9 +285,7 @@ impl Trial {
                 });
             }
         }
-        let mut study = self.gathered(Worst::among(tried));
-        self.confirm(&mut study)?;
-        Ok(study)
+        Ok(self.gathered(Worst::among(tried)))
     }
 
     /// Looks again at what decides: as long as the worst corner of a check is a close call or fails and was run at
@@ -404,7 +419,7 @@ impl Trial {
     }
 
     /// The release current at the values in force [A].
-    fn level(&self) -> f64 {
+    pub fn level(&self) -> f64 {
         let circuit = &self.netlist.circuit;
         let values = circuit.values();
         let sizing = self.netlist.sizing.as_ref();

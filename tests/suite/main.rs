@@ -21,6 +21,7 @@ mod release;
 mod rings;
 mod saturating_cores;
 mod shipped_netlists;
+mod sizing;
 mod structure;
 mod table;
 mod wire;

@@ -1,7 +1,7 @@
 //! The pictures of a sizing: the candidates' switch voltage and winding current over each other, and release time
 //! against switch voltage with the candidates that none beats.
 
-use super::words::{answer, parts};
+use super::words::answer;
 use crate::report::chart::{
     Axis, Chart, Curve, CurvePanel, Instant, LimitLine, Mark, Panel, Style,
 };
@@ -9,7 +9,6 @@ use crate::report::engineering::engineering;
 use crate::report::run::charts::curve;
 use crate::report::run::charts::kick::shifted;
 use crate::run::Outcome;
-use crate::signals::Trace;
 use crate::sizing::{Candidate, Comparison};
 
 pub use crate::report::run::charts::Named;
@@ -56,7 +55,7 @@ fn subtitle(comparison: &Comparison) -> String {
 /// Switch voltage and winding current of all candidates over the time after the opening.
 fn over_each_other(comparison: &Comparison, outcomes: &[(usize, Outcome)]) -> Option<Chart> {
     let facts = &comparison.facts;
-    let until = 1.25 * slowest(comparison)?;
+    let until = (1.25 * slowest(comparison)?).max(1.05 * within(comparison).unwrap_or(0.0));
     let from = -0.08 * until;
     let voltage = format!("voltage across {}", facts.switch);
     let current = format!("winding current of {}", facts.coil);
@@ -82,22 +81,21 @@ fn over_each_other(comparison: &Comparison, outcomes: &[(usize, Outcome)]) -> Op
         let candidate = &comparison.candidates[*k];
         let opens = comparison.cycle_of(candidate).opens;
         let word = candidate.suppressor.word;
-        if let Some(trace) = outcome.trace(&voltage) {
-            let peak = peak(candidate);
+        let peak = peak(candidate);
+        if peak > ceiling {
             // What leaves the panel would fill it from side to side: it is named instead of drawn.
-            if peak > ceiling {
-                beyond.push(format!("{word} ({})", engineering(peak, "V", 3)));
-            } else {
-                let curve = part(&shifted(trace, opens), word, from, until);
-                above.curves.push(curve);
-            }
+            beyond.push(format!("{word} ({})", engineering(peak, "V", 3)));
+        } else if let Some(trace) = outcome.trace(&voltage) {
+            above
+                .curves
+                .push(curve(&shifted(trace, opens), word, from, until));
         }
         let found = outcome.trace(&current);
         let found = found.or_else(|| outcome.trace(&format!("current through {}", facts.coil)));
         if let Some(trace) = found {
             below
                 .curves
-                .push(part(&shifted(trace, opens), word, from, until));
+                .push(curve(&shifted(trace, opens), word, from, until));
         }
     }
     if !beyond.is_empty() {
@@ -108,13 +106,10 @@ fn over_each_other(comparison: &Comparison, outcomes: &[(usize, Outcome)]) -> Op
             at: 0.0,
         }];
     }
-    if let Some(reached) = comparison.candidates.iter().find_map(|c| c.study.as_ref()) {
-        let level = reached.nominal().level;
-        below.limits.push(LimitLine {
-            label: format!("release current {}", engineering(level, "A", 3)),
-            value: level * facts.nominal.current.signum(),
-        });
-    }
+    below.limits.push(LimitLine {
+        label: format!("release current {}", engineering(comparison.level, "A", 3)),
+        value: comparison.level * facts.nominal.current.signum(),
+    });
     if let Some(within) = within(comparison) {
         below.instants.push(Instant {
             label: format!("release within {}", engineering(within, "s", 3)),
@@ -127,10 +122,6 @@ fn over_each_other(comparison: &Comparison, outcomes: &[(usize, Outcome)]) -> Op
         panels: vec![Panel::Curves(above), Panel::Curves(below)],
         caution: Some(CAUTION.into()),
     })
-}
-
-fn part(trace: &Trace, name: &str, from: f64, until: f64) -> Curve {
-    curve(trace, name, from, until)
 }
 
 /// Release time against switch voltage, nominal.
@@ -167,31 +158,24 @@ fn trade_off(comparison: &Comparison) -> Option<Chart> {
             style: Style::Dashed,
         });
     }
-    for (k, candidate) in comparison.candidates.iter().enumerate() {
-        let Some((release, voltage)) = figures[k] else {
-            continue;
-        };
-        let verdict = match (
-            comparison.standings[k].holds,
-            comparison.recommended == Some(k),
-        ) {
-            (_, true) => " (recommended)",
-            (true, _) => "",
-            (false, _) => " (fails)",
-        };
-        panel.curves.push(Curve {
-            name: candidate.suppressor.word.into(),
-            points: vec![(release, voltage)],
-            style: Style::Points,
-        });
-        panel.marks.push(Mark {
-            x: release,
-            y: voltage,
-            label: format!("{}{verdict}", parts(candidate)),
-        });
-    }
-    if panel.curves.is_empty() {
+    let points: Vec<(f64, f64)> = figures.iter().flatten().copied().collect();
+    if points.is_empty() {
         return None;
+    }
+    panel.curves.push(Curve {
+        name: "candidates".into(),
+        points,
+        style: Style::Points,
+    });
+    for (k, candidate) in comparison.candidates.iter().enumerate() {
+        let Some((x, y)) = figures[k] else { continue };
+        let mut label = candidate.suppressor.word.to_owned();
+        if comparison.recommended == Some(k) {
+            label += " (recommended)";
+        } else if !comparison.standings[k].holds {
+            label += " (fails)";
+        }
+        panel.marks.push(Mark { x, y, label });
     }
     if let Some(within) = within(comparison) {
         panel.instants.push(Instant {

@@ -3,7 +3,7 @@
 use super::words::why;
 use crate::report::json::{Object, number, table};
 use crate::report::run::json::cautions;
-use crate::sizing::{Candidate, Choice, Comparison, Reached, Study};
+use crate::sizing::{CAUTIONS, Candidate, Choice, Comparison, Reached, Study};
 use crate::studies::Spread;
 use serde_json::Value;
 
@@ -37,6 +37,7 @@ pub fn size(comparison: &Comparison, command: &str) -> Value {
         .text("command", Some(command))
         .value("simulations", comparison.runs)
         .value("cautions", cautions(&comparison.cautions))
+        .list("always", CAUTIONS.iter().copied())
         .into()
 }
 

@@ -3,11 +3,15 @@
 use super::words::{answer, parts, tightest, why};
 use crate::report::engineering::{engineering, engineering_or_dash, margin};
 use crate::report::tables::{Align, Cell, Screen, Table, Tone};
-use crate::sizing::{COARSE, Comparison, FINE};
+use crate::sizing::{CAUTIONS, COARSE, Comparison, FINE};
 use std::fmt::Write as _;
+
+/// Columns of running text where the screen does not say.
+const WIDTH: usize = 110;
 
 /// The whole text of `size`. `command` is the command line that gives it again.
 pub fn size(comparison: &Comparison, command: &str, screen: Screen) -> String {
+    let width = screen.width.unwrap_or(WIDTH);
     let mut text = format!("{}\n", answer(comparison));
     let _ = write!(
         text,
@@ -16,30 +20,66 @@ pub fn size(comparison: &Comparison, command: &str, screen: Screen) -> String {
     );
     let _ = writeln!(text, "\nWhy");
     for (k, candidate) in comparison.candidates.iter().enumerate() {
-        let _ = writeln!(
-            text,
-            "  {}: {}.",
-            candidate.suppressor.word,
-            why(comparison, k)
-        );
+        let mut words = format!("{}: {}.", candidate.suppressor.word, why(comparison, k));
         if let (Some(set_by), true) = (&candidate.set_by, comparison.standings[k].holds) {
-            let _ = writeln!(text, "    {}.", set_by.sentence);
+            let _ = write!(words, " {}.", capital(&set_by.sentence));
         }
+        text += &wrapped(&words, 2, width);
     }
     let _ = writeln!(text, "\nAssumed");
     for line in assumed(comparison) {
-        let _ = writeln!(text, "  {line}");
+        text += &wrapped(&line, 2, width);
     }
-    let _ = writeln!(text, "\n{CAUTION}\n\nAgain: {command}");
+    let _ = writeln!(text, "\nCautions");
+    let always: Vec<String> = CAUTIONS
+        .iter()
+        .map(|caution| format!("{}.", capital(caution)))
+        .collect();
+    text += &wrapped(&always.join(" "), 2, width);
+    let _ = writeln!(text, "\nAgain: {command}");
     text
 }
 
-/// The cautions under every sizing.
-const CAUTION: &str = "Figures are predictions: confirm them on the bench with rated probes. An interrupted coil makes voltages that injure\n\
-and destroy; energy remains after switch-off. A suppressor fails short (fuse it) or open (the kick returns); a diode\n\
-put in the wrong way round shorts the driver. A slow release wears contacts and changes stopping times: re-assess\n\
-safety functions. Mains-connected parts need the proper class, a fusible resistor and a bleed. Emission is not\n\
-predicted. `ground` is not protective earth. Mains and safety circuits follow the local code and a licensed\npractitioner.";
+/// A sentence with a capital at its start, unless that is a name in quotes or code.
+fn capital(sentence: &str) -> String {
+    let mut chars = sentence.chars();
+    match chars.next() {
+        // A part's name keeps its spelling.
+        Some(first)
+            if sentence
+                .split(' ')
+                .next()
+                .is_some_and(|word| !word.contains('_')) =>
+        {
+            first.to_uppercase().chain(chars).collect()
+        }
+        _ => sentence.to_owned(),
+    }
+}
+
+/// Words in lines of a width, the first indented by so much and the others by two more.
+fn wrapped(words: &str, indent: usize, width: usize) -> String {
+    let mut out = String::new();
+    let mut line = " ".repeat(indent);
+    let mut filled = false;
+    for word in words.split(' ') {
+        let long = line.chars().count() + 1 + word.chars().count() > width;
+        if filled && long {
+            out += &line;
+            out.push('\n');
+            line = " ".repeat(indent + 2);
+            filled = false;
+        }
+        if filled {
+            line.push(' ');
+        }
+        line += word;
+        filled = true;
+    }
+    out += &line;
+    out.push('\n');
+    out
+}
 
 fn candidates(comparison: &Comparison) -> Table {
     let mut table = Table::new()
@@ -47,9 +87,9 @@ fn candidates(comparison: &Comparison) -> Table {
         .column("parts", Align::Left)
         .column("peak", Align::Right)
         .column("release", Align::Right)
-        .column("at worst", Align::Right)
+        .column("slowest", Align::Right)
         .column("energy", Align::Right)
-        .column("tightest limit", Align::Left)
+        .column("least to spare", Align::Left)
         .column("margin", Align::Right)
         .column("", Align::Left);
     for (k, candidate) in comparison.candidates.iter().enumerate() {
@@ -73,7 +113,7 @@ fn candidates(comparison: &Comparison) -> Table {
             parts(candidate).into(),
             engineering_or_dash(nominal.map(|reached| reached.peak_voltage), "V", 3).into(),
             engineering_or_dash(nominal.and_then(|reached| reached.release), "s", 3).into(),
-            engineering(standing.slowest, "s", 3).into(),
+            slowest(standing.slowest).into(),
             engineering_or_dash(nominal.map(|reached| reached.energy), "J", 3).into(),
             name.into(),
             left.into(),
@@ -81,6 +121,15 @@ fn candidates(comparison: &Comparison) -> Table {
         ]);
     }
     table
+}
+
+/// A release time that may never come.
+fn slowest(seconds: f64) -> String {
+    if seconds == f64::INFINITY {
+        "never".into()
+    } else {
+        engineering(seconds, "s", 3)
+    }
 }
 
 fn assumed(comparison: &Comparison) -> Vec<String> {

@@ -17,6 +17,14 @@ pub fn parts(candidate: &Candidate) -> String {
     }
 }
 
+/// What a candidate is, with its parts: `zener_18V_0W5 ... (flyback diode ...)`.
+pub fn whole(candidate: &Candidate) -> String {
+    if candidate.fitted.is_empty() {
+        return candidate.suppressor.about.to_owned();
+    }
+    format!("{}, {}", parts(candidate), candidate.suppressor.about)
+}
+
 /// Number of the check with the least beyond what is asked, at its worst corner.
 pub fn tightest(candidate: &Candidate) -> Option<usize> {
     let study = candidate.study.as_ref()?;
@@ -37,7 +45,7 @@ pub fn verdict(candidate: &Candidate, check: usize) -> String {
         None => "never reached".into(),
     };
     format!(
-        "{} is {value} against {side} {} ({}): margin {} of {} asked",
+        "{} is {value} against {side} {} ({}), margin {} (asked {})",
         known.name,
         engineering(verdict.bound, unit, 3),
         candidate.corners[check],
@@ -87,13 +95,15 @@ fn failing(candidate: &Candidate) -> String {
                 .iter()
                 .map(|&check| candidate.checks[check].name.as_str())
                 .collect();
-            format!("{}; so do {}", verdict(candidate, first), names.join(", ")).replace(
-                "; so do",
-                if others.len() == 1 {
-                    "; nor does hold"
-                } else {
-                    "; nor do hold"
-                },
+            let nor = if others.len() == 1 {
+                "nor does"
+            } else {
+                "nor do"
+            };
+            format!(
+                "{}; {nor} {} hold",
+                verdict(candidate, first),
+                names.join(", ")
             )
         }
     }
@@ -171,26 +181,22 @@ pub fn answer(comparison: &Comparison) -> String {
     };
     let candidate = &comparison.candidates[number];
     let standing = &comparison.standings[number];
-    let nominal = candidate
-        .study
-        .as_ref()
-        .and_then(|study| study.nominal().release);
+    let nominal = candidate.study.as_ref();
+    let nominal = nominal.and_then(|study| study.nominal().release);
+    let set_by = candidate.set_by.as_ref();
+    let set_by = set_by.map_or(String::new(), |set| {
+        format!("; its size is set by {}", set.rating)
+    });
     let first = if candidate.fitted.is_empty() {
         format!("{name}no suppressor is needed.")
     } else {
-        format!(
-            "{name}{}: {}.",
-            candidate.suppressor.about,
-            parts(candidate)
-        )
+        format!("{name}{}{set_by}.", whole(candidate))
     };
     let tight = tightest(candidate).map_or(String::new(), |check| {
-        format!("Tightest: {}. ", verdict(candidate, check))
+        format!("Least to spare: {}, holds. ", verdict(candidate, check))
     });
-    let set_by = candidate.set_by.as_ref();
-    let set_by = set_by.map_or(String::new(), |set| format!(" Set by {}.", set.rating));
     format!(
-        "{first}{set_by}\n{tight}Release after {}, {} at worst.",
+        "{first}\n{tight}Release after {}, {} at worst.",
         engineering_or_dash(nominal, "s", 3),
         engineering(standing.slowest, "s", 3)
     )
@@ -211,9 +217,8 @@ fn nearest_miss(comparison: &Comparison) -> String {
         .max_by(|a, b| slack(a).total_cmp(&slack(b)));
     nearest.map_or(String::new(), |candidate| {
         format!(
-            "Nearest comes {} with {}: {}.",
-            candidate.suppressor.word,
-            parts(candidate),
+            "Nearest comes {}: {}.",
+            whole(candidate),
             failing(candidate)
         )
     })

@@ -4,6 +4,7 @@ use super::common::{self, Source};
 use super::exit;
 use crate::diag::Diagnostic;
 use crate::report::engineering::{engineering, engineering_or_dash};
+use crate::report::files;
 use crate::report::json::Object;
 use crate::report::run::{charts, json, text};
 use crate::report::tables::{Align, Table};
@@ -53,7 +54,7 @@ pub fn main(arguments: &Arguments) -> u8 {
         return source.fail(exit::WRONG, &[diagnostic], &netlist.sources);
     }
     if let Some(folder) = &arguments.out {
-        let drawn = common::folder(folder).and_then(|()| {
+        let drawn = files::folder(folder).and_then(|()| {
             coils.iter().try_for_each(|coil| {
                 super::run::draw(&charts::coil(coil), folder, &format!("coil_{}", coil.name))
             })

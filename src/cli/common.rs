@@ -9,7 +9,7 @@ use crate::report::tables::Screen;
 use crate::run::{Netlist, ReadError};
 use serde_json::Value;
 use std::io::{IsTerminal, Read, Write};
-use std::path::{Path, PathBuf};
+use std::path::PathBuf;
 
 /// Arguments of every command that reads a netlist.
 #[derive(clap::Args)]
@@ -187,9 +187,4 @@ fn width() -> Option<usize> {
     std::env::var("COLUMNS")
         .ok()
         .and_then(|columns| columns.parse().ok())
-}
-
-/// The folder given by `--out`, made where it is missing.
-pub fn folder(path: &Path) -> Result<(), FileError> {
-    crate::report::files::folder(path)
 }

@@ -3,7 +3,7 @@
 use super::common::{self, Source};
 use super::exit;
 use super::progress::Progress;
-use crate::report::files::{FileError, write};
+use crate::report::files::{self, FileError, write};
 use crate::report::{chart, plots, run};
 use crate::run::{Netlist, Outcome};
 use std::ops::ControlFlow;
@@ -62,7 +62,7 @@ pub fn main(arguments: &Arguments) -> u8 {
 
 /// Leaves everything that a run gives in a folder.
 fn leave(netlist: &Netlist, outcome: &Outcome, folder: &Path) -> Result<(), FileError> {
-    common::folder(folder)?;
+    files::folder(folder)?;
     write(
         &folder.join("result.json"),
         common::json_text(&run::json::run(outcome)).as_bytes(),

@@ -4,7 +4,7 @@ use super::common::{self, Source};
 use super::exit;
 use super::progress::Progress;
 use super::run::draw;
-use crate::report::files::{FileError, write};
+use crate::report::files::{self, FileError, write};
 use crate::report::size;
 use crate::run::Outcome;
 use crate::sizing::{Candidate, Comparison};
@@ -80,7 +80,7 @@ fn quoted(word: &str) -> String {
 
 /// Leaves everything that a sizing gives in a folder.
 fn leave(comparison: &Comparison, command: &str, folder: &Path) -> Result<(), FileError> {
-    common::folder(folder)?;
+    files::folder(folder)?;
     write(
         &folder.join("result.json"),
         common::json_text(&size::json::size(comparison, command)).as_bytes(),

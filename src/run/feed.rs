@@ -344,12 +344,12 @@ pub fn at_rest(netlist: &Netlist, at: Point<'_>) -> Outcome {
         limits,
         ratings: Vec::new(),
         accounts: Vec::new(),
-        ledger: super::empty_ledger(),
+        ledger: Ledger::default(),
         coils: coil_reports(circuit),
         cautions: netlist.cautions.clone(),
         defaults: netlist.defaults.clone(),
         traces: Vec::new(),
-        events: super::empty_log(),
+        events: EventLog::default(),
     };
     cautions::add(netlist, &mut outcome);
     outcome

@@ -18,11 +18,10 @@ pub use netlist::{Netlist, ReadError, Sizing, read, read_coils, read_document};
 pub use outcome::{LimitResult, Outcome, RatingResult, ReadingResult, Work};
 pub use repeated::{Figures, RatingFigure, again, pilot};
 
-use crate::analysis::{Analysis, Failure, Ledger, Settings, Simulation, Transient, Wish};
+use crate::analysis::{Analysis, Failure, Settings, Simulation, Transient, Wish};
 use crate::circuit::{Circuit, Tap};
 use crate::dae::{Method, Point};
 use crate::elements::Unknown;
-use crate::signals::EventLog;
 use feed::{Feed, Keeps};
 use std::ops::ControlFlow;
 
@@ -136,14 +135,4 @@ fn unknowns_of(circuit: &Circuit, tap: &Tap) -> Vec<usize> {
             }
         }
     }
-}
-
-/// A ledger with nothing in it, for a circuit at rest.
-fn empty_ledger() -> Ledger {
-    Ledger::default()
-}
-
-/// An empty log, for a circuit at rest.
-fn empty_log() -> EventLog {
-    EventLog::default()
 }

@@ -11,6 +11,8 @@ mod netlist;
 mod obvious;
 mod outcome;
 mod repeated;
+mod results;
+mod watched;
 
 pub use cautions::coils as coil_cautions;
 pub use coils::{CoilReport, CurvePoint, coil_reports};
@@ -91,7 +93,7 @@ fn at_rest(netlist: &Netlist) -> Result<Outcome, Failure> {
         x: &state.x,
         mode: &state.mode,
     };
-    Ok(feed::at_rest(netlist, at))
+    Ok(results::at_rest(netlist, at))
 }
 
 /// Which unknowns each reading is made of, and in which window.

@@ -1,0 +1,191 @@
+//! The signals that a run reads off its circuit, each once, step by step.
+
+use crate::circuit::{Circuit, Entry, Tap};
+use crate::dae::{Point, Step};
+use crate::signals::{Owner, Phrase, Piece, Quantity, RatingKind, Watched};
+use crate::units::Kind;
+
+/// Most nodes whose potential, and most elements of a kind whose waveforms, are recorded unasked; beyond that a record
+/// would grow without use.
+const MOST_UNASKED: usize = 24;
+
+/// The waveforms of elements that are recorded unasked, by kind of element.
+const UNASKED: [(&str, &[&str]); 3] = [
+    ("switch", &["voltage across"]),
+    (
+        "coil",
+        &["winding current of", "flux density in", "saturation of"],
+    ),
+    ("inductor", &["current through"]),
+];
+
+/// One signal: how it is read, what it measures, and its energy so far where it is one.
+struct Signal {
+    name: String,
+    kind: Kind,
+    tap: Tap,
+    energy: f64,
+}
+
+/// Signals by name, and their values at both ends and both thirds of the step read last.
+#[derive(Default)]
+pub struct Signals {
+    list: Vec<Signal>,
+    values: Vec<[f64; 4]>,
+    points: [Vec<f64>; 4],
+    span: (f64, f64),
+}
+
+impl Signals {
+    /// The number of a signal, new or known.
+    pub fn number(&mut self, name: String, kind: Kind, tap: Tap) -> usize {
+        let known = self.list.iter().position(|signal| signal.name == name);
+        known.unwrap_or_else(|| {
+            self.list.push(Signal {
+                name,
+                kind,
+                tap,
+                energy: 0.0,
+            });
+            self.values.push([0.0; 4]);
+            self.list.len() - 1
+        })
+    }
+
+    /// Adds the waveforms that are kept unasked: what a person looks at first.
+    pub fn add_unasked(&mut self, circuit: &Circuit) {
+        for text in unasked(circuit) {
+            let Ok(phrase) = Phrase::parse(&text) else {
+                continue;
+            };
+            if let Ok(tap) = circuit.tap(&phrase) {
+                self.number(text, phrase.kind(), tap);
+            }
+        }
+    }
+
+    /// How many there are.
+    pub fn len(&self) -> usize {
+        self.list.len()
+    }
+
+    /// Name and kind of each.
+    pub fn named(&self) -> impl Iterator<Item = (String, Kind)> {
+        self.list
+            .iter()
+            .map(|signal| (signal.name.clone(), signal.kind))
+    }
+
+    /// Reads every signal at both ends and both thirds of a step.
+    pub fn read(&mut self, circuit: &Circuit, step: &Step<'_>) {
+        let length = step.to - step.from;
+        let times = [
+            step.from,
+            step.from + length / 3.0,
+            step.from + 2.0 * length / 3.0,
+            step.to,
+        ];
+        for (time, point) in times.iter().zip(&mut self.points).take(3) {
+            point.resize(step.x1.len(), 0.0);
+            step.at(*time, point);
+        }
+        self.points[3].clear();
+        self.points[3].extend_from_slice(step.x1);
+        for (signal, values) in self.list.iter_mut().zip(&mut self.values) {
+            for (value, (time, x)) in values.iter_mut().zip(times.iter().zip(&self.points)) {
+                let at = Point {
+                    time: *time,
+                    x,
+                    mode: step.mode,
+                };
+                *value = circuit.read(&signal.tap, at);
+            }
+            if matches!(signal.tap, Tap::Energy(_)) {
+                *values = accumulated(signal.energy, step.from, step.to, *values);
+                signal.energy = values[3];
+            }
+        }
+        self.span = (step.from, step.to);
+    }
+
+    /// A signal during the step read last.
+    pub fn piece(&self, number: usize) -> Piece {
+        Piece {
+            from: self.span.0,
+            to: self.span.1,
+            values: self.values[number],
+        }
+    }
+
+    /// Values of the first so many during the step read last, as a recorder takes them.
+    pub fn first(&self, count: usize) -> &[[f64; 4]] {
+        &self.values[..count]
+    }
+}
+
+fn unasked(circuit: &Circuit) -> Vec<String> {
+    let mut phrases = Vec::new();
+    let mut counts = [0; UNASKED.len()];
+    for entry in &circuit.entries {
+        for ((kind, waveforms), count) in UNASKED.iter().zip(&mut counts) {
+            if entry.kind.word == *kind && *count < MOST_UNASKED {
+                *count += 1;
+                phrases.extend(
+                    waveforms
+                        .iter()
+                        .map(|words| format!("{words} {}", entry.name)),
+                );
+            }
+        }
+    }
+    let nodes = circuit.node_names.iter().take(MOST_UNASKED);
+    phrases.extend(nodes.map(|node| format!("voltage at {node}")));
+    phrases
+}
+
+/// A cubic through the running integral of a power given at both ends and both thirds of a step.
+fn accumulated(start: f64, from: f64, to: f64, power: [f64; 4]) -> [f64; 4] {
+    let piece = Piece {
+        from,
+        to,
+        values: power,
+    };
+    let third = (to - from) / 3.0;
+    let up_to = |end: f64| piece.within(from, end).map_or(0.0, |part| part.integral());
+    [
+        start,
+        start + up_to(from + third),
+        start + up_to(from + 2.0 * third),
+        start + piece.integral(),
+    ]
+}
+
+/// The signal that stresses a rating of an element; what it has no waveform for is listed without a stress.
+pub fn stressing(circuit: &Circuit, entry: usize, rating: &RatingKind) -> Tap {
+    let element = &circuit.entries[entry];
+    let tap = match rating.watches {
+        Watched::Voltage => voltage(element),
+        Watched::Current => Some(Tap::Current(entry, 0)),
+        Watched::Power => Some(Tap::Power(entry)),
+        Watched::FluxDensity => {
+            let owner = Owner {
+                element: element.name.clone(),
+                winding: None,
+            };
+            circuit.tap(&Phrase::Of(Quantity::FluxDensity, owner)).ok()
+        }
+        Watched::Temperature => None,
+    };
+    tap.unwrap_or(Tap::Power(entry))
+}
+
+/// The voltage that ratings of an element mean: first less second terminal, anode less cathode; of a suppressor
+/// diode, whose first node is the cathode, the other way round.
+fn voltage(entry: &Entry) -> Option<Tap> {
+    let (a, b) = (*entry.nodes.first()?, *entry.nodes.get(1)?);
+    Some(if entry.kind.word == "suppressor_diode" {
+        Tap::Potential(b, a)
+    } else {
+        Tap::Potential(a, b)
+    })
+}

@@ -4,6 +4,7 @@
 //! operating point (rate = 0). Steps are limited by the system where a law is exponential; the size of a step is its
 //! largest entry in tolerances; from the ratio of two steps follows how far the solution still is.
 
+use super::pattern::Pattern;
 use super::statistics::Statistics;
 use super::system::{Evaluation, Point, System};
 use super::tolerances::{lags, largest, rounding};
@@ -88,6 +89,16 @@ impl Newton {
     /// Keeps the memory of [`Newton::rest`] for the next time.
     pub fn keep_rest(&mut self, rest: Vec<f64>) {
         self.rest = rest;
+    }
+
+    /// The charges at the solution found last: those of the last evaluation, carried along the last step by their slopes.
+    pub fn charges(&self, pattern: &Pattern, charges: &mut [f64]) {
+        charges.copy_from_slice(&self.out.q);
+        for (column, step) in self.step.iter().enumerate() {
+            for slot in pattern.starts[column]..pattern.starts[column + 1] {
+                charges[pattern.rows[slot]] += self.out.dq[slot] * step;
+            }
+        }
     }
 
     /// By how many tolerances x may move when the charges' last digits do, through the last factors.

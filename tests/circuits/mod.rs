@@ -4,8 +4,11 @@
 
 pub mod buck;
 pub mod cases;
+pub mod closed;
 pub mod ladder;
 pub mod laws;
 pub mod measure;
+pub mod problems;
+pub mod published;
 pub mod relay;
 pub mod stamps;

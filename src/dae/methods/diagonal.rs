@@ -7,11 +7,13 @@
 
 use super::super::dense::{Dense, divide_differences};
 use super::super::newton::{Equation, Newton, Rules, evaluation};
+use super::super::pattern::Pattern;
 use super::super::statistics::Statistics;
-use super::super::system::{Evaluation, Point, System};
+use super::super::system::{Evaluation, System};
 use super::super::tolerances::largest;
 use super::super::trouble::Trouble;
-use super::{Attempt, Table, Trial};
+use super::table::{Polynomial, Table};
+use super::{Attempt, Trial};
 use crate::math::Elimination;
 
 /// The iteration may leave this share of a tolerance.
@@ -25,6 +27,8 @@ const RULES: Rules = Rules {
 #[derive(Debug)]
 pub(crate) struct Diagonal {
     table: Table,
+    polynomial: Polynomial,
+    pattern: Pattern,
     newton: Newton,
     /// Values of the stages, then of nothing else: one row per stage.
     stages: Vec<f64>,
@@ -50,8 +54,12 @@ pub(crate) struct Diagonal {
 impl Diagonal {
     pub fn new<S: System + ?Sized>(table: Table, system: &S, elimination: Elimination) -> Self {
         let (n, s) = (system.size(), table.nodes.len());
+        let polynomial = table.polynomial();
         Diagonal {
+            coefficients: vec![0.0; n * polynomial.points.len()],
+            polynomial,
             table,
+            pattern: system.pattern().clone(),
             newton: Newton::new(system, elimination),
             stages: vec![0.0; n * s],
             slopes: vec![0.0; n * s],
@@ -62,7 +70,6 @@ impl Diagonal {
             out: evaluation(n, system.pattern().len()),
             rest: vec![0.0; n],
             error: vec![0.0; n],
-            coefficients: vec![0.0; n * s],
             laid: 0.0,
             origin: 0.0,
             tried: 0.0,
@@ -134,20 +141,10 @@ impl Diagonal {
                 unknown: failure.unknown,
                 cause: failure.cause,
             })?;
-        system.evaluate(
-            Point {
-                time,
-                x,
-                mode: trial.from.mode,
-            },
-            false,
-            &mut self.out,
-        );
-        counted.evaluations += 1;
+        self.newton.charges(&self.pattern, &mut self.charge_end);
         for row in 0..n {
-            self.slopes[stage * n + row] = -(rate * self.out.q[row] + self.rest[row]);
+            self.slopes[stage * n + row] = -(rate * self.charge_end[row] + self.rest[row]);
         }
-        self.charge_end.copy_from_slice(&self.out.q);
         Ok(())
     }
 
@@ -161,7 +158,7 @@ impl Diagonal {
             return;
         }
         let dense = Dense {
-            points: self.table.nodes,
+            points: &self.polynomial.points,
             coefficients: &self.coefficients,
         };
         dense.at(
@@ -211,15 +208,24 @@ impl Diagonal {
 
     pub fn lay(&mut self) {
         let n = self.charge.len();
-        self.coefficients.copy_from_slice(&self.stages);
-        divide_differences(self.table.nodes, &mut self.coefficients, n);
+        self.coefficients.fill(0.0);
+        let rows = self.coefficients.chunks_exact_mut(n.max(1));
+        for (row, weights) in rows.zip(&self.polynomial.weights) {
+            let stages = self.stages.chunks_exact(n.max(1));
+            for (stage, &weight) in stages.zip(weights).filter(|(_, weight)| **weight != 0.0) {
+                for (value, x) in row.iter_mut().zip(stage) {
+                    *value += weight * x;
+                }
+            }
+        }
+        divide_differences(&self.polynomial.points, &mut self.coefficients, n);
         self.laid = self.tried;
         self.origin = 0.0;
     }
 
     pub fn dense(&self) -> Dense<'_> {
         Dense {
-            points: self.table.nodes,
+            points: &self.polynomial.points,
             coefficients: &self.coefficients,
         }
     }

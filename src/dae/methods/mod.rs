@@ -6,10 +6,12 @@
 mod collocation;
 mod coupled;
 mod diagonal;
+mod esdirk4;
 mod estimate;
 mod iteration;
 mod radau_iia;
 mod split;
+mod table;
 mod tr_bdf2;
 
 use super::dense::Dense;
@@ -19,9 +21,15 @@ use super::trouble::Trouble;
 use crate::math::Elimination;
 use collocation::Collocation;
 use diagonal::Diagonal;
+pub use table::Table;
 
 /// All methods; the first is the one that is taken unless another is asked for.
-pub const METHODS: &[Method] = &[radau_iia::METHOD, radau_iia::FIVE, tr_bdf2::METHOD];
+pub const METHODS: &[Method] = &[
+    radau_iia::METHOD,
+    radau_iia::FIVE,
+    tr_bdf2::METHOD,
+    esdirk4::METHOD,
+];
 
 /// An implicit one-step method.
 #[derive(Clone, Copy, Debug)]
@@ -48,19 +56,6 @@ pub enum Family {
     Collocation3,
     /// Radau's collocation with five stages, solved together.
     Collocation5,
-}
-
-/// Coefficients of a diagonally implicit method (Butcher's table, stiffly accurate, first stage explicit).
-#[derive(Clone, Copy, Debug)]
-pub struct Table {
-    /// Diagonal coefficient of all implicit stages.
-    pub diagonal: f64,
-    /// Instants of the stages as shares of the step.
-    pub nodes: &'static [f64],
-    /// Coefficients left of the diagonal, one row per stage; the last row with the diagonal is the method.
-    pub rows: &'static [&'static [f64]],
-    /// Weights of the companion method whose difference is the error estimate.
-    pub companion: &'static [f64],
 }
 
 impl Method {

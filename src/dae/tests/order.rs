@@ -73,6 +73,8 @@ fn expected(method: &Method, index: u32) -> (f64, f64) {
         ("radau_iia", _) => (5.0, 4.0),
         ("tr_bdf2", 2) => (2.0, 2.0),
         ("tr_bdf2", _) => (2.0, 2.0),
+        ("esdirk4", 2) => (2.0, 2.0),
+        ("esdirk4", _) => (4.0, 4.0),
         (name, _) => panic!("what is the order of {name}?"),
     }
 }

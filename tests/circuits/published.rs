@@ -19,18 +19,18 @@ pub const MODULATOR: &[f64] = &[
     -0.2339057358486745e-1,
     -0.7367485485540825e-2,
     0.2582956709291169,
-    -0.4064465721283450,
+    -0.406446572128345,
     -0.4039455665149794,
     0.2607966765422943,
     0.1106761861269975,
     0.2939904342435596e-6,
     -0.2840029933642329e-7,
     0.7267198267264553e-3,
-    0.7929487196960840e-3,
+    0.792948719696084e-3,
     -0.7255283495698965e-3,
     -0.7941401968526521e-3,
     0.7088495416976114e-4,
-    0.2390059075236570e-4,
+    0.239005907523657e-4,
 ];
 
 /// Two transistor stages, eight node voltages, five capacitors.
@@ -103,6 +103,9 @@ pub mod modulator {
         1.0, 1.0, 1.0, 1.0, 1.0, 1.0, 0.3, 1e-5, 1e-5, 2e-3, 2e-3, 2e-3, 2e-3, 1e-3, 1e-3,
     ];
 
+    /// Signed states that a diode's voltage is made of.
+    type Sum = &'static [(usize, f64)];
+
     fn row(s: &mut Stamps<'_>, x: &[f64], row: usize, storage: f64, terms: &[(usize, f64)]) {
         s.q(row, storage * x[row]);
         s.dq(row, row, storage);
@@ -145,7 +148,7 @@ pub mod modulator {
             row(s, x, 14, LS1, &[(1, -1.0), (14, -(rc + rg1))]);
             s.f(13, -in1);
             // Each diode: its voltage as signed states and a share of the second input, and where its current goes.
-            let diodes: [(&[(usize, f64)], f64, &[(usize, f64)]); 4] = [
+            let diodes: [(Sum, f64, Sum); 4] = [
                 (
                     &[(2, 1.0), (4, -1.0), (6, -1.0)],
                     -1.0,

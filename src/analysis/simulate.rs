@@ -131,6 +131,7 @@ impl Simulation<'_> {
                     x_after,
                     mode_before,
                     mode_after,
+                    ..
                 } => {
                     let (mut x, mut mode) = (x_before.to_vec(), mode_before.to_vec());
                     let mut happened = Vec::new();

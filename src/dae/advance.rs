@@ -2,6 +2,7 @@
 
 use super::dense::Dense;
 use super::system::Cause;
+use super::variations::{Moved, Varied};
 
 /// One thing that happened, in the order of time.
 #[derive(Clone, Copy, Debug)]
@@ -31,6 +32,8 @@ pub enum Advance<'a> {
         mode_before: &'a [f64],
         /// Modes after it.
         mode_after: &'a [f64],
+        /// Derivatives at it, where variations are carried along.
+        varied: Option<Moved<'a>>,
     },
 }
 
@@ -49,6 +52,8 @@ pub struct Step<'a> {
     pub x1: &'a [f64],
     /// The polynomial of all unknowns.
     pub dense: Dense<'a>,
+    /// Polynomials of their derivatives, where variations are carried along.
+    pub varied: Option<Varied<'a>>,
 }
 
 impl Step<'_> {

@@ -4,16 +4,25 @@ use super::advance::Advance;
 use super::crossing::Watch;
 use super::march::State;
 use super::newton::{Newton, evaluation};
-use super::start::instant;
+use super::start::{Meeting, instant};
 use super::statistics::Statistics;
 use super::system::{Cause, Evaluation, Point, System};
 use super::trouble::{MarchError, Trouble};
+use super::variations::{Moved, Taken, Variations};
 use crate::math::Elimination;
 
 /// So many events at one instant are taken for a circle.
 const MOST_AT_ONCE: usize = 200;
 /// So many guards' events in a row between which no unknown moves by a tolerance are chattering.
 const MOST_IN_HASTE: usize = 100;
+
+/// What goes along with the solution through an event.
+pub(crate) struct Company<'r, 's, S: ?Sized> {
+    /// Reciprocal tolerances.
+    pub weights: &'r [f64],
+    pub watch: &'r mut Watch,
+    pub variations: Option<&'r mut Variations<'s, S>>,
+}
 
 /// Memory of the last event.
 #[derive(Debug)]
@@ -47,7 +56,7 @@ impl Events {
     }
 
     /// The event as an observer sees it.
-    pub fn advance<'a>(&'a self, state: &'a State) -> Advance<'a> {
+    pub fn advance<'a>(&'a self, state: &'a State, varied: Option<Moved<'a>>) -> Advance<'a> {
         Advance::Event {
             time: self.time,
             causes: &self.causes,
@@ -55,6 +64,7 @@ impl Events {
             x_after: &state.x,
             mode_before: &self.mode_before,
             mode_after: &state.mode,
+            varied,
         }
     }
 
@@ -64,19 +74,33 @@ impl Events {
         system: &S,
         cause: Cause,
         state: &mut State,
-        weights: &[f64],
-        watch: &mut Watch,
+        company: Company<'_, '_, S>,
         counted: &mut Statistics,
     ) -> Result<bool, MarchError> {
+        let Company {
+            weights,
+            watch,
+            mut variations,
+        } = company;
         self.causes.clear();
         self.time = state.time;
         self.x_before.copy_from_slice(&state.x);
         self.mode_before.copy_from_slice(&state.mode);
         self.haste(cause, state, weights)?;
+        if let Some(variations) = variations.as_deref_mut() {
+            variations.before_events();
+        }
         let mut changed = false;
         let mut next = Some(cause);
         while let Some(cause) = next {
-            changed |= self.one(system, cause, state, weights, counted)?;
+            changed |= self.one(
+                system,
+                cause,
+                state,
+                weights,
+                variations.as_deref_mut(),
+                counted,
+            )?;
             let fired = if let Cause::Guard(guard) = cause {
                 Some(guard)
             } else {
@@ -103,8 +127,10 @@ impl Events {
         cause: Cause,
         state: &mut State,
         weights: &[f64],
+        variations: Option<&mut Variations<'_, S>>,
         counted: &mut Statistics,
     ) -> Result<bool, MarchError> {
+        let held = variations.as_ref().map(|_| state.clone());
         let before = Point {
             time: state.time,
             x: &state.x,
@@ -132,8 +158,12 @@ impl Events {
         self.time = state.time;
         state.x = x;
         if !changed {
+            if let (Some(variations), Some(held)) = (variations, &held) {
+                vary(system, variations, cause, held, &held.x, state, None)?;
+            }
             return Ok(false);
         }
+        let jumped = held.as_ref().map(|_| state.x.clone());
         // A jump in x carries the charges of the rows that depend on it along; all other rows keep theirs.
         let after = Point {
             time: state.time,
@@ -166,6 +196,10 @@ impl Events {
             unknown: Some(failure.unknown),
             cause: failure.cause,
         })?;
+        if let (Some(variations), Some(held), Some(jumped)) = (variations, &held, &jumped) {
+            let meeting = Some(&self.newton.meeting);
+            vary(system, variations, cause, held, jumped, state, meeting)?;
+        }
         Ok(true)
     }
 
@@ -209,4 +243,30 @@ impl Events {
             cause: Trouble::Chattering { guard },
         }
     }
+}
+
+/// Carries variations over an event.
+fn vary<S: System + ?Sized>(
+    system: &S,
+    variations: &mut Variations<'_, S>,
+    cause: Cause,
+    held: &State,
+    jumped: &[f64],
+    state: &State,
+    meeting: Option<&Meeting>,
+) -> Result<(), MarchError> {
+    let taken = Taken {
+        cause,
+        before: held.point(),
+        jumped,
+        after: state.point(),
+        meeting,
+    };
+    variations
+        .event(system, &taken)
+        .map_err(|singular| MarchError {
+            time: state.time,
+            unknown: Some(singular.column),
+            cause: Trouble::Singular,
+        })
 }

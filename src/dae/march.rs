@@ -7,13 +7,14 @@
 use super::advance::{Advance, Step};
 use super::control::Control;
 use super::crossing::{Crossing, Watch};
-use super::event::Events;
+use super::event::{Company, Events};
 use super::experience::Experience;
 use super::methods::{Attempt, Method, Stepper, Trial};
 use super::statistics::Statistics;
 use super::system::{Cause, Point, System};
 use super::tolerances::Tolerances;
 use super::trouble::{MarchError, Trouble};
+use super::variations::{Kept, Variations};
 use crate::math::Elimination;
 use std::ops::ControlFlow;
 
@@ -26,6 +27,17 @@ pub struct State {
     pub x: Vec<f64>,
     /// Modes.
     pub mode: Vec<f64>,
+}
+
+impl State {
+    /// The state as a point.
+    pub fn point(&self) -> Point<'_> {
+        Point {
+            time: self.time,
+            x: &self.x,
+            mode: &self.mode,
+        }
+    }
 }
 
 /// How far to march, and how.
@@ -116,6 +128,17 @@ impl March {
         span: Span<'_>,
         observer: &mut Observer<'_>,
     ) -> Result<Ending, MarchError> {
+        self.run_varied(system, span, None, observer)
+    }
+
+    /// As [`March::run`], with variations carried along, which must have been started at the present state.
+    pub fn run_varied<S: System + ?Sized>(
+        &mut self,
+        system: &S,
+        span: Span<'_>,
+        variations: Option<&mut Variations<'_, S>>,
+        observer: &mut Observer<'_>,
+    ) -> Result<Ending, MarchError> {
         let scratch = self.scratch.get_or_insert_with(|| Scratch {
             stepper: Stepper::new(self.method, system, self.elimination),
             control: Control::new(self.method.estimated),
@@ -131,6 +154,8 @@ impl March {
             state: &mut self.state,
             counted: &mut self.counted,
             scratch,
+            method: self.method,
+            variations,
             observer,
             length: 0.0,
         };
@@ -138,12 +163,14 @@ impl March {
     }
 }
 
-struct Run<'a, 'o, S: ?Sized> {
+struct Run<'a, 'o, 's, S: ?Sized> {
     system: &'a S,
     span: Span<'a>,
     state: &'a mut State,
     counted: &'a mut Statistics,
     scratch: &'a mut Scratch,
+    method: &'static Method,
+    variations: Option<&'a mut Variations<'s, S>>,
     observer: &'a mut Observer<'o>,
     /// Length of the next step [s].
     length: f64,
@@ -156,7 +183,7 @@ enum End {
     Guard(usize),
 }
 
-impl<S: System + ?Sized> Run<'_, '_, S> {
+impl<S: System + ?Sized> Run<'_, '_, '_, S> {
     fn whole(&mut self) -> Result<Ending, MarchError> {
         if self.begin()?.is_break() {
             return Ok(Ending::Stopped);
@@ -198,6 +225,9 @@ impl<S: System + ?Sized> Run<'_, '_, S> {
         });
         if flow.is_break() {
             return Ok(flow);
+        }
+        if let Some(variations) = &mut self.variations {
+            variations.begin(self.state.time);
         }
         self.scratch.stepper.restart();
         self.scratch.control.restart();
@@ -272,7 +302,7 @@ impl<S: System + ?Sized> Run<'_, '_, S> {
                     } else {
                         length * factor
                     };
-                    return Ok((end, self.keep(to)));
+                    return Ok((end, self.keep(to)?));
                 }
                 Attempt::Solved { error, unknown } => {
                     let factor = self.scratch.control.again(error);
@@ -312,6 +342,7 @@ impl<S: System + ?Sized> Run<'_, '_, S> {
             x0: &self.state.x,
             x1: self.scratch.stepper.end(),
             dense: self.scratch.stepper.dense(),
+            varied: None,
         };
         self.scratch
             .watch
@@ -339,12 +370,28 @@ impl<S: System + ?Sized> Run<'_, '_, S> {
     }
 
     /// Commits the step tried last and shows it.
-    fn keep(&mut self, to: f64) -> ControlFlow<()> {
+    fn keep(&mut self, to: f64) -> Result<ControlFlow<()>, MarchError> {
         let scratch = &mut *self.scratch;
         scratch.before.copy_from_slice(&self.state.x);
         self.state.x.copy_from_slice(scratch.stepper.end());
         let from = std::mem::replace(&mut self.state.time, to);
         scratch.stepper.lay();
+        if let Some(variations) = &mut self.variations {
+            let kept = Kept {
+                from,
+                length: to - from,
+                mode: &self.state.mode,
+                stages: scratch.stepper.stages(),
+                dense: scratch.stepper.dense(),
+            };
+            variations
+                .step(self.system, self.method, &kept)
+                .map_err(|singular| MarchError {
+                    time: to,
+                    unknown: Some(singular.column),
+                    cause: Trouble::Singular,
+                })?;
+        }
         scratch.stepper.keep();
         scratch.watch.keep();
         self.span
@@ -358,22 +405,30 @@ impl<S: System + ?Sized> Run<'_, '_, S> {
             x0: &scratch.before,
             x1: &self.state.x,
             dense: scratch.stepper.dense(),
+            varied: self
+                .variations
+                .as_ref()
+                .map(|variations| variations.varied(scratch.stepper.dense().points)),
         };
-        (self.observer)(&Advance::Step(&step))
+        Ok((self.observer)(&Advance::Step(&step)))
     }
 
     /// Takes an event and whatever follows from it at the same instant.
     fn take(&mut self, cause: Cause) -> Result<ControlFlow<()>, MarchError> {
         let scratch = &mut *self.scratch;
-        let changed = scratch.events.take(
-            self.system,
-            cause,
-            self.state,
-            &scratch.weights,
-            &mut scratch.watch,
-            self.counted,
-        )?;
-        let event = scratch.events.advance(self.state);
+        let company = Company {
+            weights: &scratch.weights,
+            watch: &mut scratch.watch,
+            variations: self.variations.as_deref_mut(),
+        };
+        let changed = scratch
+            .events
+            .take(self.system, cause, self.state, company, self.counted)?;
+        let moved = self
+            .variations
+            .as_ref()
+            .map(|variations| variations.moved());
+        let event = scratch.events.advance(self.state, moved);
         if changed {
             scratch.stepper.restart();
             scratch.control.restart();

@@ -19,6 +19,7 @@ pub mod statistics;
 pub mod system;
 pub mod tolerances;
 pub mod trouble;
+pub mod variations;
 
 pub use advance::{Advance, Step};
 pub use dense::Dense;
@@ -30,6 +31,7 @@ pub use statistics::Statistics;
 pub use system::{Cause, Evaluation, Point, System};
 pub use tolerances::Tolerances;
 pub use trouble::{MarchError, StartError, Trouble};
+pub use variations::{Moved, Shadows, Variations, Varied};
 
 #[cfg(test)]
 mod tests;

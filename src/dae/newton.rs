@@ -5,6 +5,7 @@
 //! largest entry in tolerances; from the ratio of two steps follows how far the solution still is.
 
 use super::pattern::Pattern;
+use super::start::Meeting;
 use super::statistics::Statistics;
 use super::system::{Evaluation, Point, System};
 use super::tolerances::{lags, largest, rounding};
@@ -52,6 +53,8 @@ pub(crate) struct Failure {
 pub(crate) struct Newton {
     pub matrix: Matrix<f64>,
     pub out: Evaluation,
+    /// Left by the last instant that was solved.
+    pub meeting: Meeting,
     step: Vec<f64>,
     step_before: Vec<f64>,
     rest: Vec<f64>,
@@ -66,6 +69,7 @@ impl Newton {
         Newton {
             matrix: Matrix::new(size, &pattern.starts, &pattern.rows, elimination),
             out: evaluation(size, pattern.len()),
+            meeting: Meeting::default(),
             step: vec![0.0; size],
             step_before: vec![0.0; size],
             rest: Vec::with_capacity(size),

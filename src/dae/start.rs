@@ -9,12 +9,12 @@ use crate::math::Elimination;
 
 /// Length [s] of the implicit Euler step that stands for an instant. A thousandth of a picosecond is short against
 /// every time constant of a lumped circuit.
-const INSTANT: f64 = 1e-15;
+pub(super) const INSTANT: f64 = 1e-15;
 /// The instant is lengthened up to so many seconds where the rounding of charges would show in x: the current that
 /// holds a farad at a source's voltage is uncertain by the charge's last digit over the instant.
-const LONGEST_INSTANT: f64 = 1e-7;
+pub(super) const LONGEST_INSTANT: f64 = 1e-7;
 /// Rounding may show by this share of a tolerance.
-const ROUNDING: f64 = 0.05;
+pub(super) const ROUNDING: f64 = 0.05;
 
 /// Rules for the instant's equation.
 const INSTANT_RULES: Rules = Rules {
@@ -105,7 +105,17 @@ pub fn consistent_start<S: System + ?Sized>(
     Ok(counted)
 }
 
-/// The work of [`consistent_start`] with memory from outside: `charge` is overwritten; `at.x` is not looked at.
+/// How charges met in an instant: what a derivative of it needs.
+#[derive(Clone, Debug, Default)]
+pub(crate) struct Meeting {
+    /// Reciprocal lengths [1/s] of its two steps.
+    pub rates: [f64; 2],
+    /// Unknowns after the first step.
+    pub x: Vec<f64>,
+}
+
+/// The work of [`consistent_start`] with memory from outside: `charge` is overwritten; `at.x` is not looked at; how the
+/// charges met is left in `newton.meeting`.
 pub(crate) fn instant<S: System + ?Sized>(
     system: &S,
     newton: &mut Newton,
@@ -117,7 +127,7 @@ pub(crate) fn instant<S: System + ?Sized>(
 ) -> Result<(), Failure> {
     let mut length = INSTANT;
     newton.forget();
-    for _ in 0..2 {
+    for round in 0..2 {
         loop {
             let rate = 1.0 / length;
             let rest = newton.rest(charge, -rate);
@@ -140,6 +150,12 @@ pub(crate) fn instant<S: System + ?Sized>(
         system.evaluate(Point { x, ..at }, false, &mut newton.out);
         counted.evaluations += 1;
         charge.copy_from_slice(&newton.out.q);
+        let meeting = &mut newton.meeting;
+        meeting.rates[round] = 1.0 / length;
+        if round == 0 {
+            meeting.x.clear();
+            meeting.x.extend_from_slice(x);
+        }
     }
     newton.forget();
     Ok(())

@@ -146,11 +146,11 @@ fn read(fields: &Fields<'_>, around: &Surroundings<'_>) -> Option<Made> {
 }
 
 impl Switch {
-    /// Logarithm of the conductance at a time.
+    /// Logarithm of the conductance at a time. Smooth at the arrival too, whose event ends it: derivatives look past it.
     fn logarithm(&self, time: f64, mode: &[f64]) -> f64 {
         match mode[STATE] {
-            OPENING => (mode[LEFT_FROM] - self.slope() * (time - mode[SINCE])).max(self.open),
-            CLOSING => (mode[LEFT_FROM] + self.slope() * (time - mode[SINCE])).min(self.closed),
+            OPENING => mode[LEFT_FROM] - self.slope() * (time - mode[SINCE]),
+            CLOSING => mode[LEFT_FROM] + self.slope() * (time - mode[SINCE]),
             CLOSED => self.closed,
             _ => self.open,
         }

@@ -279,6 +279,10 @@ impl<const S: usize> Collocation<S> {
         &self.stages[S * n..]
     }
 
+    pub fn stages(&self) -> &[f64] {
+        &self.stages
+    }
+
     pub fn lay(&mut self) {
         let n = self.defect.len();
         self.coefficients.copy_from_slice(&self.stages);

@@ -206,6 +206,10 @@ impl Diagonal {
         &self.stages[self.stages.len() - n..]
     }
 
+    pub fn stages(&self) -> &[f64] {
+        &self.stages
+    }
+
     pub fn lay(&mut self) {
         let n = self.charge.len();
         self.coefficients.fill(0.0);

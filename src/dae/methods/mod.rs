@@ -20,7 +20,10 @@ use super::system::{Point, System};
 use super::trouble::Trouble;
 use crate::math::Elimination;
 use collocation::Collocation;
+pub(crate) use coupled::Coupled;
 use diagonal::Diagonal;
+pub(crate) use radau_iia::Coefficients;
+pub(crate) use table::Polynomial;
 pub use table::Table;
 
 /// All methods; the first is the one that is taken unless another is asked for.
@@ -161,6 +164,15 @@ impl Stepper {
             Stepper::Diagonal(stepper) => stepper.end(),
             Stepper::Collocation3(stepper) => stepper.end(),
             Stepper::Collocation5(stepper) => stepper.end(),
+        }
+    }
+
+    /// Values at the start and at the stages of the step tried last, one row each.
+    pub fn stages(&self) -> &[f64] {
+        match self {
+            Stepper::Diagonal(stepper) => stepper.stages(),
+            Stepper::Collocation3(stepper) => stepper.stages(),
+            Stepper::Collocation5(stepper) => stepper.stages(),
         }
     }
 

@@ -5,3 +5,4 @@ mod hard;
 mod order;
 mod problems;
 mod starts;
+mod variations;

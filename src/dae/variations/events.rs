@@ -1,0 +1,512 @@
+//! An event, differentiated: its instant, its transition, the charges that pass through it and the instant after it.
+//!
+//! With the instant's derivative T, what was dq/dp at fixed time is dq + (dq/dt) T at the event itself, passes the
+//! transition, and is (…) - (dq/dt) T of the motion afterwards at fixed time again: the saltation of M. A. Aizerman and
+//! F. R. Gantmakher (1958; from memory). A guard gives T = -(dg/dp)/(dg/dt); the clock's instants are asked of the
+//! shadows.
+
+use super::Variations;
+use super::explicit::Explicit;
+use super::linear::multiply;
+use crate::dae::start::{INSTANT, LONGEST_INSTANT, Meeting, ROUNDING};
+use crate::dae::system::{Cause, Point, System};
+use crate::dae::tolerances::rounding;
+use crate::math::Singular;
+
+/// Share of a step by which instants may be shifted in finite differences of events.
+const OF_STEP: f64 = 0.05;
+/// Share of an unknown's scale, or of a mode's value, by which it may be shifted there.
+const OF_SCALE: f64 = 1e-5;
+/// Share of the last step for slopes along the motion.
+const ALONG: f64 = 1e-4;
+/// Share of the instant itself that such a shift must have, to stand above rounding where the last step was tiny.
+const OF_INSTANT: f64 = 1e-10;
+/// So many events of one instant are followed in a shadow.
+const MOST_AT_ONCE: usize = 64;
+
+/// An event that was taken.
+pub(crate) struct Taken<'a> {
+    pub cause: Cause,
+    /// Before it.
+    pub before: Point<'a>,
+    /// Unknowns after the transition, before the charges met.
+    pub jumped: &'a [f64],
+    /// After it.
+    pub after: Point<'a>,
+    /// How the charges met; None where nothing changed.
+    pub meeting: Option<&'a Meeting>,
+}
+
+/// The motion before an event.
+struct Motion {
+    /// dx/dt.
+    x: Vec<f64>,
+    /// dq/dt.
+    q: Vec<f64>,
+}
+
+impl<S: System + ?Sized> Variations<'_, S> {
+    /// Starts the columns at rest: charges stay as they are, f(x) = 0 moves with the parameters.
+    ///
+    /// # Errors
+    /// Where the state at rest is not determined.
+    pub fn start_at_rest(&mut self, system: &S, at: Point<'_>) -> Result<(), Singular> {
+        let explicit = self.explicit_at(system, at);
+        self.linear.at(system, at, 0.0, &mut self.counted)?;
+        for (x, f) in self.x.iter_mut().zip(&explicit.f) {
+            *x = -f;
+        }
+        let n = self.scales.len();
+        for x in self.x.chunks_exact_mut(n.max(1)) {
+            self.linear.solve(x, &mut self.counted);
+        }
+        self.finish(&explicit);
+        Ok(())
+    }
+
+    /// Starts the columns from given derivatives of the charges, one row per column; parameters' direct share in
+    /// them included.
+    ///
+    /// # Errors
+    /// Where charges and algebraic equations do not determine the state.
+    pub fn start_from_charges(
+        &mut self,
+        system: &S,
+        at: Point<'_>,
+        charges: &[f64],
+    ) -> Result<(), Singular> {
+        let explicit = self.explicit_at(system, at);
+        self.q.copy_from_slice(charges);
+        let mut length = INSTANT;
+        self.linear
+            .at(system, at, 1.0 / length, &mut self.counted)?;
+        while length < LONGEST_INSTANT && self.noise(at) > ROUNDING * OF_SCALE {
+            length *= 10.0;
+            self.linear.factor(1.0 / length, &mut self.counted)?;
+        }
+        for _ in 0..2 {
+            self.meet(&explicit);
+            self.finish(&explicit);
+        }
+        Ok(())
+    }
+
+    /// By what share of its scale an unknown moves when the charges' last digits do.
+    fn noise(&mut self, at: Point<'_>) -> f64 {
+        let mut charge = vec![0.0; at.x.len()];
+        multiply(
+            &self.linear.pattern,
+            &self.linear.out.dq,
+            &self.scales,
+            &mut charge,
+        );
+        let rate = self.linear.rate;
+        let mut v: Vec<f64> = charge
+            .iter()
+            .enumerate()
+            .map(|(row, charge)| rounding(row, rate * charge))
+            .collect();
+        self.linear.solve(&mut v, &mut self.counted);
+        let shares = v.iter().zip(&self.scales);
+        shares
+            .map(|(v, scale)| (v / scale).abs())
+            .fold(0.0, f64::max)
+    }
+
+    fn explicit_at(&mut self, system: &S, at: Point<'_>) -> Explicit {
+        let mut explicit = Explicit::default();
+        self.explicit(system, at, &mut explicit);
+        explicit
+    }
+
+    /// One implicit Euler step of an instant's length for every column, from dq to dx.
+    fn meet(&mut self, explicit: &Explicit) {
+        let rate = self.linear.rate;
+        for (k, x) in self.x.iter_mut().enumerate() {
+            *x = rate * (self.q[k] - explicit.q[k]) - explicit.f[k];
+        }
+        let n = self.scales.len();
+        for x in self.x.chunks_exact_mut(n.max(1)) {
+            self.linear.solve(x, &mut self.counted);
+        }
+    }
+
+    /// dq and df that belong to dx, with the slopes at hand.
+    fn finish(&mut self, explicit: &Explicit) {
+        let n = self.scales.len().max(1);
+        self.q.copy_from_slice(&explicit.q);
+        self.f.copy_from_slice(&explicit.f);
+        let charges = self.q.chunks_exact_mut(n).zip(self.f.chunks_exact_mut(n));
+        for (x, (q, f)) in self.x.chunks_exact(n).zip(charges) {
+            multiply(&self.linear.pattern, &self.linear.out.dq, x, q);
+            multiply(&self.linear.pattern, &self.linear.out.df, x, f);
+        }
+    }
+
+    /// The first event of an instant is about to be taken.
+    pub(crate) fn before_events(&mut self) {
+        self.x_before.copy_from_slice(&self.x);
+    }
+
+    /// Carries the columns over an event.
+    pub(crate) fn event(&mut self, system: &S, taken: &Taken<'_>) -> Result<(), Singular> {
+        self.last_shifts.copy_from_slice(&self.shifts);
+        let rate = taken
+            .meeting
+            .map_or(1.0 / INSTANT, |meeting| meeting.rates[1]);
+        let follows = taken.cause != Cause::Time && taken.before.time == self.last_event;
+        let mut motion = None;
+        if let (Cause::Guard(guard), false) = (taken.cause, follows) {
+            let before = self.motion(system, taken.before, rate)?;
+            self.guard_shifts(system, guard, taken.before, &before);
+            motion = Some(before);
+        } else if taken.cause == Cause::Time {
+            self.clock_shifts(system, taken);
+        }
+        let still = self.shifts.iter().all(|&shift| shift == 0.0);
+        if motion.is_none() && !still {
+            motion = Some(self.motion(system, taken.before, rate)?);
+        }
+        let jumps = taken.jumped != taken.before.x;
+        let held = jumps.then(|| (self.mode.clone(), self.explicit_at(system, taken.before)));
+        let moved = self.transitions(system, taken, motion.as_ref());
+        if let Some(motion) = &motion {
+            self.shift_charges(&motion.q, 1.0);
+        }
+        if let Some((modes, explicit)) = held {
+            let modes = std::mem::replace(&mut self.mode, modes);
+            self.jump(system, taken, motion.as_ref(), &moved, &explicit);
+            self.mode = modes;
+        }
+        self.differences.restart();
+        self.note_instants(taken);
+        self.turned = true;
+        self.last_event = taken.after.time;
+        match taken.meeting {
+            Some(meeting) => self.settle(system, taken.after, meeting, still),
+            None => {
+                if let Some(motion) = &motion {
+                    self.shift_charges(&motion.q, -1.0);
+                }
+                Ok(())
+            }
+        }
+    }
+
+    /// Adds `sign` dq/dt T to every column's dq.
+    fn shift_charges(&mut self, slope: &[f64], sign: f64) {
+        let n = slope.len().max(1);
+        for (q, shift) in self.q.chunks_exact_mut(n).zip(&self.shifts) {
+            for (q, slope) in q.iter_mut().zip(slope) {
+                *q += sign * slope * shift;
+            }
+        }
+    }
+
+    /// The instant after an event: at fixed time again, charges first, then the rest.
+    fn settle(
+        &mut self,
+        system: &S,
+        after: Point<'_>,
+        meeting: &Meeting,
+        still: bool,
+    ) -> Result<(), Singular> {
+        let [first, second] = meeting.rates;
+        self.linear.at(system, after, second, &mut self.counted)?;
+        if !still {
+            let slope = self.linear.charge_slope(&mut self.counted);
+            self.shift_charges(&slope, -1.0);
+        }
+        let explicit = self.explicit_at(system, after);
+        let met = Point {
+            x: &meeting.x,
+            ..after
+        };
+        if meeting.x != after.x || first != second {
+            self.linear.at(system, met, first, &mut self.counted)?;
+            let at_meeting = self.explicit_at(system, met);
+            self.meet(&at_meeting);
+            self.finish(&at_meeting);
+            self.linear.at(system, after, second, &mut self.counted)?;
+        } else {
+            self.meet(&explicit);
+            self.finish(&explicit);
+        }
+        self.meet(&explicit);
+        self.finish(&explicit);
+        Ok(())
+    }
+
+    /// dx/dt and dq/dt at a point, algebraic unknowns included.
+    fn motion(&mut self, system: &S, at: Point<'_>, rate: f64) -> Result<Motion, Singular> {
+        self.linear.at(system, at, rate, &mut self.counted)?;
+        let q = self.linear.charge_slope(&mut self.counted);
+        let by_time = self.slope_by_time(system, at);
+        let mut charge = q.clone();
+        let mut x = vec![0.0; q.len()];
+        for _ in 0..2 {
+            for ((x, q), f) in x.iter_mut().zip(&charge).zip(&by_time) {
+                *x = rate * q - f;
+            }
+            self.linear.solve(&mut x, &mut self.counted);
+            charge.fill(0.0);
+            multiply(&self.linear.pattern, &self.linear.out.dq, &x, &mut charge);
+        }
+        Ok(Motion { x, q })
+    }
+
+    /// A time [s] that is short against the motion and stands above rounding.
+    fn along(&self, time: f64) -> f64 {
+        (ALONG * self.length)
+            .max(OF_INSTANT * time.abs())
+            .max(INSTANT)
+    }
+
+    /// df/dt at fixed x, by a central difference.
+    fn slope_by_time(&mut self, system: &S, at: Point<'_>) -> Vec<f64> {
+        let shift = self.along(at.time);
+        let times = [at.time + shift, at.time - shift];
+        let [more, less] = times.map(|time| {
+            let mut out = crate::dae::newton::evaluation(at.x.len(), self.linear.pattern.len());
+            system.evaluate(Point { time, ..at }, false, &mut out);
+            out.f
+        });
+        self.counted.evaluations += 2;
+        let between = times[0] - times[1];
+        if between == 0.0 {
+            return vec![0.0; at.x.len()];
+        }
+        let pairs = more.iter().zip(&less);
+        pairs.map(|(more, less)| (more - less) / between).collect()
+    }
+
+    /// The finite shift of a column's parameter: its shadows', or one that moves nothing far.
+    fn reach(&self, column: usize, moved: Option<&[f64]>) -> f64 {
+        if let Some(shadows) = &self.columns[column] {
+            return shadows.step;
+        }
+        let n = self.scales.len();
+        let modes = self.differences.modes();
+        let x = moved.unwrap_or(&self.x[column * n..(column + 1) * n]);
+        let unknowns = x
+            .iter()
+            .zip(&self.scales)
+            .map(|(x, scale)| x.abs() / (OF_SCALE * scale));
+        let row = &self.mode[column * modes..(column + 1) * modes];
+        let instants = row
+            .iter()
+            .zip(&self.differences.instants)
+            .filter(|(_, instant)| **instant)
+            .map(|(mode, _)| mode.abs())
+            .fold(self.shifts[column].abs(), f64::max)
+            / (OF_STEP * self.length.max(INSTANT));
+        let most = unknowns.fold(instants, f64::max);
+        if most > 0.0 { 1.0 / most } else { 1.0 }
+    }
+
+    /// A shadow and the modes there; `sign` is 1 or -1.
+    fn shadow<'s>(
+        &'s self,
+        system: &'s S,
+        column: usize,
+        mode: &[f64],
+        shift: f64,
+    ) -> (&'s S, Vec<f64>) {
+        let modes = mode.len();
+        let own = match &self.columns[column] {
+            Some(shadows) if shift > 0.0 => shadows.more,
+            Some(shadows) => shadows.less,
+            None => system,
+        };
+        let row = &self.mode[column * modes..(column + 1) * modes];
+        let mode = mode
+            .iter()
+            .zip(row)
+            .map(|(mode, slope)| mode + shift * slope);
+        (own, mode.collect())
+    }
+
+    /// T of a guard's event.
+    fn guard_shifts(&mut self, system: &S, guard: usize, at: Point<'_>, motion: &Motion) {
+        let mut out = vec![0.0; system.guard_size()];
+        let mut look = |system: &S, time: f64, x: &[f64], mode: &[f64]| {
+            system.guards(Point { time, x, mode }, &mut out);
+            out[guard]
+        };
+        let moved = |x: &[f64], by: &[f64], shift: f64| -> Vec<f64> {
+            x.iter().zip(by).map(|(x, by)| x + shift * by).collect()
+        };
+        let along = self.along(at.time);
+        let (late, early) = (at.time + along, at.time - along);
+        let rise = look(
+            system,
+            late,
+            &moved(at.x, &motion.x, late - at.time),
+            at.mode,
+        ) - look(
+            system,
+            early,
+            &moved(at.x, &motion.x, early - at.time),
+            at.mode,
+        );
+        let rise = rise / (late - early);
+        for column in 0..self.columns.len() {
+            let reach = self.reach(column, None);
+            let [more, less] = [reach, -reach].map(|shift| {
+                let (shadow, mode) = self.shadow(system, column, at.mode, shift);
+                look(shadow, at.time, &moved(at.x, self.x(column), shift), &mode)
+            });
+            // A guard that does not rise along the motion has no instant that moves smoothly.
+            self.shifts[column] = if rise > 0.0 {
+                -(more - less) / (2.0 * reach * rise)
+            } else {
+                0.0
+            };
+        }
+    }
+
+    /// T of a clock's event.
+    fn clock_shifts(&mut self, system: &S, taken: &Taken<'_>) {
+        let limit = self.limit(system, taken);
+        for column in 0..self.columns.len() {
+            let reach = self.reach(column, None);
+            let [more, less] = [reach, -reach].map(|shift| {
+                let (shadow, mode) = self.shadow(system, column, taken.before.mode, shift);
+                shadow.next_event(self.last_event_of(column, shift), &mode)
+            });
+            self.shifts[column] = if more <= limit && less <= limit {
+                (more - less) / (2.0 * reach)
+            } else {
+                0.0
+            };
+        }
+    }
+
+    /// Events of a shadow up to here belong to the event at hand: half-way to the next one.
+    fn limit(&self, system: &S, taken: &Taken<'_>) -> f64 {
+        let time = taken.after.time;
+        let next = system.next_event(time, taken.after.mode);
+        time + 0.5 * (next - time)
+    }
+
+    /// Takes the transition in every column's shadows: d(mode)/dp afterwards; for the unknowns the derivatives of
+    /// those that jump are returned, one row per column.
+    fn transitions(&mut self, system: &S, taken: &Taken<'_>, motion: Option<&Motion>) -> Vec<f64> {
+        let n = self.scales.len();
+        let modes = self.differences.modes();
+        let limit = self.limit(system, taken);
+        let mut jumped = vec![0.0; self.columns.len() * n];
+        let mut rows = vec![0.0; self.mode.len()];
+        for column in 0..self.columns.len() {
+            let mut slope = self.x(column).to_vec();
+            if let Some(motion) = motion {
+                for (slope, x) in slope.iter_mut().zip(&motion.x) {
+                    *slope += x * self.shifts[column];
+                }
+            }
+            let reach = self.reach(column, Some(&slope));
+            let [more, less] = [reach, -reach].map(|shift| {
+                let (shadow, mut mode) = self.shadow(system, column, taken.before.mode, shift);
+                let mut x: Vec<f64> = taken
+                    .before
+                    .x
+                    .iter()
+                    .zip(&slope)
+                    .map(|(x, slope)| x + shift * slope)
+                    .collect();
+                let instant = taken.before.time + shift * self.shifts[column];
+                if taken.cause == Cause::Time {
+                    let mut next = shadow.next_event(self.last_event_of(column, shift), &mode);
+                    for _ in 0..MOST_AT_ONCE {
+                        if next > limit {
+                            break;
+                        }
+                        shadow.transition(Cause::Time, next, &mut x, &mut mode);
+                        next = shadow.next_event(next, &mode);
+                    }
+                } else {
+                    shadow.transition(taken.cause, instant, &mut x, &mut mode);
+                }
+                (x, mode)
+            });
+            for row in 0..n {
+                jumped[column * n + row] = if taken.jumped[row] == taken.before.x[row] {
+                    slope[row]
+                } else {
+                    (more.0[row] - less.0[row]) / (2.0 * reach)
+                };
+            }
+            for slot in 0..modes {
+                let (more, less, held) = (more.1[slot], less.1[slot], taken.after.mode[slot]);
+                let lopsided = (more + less - 2.0 * held).abs() > 0.1 * (more - less).abs();
+                let rounded = (more + less - 2.0 * held).abs() <= 1e-12 * held.abs();
+                rows[column * modes + slot] = if lopsided && !rounded {
+                    0.0
+                } else {
+                    (more - less) / (2.0 * reach)
+                };
+            }
+        }
+        self.mode = rows;
+        jumped
+    }
+
+    /// The instant of a shadow's last event.
+    fn last_event_of(&self, column: usize, shift: f64) -> f64 {
+        self.last_event + shift * self.last_shifts[column]
+    }
+
+    /// Charges carried along by unknowns that jump: C(x') dx' - C(x) dx more than before.
+    fn jump(
+        &mut self,
+        system: &S,
+        taken: &Taken<'_>,
+        motion: Option<&Motion>,
+        jumped: &[f64],
+        before: &Explicit,
+    ) {
+        let n = self.scales.len().max(1);
+        let mode = taken.before.mode;
+        let at = Point {
+            time: taken.after.time,
+            x: taken.jumped,
+            mode,
+        };
+        let after = self.explicit_at(system, at);
+        let mut outs = [taken.before, at].map(|at| {
+            let mut out = crate::dae::newton::evaluation(n, self.linear.pattern.len());
+            system.evaluate(at, true, &mut out);
+            out
+        });
+        self.counted.evaluations += 2;
+        outs[0].dq.iter_mut().for_each(|slope| *slope = -*slope);
+        for column in 0..self.columns.len() {
+            let rows = column * n..(column + 1) * n;
+            let mut slope = self.x[rows.clone()].to_vec();
+            if let Some(motion) = motion {
+                for (slope, x) in slope.iter_mut().zip(&motion.x) {
+                    *slope += x * self.shifts[column];
+                }
+            }
+            let q = &mut self.q[rows.clone()];
+            for (q, (after, before)) in q
+                .iter_mut()
+                .zip(after.q[rows.clone()].iter().zip(&before.q[rows.clone()]))
+            {
+                *q += after - before;
+            }
+            multiply(&self.linear.pattern, &outs[0].dq, &slope, q);
+            multiply(&self.linear.pattern, &outs[1].dq, &jumped[rows], q);
+        }
+    }
+
+    /// Which mode entries hold an instant now.
+    fn note_instants(&mut self, taken: &Taken<'_>) {
+        let changes = taken.before.mode.iter().zip(taken.after.mode);
+        for (instant, (before, after)) in self.differences.instants.iter_mut().zip(changes) {
+            if before != after {
+                *instant = *after == taken.after.time;
+            }
+        }
+    }
+}

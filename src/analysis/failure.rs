@@ -21,6 +21,8 @@ pub enum Failure {
         /// Simulated time reached [s].
         time: f64,
     },
+    /// Somebody stopped it before there was a result.
+    Interrupted,
 }
 
 impl Failure {

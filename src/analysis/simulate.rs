@@ -60,15 +60,26 @@ const PILOT: f64 = 1e-2;
 impl Simulation<'_> {
     /// Finds the swings of all unknowns by a quick pilot run.
     pub fn pilot(&self, wishes: Vec<Wish>) -> Result<Vec<f64>, Failure> {
+        let (scales, _) = self.pilot_watched(wishes, &mut |_| ControlFlow::Continue(()))?;
+        Ok(scales)
+    }
+
+    /// The same, told to somebody who may stop it: simulated time [s]. The swings are then those found so far.
+    pub fn pilot_watched(
+        &self,
+        wishes: Vec<Wish>,
+        watch: &mut dyn FnMut(f64) -> ControlFlow<()>,
+    ) -> Result<(Vec<f64>, Ending), Failure> {
         let mut swings = Swings::new(self.circuit.unknowns.len(), wishes);
         let loose = self.pilot_tolerances();
-        self.run(&loose, &mut |_, shown, log| {
-            if let Shown::Step(step) = shown {
+        let (_, ending) = self.run(&loose, &mut |_, shown, log| match shown {
+            Shown::Step(step) => {
                 swings.step(step, log);
+                watch(step.to)
             }
-            ControlFlow::Continue(())
+            Shown::Start(_) | Shown::Event { .. } => ControlFlow::Continue(()),
         })?;
-        Ok(swings.scales(self.circuit))
+        Ok((swings.scales(self.circuit), ending))
     }
 
     /// Tolerances of the pilot run: relative, above a floor that is small for what it measures.

@@ -29,6 +29,8 @@ const LEAST_OF_MEASURE: f64 = 1e-4;
 #[derive(Clone, Debug)]
 pub struct Swings {
     wishes: Vec<Wish>,
+    /// Beginning and end of each wish's window [s] as soon as they are known.
+    bounds: Vec<(Option<f64>, Option<f64>)>,
     whole: Range,
     windows: Vec<Range>,
     middle: Vec<f64>,
@@ -65,6 +67,7 @@ impl Swings {
     pub fn new(size: usize, wishes: Vec<Wish>) -> Self {
         let windows = vec![Range::new(size); wishes.len()];
         Swings {
+            bounds: vec![(None, None); wishes.len()],
             wishes,
             whole: Range::new(size),
             windows,
@@ -78,18 +81,16 @@ impl Swings {
         for x in [step.x0, &self.middle, step.x1] {
             self.whole.take(x);
         }
-        for (wish, range) in self.wishes.iter().zip(&mut self.windows) {
-            let from = wish
-                .window
-                .from
-                .as_ref()
-                .map_or(Some(0.0), |instant| instant.time(log));
-            let to = wish
-                .window
-                .to
-                .as_ref()
-                .and_then(|instant| instant.time(log))
-                .unwrap_or(f64::INFINITY);
+        let windows = self.wishes.iter().zip(&mut self.bounds);
+        for ((wish, (from, to)), range) in windows.zip(&mut self.windows) {
+            let Window {
+                from: begins,
+                to: ends,
+            } = &wish.window;
+            // A log does not keep every event for ever.
+            *from = from.or_else(|| begins.as_ref().map_or(Some(0.0), |begin| begin.time(log)));
+            *to = to.or_else(|| ends.as_ref().and_then(|end| end.time(log)));
+            let to = to.unwrap_or(f64::INFINITY);
             if from.is_some_and(|from| step.from >= from) && step.to <= to {
                 for x in [step.x0, &self.middle, step.x1] {
                     range.take(x);

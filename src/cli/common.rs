@@ -78,6 +78,10 @@ impl Source {
     pub fn fail_simulation(&self, failure: &Failure, netlist: &Netlist) -> u8 {
         let (code, diagnostic) = match failure {
             Failure::Refused(diagnostic) => (exit::WRONG, (**diagnostic).clone()),
+            Failure::Interrupted => (
+                exit::INTERRUPTED,
+                Diagnostic::error("interrupted", "interrupted before there was a result"),
+            ),
             Failure::Stopped {
                 headline,
                 help,

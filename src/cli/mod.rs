@@ -3,6 +3,7 @@
 mod check;
 mod coil;
 mod common;
+mod interrupt;
 mod progress;
 mod run;
 mod size;
@@ -22,6 +23,8 @@ pub mod exit {
     pub const INCOMPLETE: u8 = 3;
     /// A file or folder could not be read or written.
     pub const FILES: u8 = 4;
+    /// The person interrupted it.
+    pub const INTERRUPTED: u8 = 130;
 }
 
 /// How high an interrupted coil kicks, how fast it lets go, and which part tames it.

@@ -2,11 +2,11 @@
 
 use super::common::{self, Source};
 use super::exit;
+use super::interrupt::Interrupt;
 use super::progress::Progress;
 use crate::report::files::{self, FileError, write};
 use crate::report::{chart, plots, run};
-use crate::run::{Netlist, Outcome};
-use std::ops::ControlFlow;
+use crate::run::{Netlist, Outcome, Request, Stage};
 use std::path::{Path, PathBuf};
 
 /// Arguments of `run`.
@@ -17,6 +17,9 @@ pub struct Arguments {
     /// Writes plots (SVG and PNG), waveforms (CSV) and the result (JSON) to this folder
     #[arg(long, value_name = "DIR")]
     out: Option<PathBuf>,
+    /// Repeats the run at a tenth of the accuracy and states the numerical error of each reading
+    #[arg(long)]
+    verify: bool,
 }
 
 /// Runs the command.
@@ -26,10 +29,14 @@ pub fn main(arguments: &Arguments) -> u8 {
         Ok(netlist) => netlist,
         Err(code) => return code,
     };
-    let mut progress = Progress::new("simulating");
-    let result = crate::run::run(&netlist, &mut |time, duration| {
-        progress.show(time / duration, &crate::report::engineering::duration(time));
-        ControlFlow::Continue(())
+    let request = Request {
+        verify: arguments.verify,
+    };
+    let interrupt = Interrupt::listen();
+    let mut progress = Progress::new();
+    let result = crate::run::perform(&netlist, &request, &mut |stage, time, duration| {
+        progress.show(words(stage), time / duration, &so_far(time, duration));
+        interrupt.flow()
     });
     drop(progress);
     let outcome = match result {
@@ -53,11 +60,28 @@ pub fn main(arguments: &Arguments) -> u8 {
             ));
         }
     }
-    if outcome.holds() {
+    if outcome.interrupted() {
+        exit::INTERRUPTED
+    } else if outcome.holds() {
         exit::DONE
     } else {
         exit::FAILS
     }
+}
+
+/// What a run is at, for people.
+fn words(stage: Stage) -> &'static str {
+    match stage {
+        Stage::Swings => "looking how far everything swings",
+        Stage::Run => "simulating",
+        Stage::Verification => "simulating at a tenth of the accuracy",
+    }
+}
+
+/// Simulated time and duration, for people.
+fn so_far(time: f64, duration: f64) -> String {
+    use crate::report::engineering::duration as span;
+    format!("{} of {}", span(time), span(duration))
 }
 
 /// Leaves everything that a run gives in a folder.

@@ -2,6 +2,7 @@
 
 use super::common::{self, Source};
 use super::exit;
+use super::interrupt::Interrupt;
 use super::progress::Progress;
 use super::run::draw;
 use crate::report::files::{self, FileError, write};
@@ -27,8 +28,12 @@ pub fn main(arguments: &Arguments) -> u8 {
         Ok(netlist) => netlist,
         Err(code) => return code,
     };
-    let mut progress = Progress::new("sizing");
-    let result = crate::sizing::size(&netlist, &mut |done, remark| progress.show(done, remark));
+    let interrupt = Interrupt::listen();
+    let mut progress = Progress::new();
+    let result = crate::sizing::size(&netlist, &mut |done, remark| {
+        progress.show("sizing", done, remark);
+        interrupt.flow()
+    });
     drop(progress);
     let comparison = match result {
         Ok(comparison) => comparison,

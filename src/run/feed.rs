@@ -10,13 +10,13 @@ use crate::circuit::Circuit;
 use crate::dae::{Point, Step};
 use crate::limits::{RatingMeter, RatingUse};
 use crate::readings::{Outcome as Found, Taking};
-use crate::signals::{EventLog, Rated, Recorder};
+use crate::signals::{EventLog, Happening, Owner, Rated, Recorder};
 
 /// What a run keeps besides readings and ratings.
 #[derive(Clone, Copy, Debug)]
 pub struct Keeps<'a> {
-    /// Instant [s] from which waveforms are kept; None for no waveform at all.
-    pub waveforms_from: Option<f64>,
+    /// Instants [s] from which waveforms are kept, and to which the run goes; None for no waveform at all.
+    pub waveforms: Option<(f64, f64)>,
     /// Elements whose account is kept, by index; None for all.
     pub accounts: Option<&'a [usize]>,
 }
@@ -28,7 +28,10 @@ pub struct Feed {
     readings: Vec<(usize, Taking)>,
     ratings: Vec<Metered>,
     recorder: Option<Recorder>,
-    recorded: usize,
+    /// Signals that are recorded, and the instant [s] from which on.
+    recorded: (usize, f64),
+    /// Switches whose first opening has been recorded.
+    opened: Vec<usize>,
     accounts: Option<Vec<usize>>,
     keeper: Option<LedgerKeeper>,
     last: Last,
@@ -98,16 +101,17 @@ impl Feed {
                 )
             })
             .collect();
-        if keeps.waveforms_from.is_some() {
+        if keeps.waveforms.is_some() {
             signals.add_unasked(circuit);
         }
         let recorder = keeps
-            .waveforms_from
-            .map(|from| Recorder::new(signals.named(), from));
+            .waveforms
+            .map(|(from, until)| Recorder::new(signals.named(), from, until));
         Feed {
             readings,
             recorder,
-            recorded: signals.len(),
+            recorded: (signals.len(), keeps.waveforms.map_or(0.0, |(from, _)| from)),
+            opened: Vec::new(),
             ratings: metered(circuit, &mut signals),
             signals,
             accounts: keeps.accounts.map(<[usize]>::to_vec),
@@ -133,19 +137,34 @@ impl Feed {
                 after, happened, ..
             } => {
                 for (entry, what) in happened {
-                    for metered in self
-                        .ratings
-                        .iter_mut()
-                        .filter(|metered| metered.entry == *entry)
-                    {
-                        metered.meter.happened(*what, after.time);
-                    }
+                    self.happened(circuit, *entry, *what, after.time);
                 }
                 self.last.keep(after);
-                self.log = log.clone();
             }
         }
         self.last.time
+    }
+
+    fn happened(&mut self, circuit: &Circuit, entry: usize, what: Happening, time: f64) {
+        let ratings = self.ratings.iter_mut();
+        for metered in ratings.filter(|metered| metered.entry == entry) {
+            metered.meter.happened(what, time);
+        }
+        let Some(recorder) = &mut self.recorder else {
+            return;
+        };
+        if time < self.recorded.1 {
+            return;
+        }
+        let owner = Owner {
+            element: circuit.entries[entry].name.clone(),
+            winding: None,
+        };
+        self.log.note(&owner, what, time);
+        if what == Happening::Opens && !self.opened.contains(&entry) {
+            self.opened.push(entry);
+            recorder.look_closely();
+        }
     }
 
     fn step(&mut self, circuit: &Circuit, step: &Step<'_>, log: &EventLog) {
@@ -157,7 +176,7 @@ impl Feed {
             metered.meter.feed(&self.signals.piece(metered.signal));
         }
         if let Some(recorder) = &mut self.recorder {
-            recorder.step(step.from, step.to, self.signals.first(self.recorded));
+            recorder.step(step.from, step.to, self.signals.first(self.recorded.0));
         }
         if let Some(keeper) = &mut self.keeper {
             keeper.step(circuit, step);

@@ -12,6 +12,7 @@ mod obvious;
 mod outcome;
 mod repeated;
 mod results;
+mod verify;
 mod watched;
 
 pub use cautions::coils as coil_cautions;
@@ -22,22 +23,58 @@ pub use repeated::{Figures, RatingFigure, again, pilot};
 
 use crate::analysis::{Analysis, Failure, Settings, Simulation, Transient, Wish};
 use crate::circuit::{Circuit, Tap};
-use crate::dae::{Method, Point};
+use crate::dae::{Ending, Method, Point};
 use crate::elements::Unknown;
 use feed::{Feed, Keeps};
 use std::ops::ControlFlow;
 
-/// Told while a run goes on: simulated time and duration [s]; may stop it.
+/// What is asked of a run besides what its netlist asks.
+#[derive(Clone, Debug, Default)]
+pub struct Request {
+    /// Repeat it at a tenth of the accuracy and state the numerical error of each reading.
+    pub verify: bool,
+}
+
+/// What a run is at.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Stage {
+    /// The quick run that finds how far everything swings.
+    Swings,
+    /// The run itself.
+    Run,
+    /// The repetition at a tenth of the accuracy.
+    Verification,
+}
+
+/// Told while a run goes on: simulated time and duration [s]; may stop it. The quick run before it is told too.
 pub type Progress<'a> = dyn FnMut(f64, f64) -> ControlFlow<()> + 'a;
+
+/// Told while a run goes on: what it is at, simulated time and duration of that [s]; may stop it.
+pub type Watch<'a> = dyn FnMut(Stage, f64, f64) -> ControlFlow<()> + 'a;
 
 /// Runs a netlist at the values in force.
 ///
 /// # Errors
 /// A simulation that could not be completed.
 pub fn run(netlist: &Netlist, progress: &mut Progress<'_>) -> Result<Outcome, Failure> {
+    perform(netlist, &Request::default(), &mut |_, time, duration| {
+        progress(time, duration)
+    })
+}
+
+/// Runs a netlist at the values in force, with further wishes. A run that was stopped is an outcome of what was
+/// simulated until then.
+///
+/// # Errors
+/// A simulation that could not be completed, or was stopped before it began.
+pub fn perform(
+    netlist: &Netlist,
+    request: &Request,
+    watch: &mut Watch<'_>,
+) -> Result<Outcome, Failure> {
     match &netlist.analysis {
         Analysis::OperatingPoint => at_rest(netlist),
-        Analysis::Transient(transient) => over_time(netlist, transient, progress),
+        Analysis::Transient(transient) => over_time(netlist, transient, request, watch),
     }
 }
 
@@ -63,7 +100,8 @@ fn settings(circuit: &Circuit, transient: &Transient) -> Settings {
 fn over_time(
     netlist: &Netlist,
     transient: &Transient,
-    progress: &mut Progress<'_>,
+    request: &Request,
+    watch: &mut Watch<'_>,
 ) -> Result<Outcome, Failure> {
     let circuit = &netlist.circuit;
     let settings = settings(circuit, transient);
@@ -72,17 +110,33 @@ fn over_time(
         settings,
         method: method(),
     };
-    let scales = simulation.pilot(wishes(netlist))?;
+    let duration = settings.duration;
+    let (scales, found) = simulation.pilot_watched(wishes(netlist), &mut |time| {
+        watch(Stage::Swings, time, duration)
+    })?;
+    if found == Ending::Stopped {
+        return Err(Failure::Interrupted);
+    }
     let keeps = Keeps {
-        waveforms_from: Some(circuit.values()[transient.record_from]),
+        waveforms: Some((circuit.values()[transient.record_from], duration)),
         accounts: None,
     };
     let mut feed = Feed::new(netlist, keeps);
     let (counted, ending) = simulation.run_scaled(&scales, &mut |circuit, shown, log| {
-        let time = feed.take(circuit, shown, log);
-        progress(time, settings.duration)
+        watch(Stage::Run, feed.take(circuit, shown, log), duration)
     })?;
-    Ok(feed.finish(netlist, settings.duration, Work { counted, ending }))
+    let mut outcome = feed.finish(netlist, duration, Work { counted, ending });
+    if request.verify && ending == Ending::Reached {
+        let repeated = verify::Repeated {
+            netlist,
+            simulation: &simulation,
+            scales: &scales,
+        };
+        repeated.verify(&mut outcome, &mut |time| {
+            watch(Stage::Verification, time, duration)
+        })?;
+    }
+    Ok(outcome)
 }
 
 fn at_rest(netlist: &Netlist) -> Result<Outcome, Failure> {

@@ -31,6 +31,10 @@ pub struct ReadingResult {
     pub time: Option<f64>,
     /// Why there is no value.
     pub remark: Option<&'static str>,
+    /// Numerical error of the value [SI], where it was verified.
+    pub error: Option<f64>,
+    /// Numerical error of the instant [s], where it was verified.
+    pub time_error: Option<f64>,
 }
 
 /// One limit's result.
@@ -59,6 +63,15 @@ pub struct RatingResult {
     pub kind: Kind,
     /// Stress, rated value, used share and instant.
     pub used: RatingUse,
+    /// Numerical error of the stress [SI], where it was verified.
+    pub error: Option<f64>,
+}
+
+impl RatingResult {
+    /// `ELEMENT.RATING`, as limits name it.
+    pub fn path(&self) -> String {
+        format!("{}.{}", self.element, self.rating)
+    }
 }
 
 /// What a run came to.
@@ -101,6 +114,11 @@ impl Outcome {
     pub fn holds(&self) -> bool {
         self.limits.iter().all(|limit| limit.verdict.holds)
             && self.ratings.iter().all(|rating| rating.used.holds())
+    }
+
+    /// True where somebody stopped the run before its end: everything is over what was simulated until then.
+    pub fn interrupted(&self) -> bool {
+        self.work.is_some_and(|work| work.ending == Ending::Stopped)
     }
 
     /// A recorded waveform by its phrase.

@@ -4,6 +4,7 @@
 use super::feed::{Feed, Keeps};
 use super::{Netlist, Work, method, settings, wishes};
 use crate::analysis::{Account, Analysis, Failure, Simulation};
+use crate::dae::Ending;
 use crate::limits::RatingUse;
 use crate::readings;
 use crate::signals::Rated;
@@ -44,24 +45,43 @@ pub fn pilot(netlist: &Netlist) -> Result<Vec<f64>, Failure> {
     }
 }
 
-/// Runs a transient at the values in force with known scales. `accounts` are the elements whose energy is counted.
+/// Runs a transient at the values in force with known scales. `accounts` are the elements whose energy is counted;
+/// `watch` is told the simulated time [s] and may stop it.
 ///
 /// # Errors
-/// A simulation that could not be completed.
+/// A simulation that could not be completed, or was stopped.
 ///
 /// # Panics
 /// Where the netlist's analysis is no transient: the caller has written it.
-pub fn again(netlist: &Netlist, scales: &[f64], accounts: &[usize]) -> Result<Figures, Failure> {
+pub fn again(
+    netlist: &Netlist,
+    scales: &[f64],
+    accounts: &[usize],
+    watch: &mut dyn FnMut(f64) -> ControlFlow<()>,
+) -> Result<Figures, Failure> {
     let simulation = simulation(netlist).expect("only a transient is run again and again");
+    figures(netlist, &simulation, scales, accounts, watch)
+}
+
+/// The figures of one simulation of a netlist.
+pub(super) fn figures(
+    netlist: &Netlist,
+    simulation: &Simulation<'_>,
+    scales: &[f64],
+    accounts: &[usize],
+    watch: &mut dyn FnMut(f64) -> ControlFlow<()>,
+) -> Result<Figures, Failure> {
     let keeps = Keeps {
-        waveforms_from: None,
+        waveforms: None,
         accounts: Some(accounts),
     };
     let mut feed = Feed::new(netlist, keeps);
     let (counted, ending) = simulation.run_scaled(scales, &mut |circuit, shown, log| {
-        feed.take(circuit, shown, log);
-        ControlFlow::Continue(())
+        watch(feed.take(circuit, shown, log))
     })?;
+    if ending == Ending::Stopped {
+        return Err(Failure::Interrupted);
+    }
     Ok(feed.figures(&netlist.circuit, Work { counted, ending }))
 }
 

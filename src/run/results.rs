@@ -98,6 +98,8 @@ fn reading_result(name: &str, found: &Found) -> ReadingResult {
         kind: found.kind,
         time,
         remark: found.remark,
+        error: None,
+        time_error: None,
     }
 }
 
@@ -108,6 +110,7 @@ pub fn rating_result(circuit: &Circuit, metered: &Metered) -> RatingResult {
         rating: metered.rated.rating.key.to_owned(),
         kind: metered.rated.rating.kind,
         used: metered.used(circuit),
+        error: None,
     }
 }
 

@@ -2,7 +2,7 @@
 
 use super::phrase::Owner;
 use super::words::{Family, PhraseError, matched, refuse};
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, VecDeque};
 use std::fmt;
 
 /// What happens at a switch or contact.
@@ -83,12 +83,50 @@ impl fmt::Display for EventPhrase {
     }
 }
 
+/// Instants that a log keeps of what one element does again and again: so many first and so many latest ones. Who waits
+/// for an event looks step by step and sees it among the latest.
+const KEPT: usize = 1_000;
+
 /// Events that have happened so far, in order of time. An event is logged before any piece that starts at its
-/// instant is handed on.
+/// instant is handed on. Of a switch that never rests the log keeps the first and the latest events alone.
 #[derive(Clone, Debug, Default)]
 pub struct EventLog {
     /// Openings and closings of each element.
-    instants: BTreeMap<Owner, [Vec<f64>; 2]>,
+    instants: BTreeMap<Owner, [Instants; 2]>,
+}
+
+/// The first and the latest instants of one kind of event.
+#[derive(Clone, Debug, Default)]
+struct Instants {
+    count: usize,
+    first: Vec<f64>,
+    latest: VecDeque<f64>,
+}
+
+impl Instants {
+    fn note(&mut self, time: f64) {
+        self.count += 1;
+        if self.first.len() < KEPT {
+            self.first.push(time);
+            return;
+        }
+        if self.latest.len() == KEPT {
+            self.latest.pop_front();
+        }
+        self.latest.push_back(time);
+    }
+
+    /// The instant of a number from 0; None where it has not happened or is forgotten.
+    fn get(&self, number: usize) -> Option<f64> {
+        let forgotten = self.count - self.first.len() - self.latest.len();
+        let behind = || number.checked_sub(self.first.len() + forgotten);
+        let first = self.first.get(number);
+        first.or_else(|| self.latest.get(behind()?)).copied()
+    }
+
+    fn kept(&self) -> impl Iterator<Item = f64> {
+        self.first.iter().chain(&self.latest).copied()
+    }
 }
 
 impl EventLog {
@@ -98,34 +136,32 @@ impl EventLog {
             self.instants.insert(element.clone(), Default::default());
         }
         if let Some(times) = self.instants.get_mut(element) {
-            times[happening as usize].push(time);
+            times[happening as usize].note(time);
         }
     }
 
-    /// When a named event happened [s]; None as long as it has not.
+    /// When a named event happened [s]; None as long as it has not, and again once it is forgotten.
     pub fn when(&self, event: &EventPhrase) -> Option<f64> {
         let which = usize::try_from(event.count).ok()?.checked_sub(1)?;
-        self.all(&event.element, event.happening)
-            .get(which)
-            .copied()
+        let times = self.instants.get(&event.element)?;
+        times[event.happening as usize].get(which)
     }
 
-    /// Every time [s] that an element did this, in order.
-    pub fn all(&self, element: &Owner, happening: Happening) -> &[f64] {
+    /// Every time [s] kept at which an element did this, in order.
+    pub fn all(&self, element: &Owner, happening: Happening) -> impl Iterator<Item = f64> {
         let times = self.instants.get(element);
-        times.map_or(&[], |times| times[happening as usize].as_slice())
+        times
+            .into_iter()
+            .flat_map(move |times| times[happening as usize].kept())
     }
 
-    /// All events in order of time; at one instant in the order of the elements' names.
+    /// All events kept, in order of time; at one instant in the order of the elements' names.
     pub fn in_order(&self) -> Vec<(f64, &Owner, Happening)> {
         let mut all = Vec::new();
         for (element, times) in &self.instants {
             for happening in [Happening::Opens, Happening::Closes] {
-                all.extend(
-                    times[happening as usize]
-                        .iter()
-                        .map(|&time| (time, element, happening)),
-                );
+                let times = times[happening as usize].kept();
+                all.extend(times.map(|time| (time, element, happening)));
             }
         }
         all.sort_by(|a, b| a.0.total_cmp(&b.0));
@@ -182,5 +218,33 @@ mod tests {
         assert_eq!(log.when(&third), Some(5.0));
         let times: Vec<f64> = log.in_order().iter().map(|event| event.0).collect();
         assert_eq!(times, [1.0, 2.0, 3.0, 5.0]);
+    }
+
+    #[test]
+    fn of_a_switch_that_never_rests_the_first_and_the_latest_events_are_kept() {
+        let (mut log, s1) = (EventLog::default(), Owner::parse("s1"));
+        let total = 5 * KEPT as u32;
+        for count in 1..=total {
+            log.note(&s1, Happening::Opens, f64::from(count));
+            let event = EventPhrase::parse(&format!("s1 opens {count}")).expect("an event");
+            assert_eq!(log.when(&event), Some(f64::from(count)));
+        }
+        let when = |count| {
+            log.when(&EventPhrase {
+                element: s1.clone(),
+                happening: Happening::Opens,
+                count,
+            })
+        };
+        let kept = KEPT as u32;
+        assert_eq!(when(kept), Some(f64::from(kept)));
+        assert_eq!((when(kept + 1), when(total - kept)), (None, None));
+        assert_eq!(when(total - kept + 1), Some(f64::from(total - kept + 1)));
+        assert_eq!(
+            (when(total), when(total + 1)),
+            (Some(f64::from(total)), None)
+        );
+        assert_eq!(log.all(&s1, Happening::Opens).count(), 2 * KEPT);
+        assert_eq!(log.all(&s1, Happening::Closes).count(), 0);
     }
 }

@@ -42,10 +42,13 @@ use candidate::Hunt;
 use catalogue::Catalogue;
 use cycle::Names;
 use rig::Rig;
+use std::ops::ControlFlow;
+use std::sync::Arc;
+use std::sync::atomic::Ordering;
 use trial::{Addition, DEFAULT_RELEASE, Ground, Trial};
 
-/// Told while a sizing goes on: the share done and what is being tried.
-pub type Progress<'a> = dyn FnMut(f64, &str) + 'a;
+/// Told while a sizing goes on: the share done and what is being tried; may stop it.
+pub type Progress<'a> = dyn FnMut(f64, &str) -> ControlFlow<()> + 'a;
 
 /// Simulations that a candidate takes, roughly: for the estimate of what is left.
 const EXPECTED_RUNS: f64 = 120.0;
@@ -83,7 +86,8 @@ pub struct Comparison {
 /// Compares suppressors for the coil and the switch that the netlist's `sizing` names.
 ///
 /// # Errors
-/// A netlist that names none or cannot be sized, or a circuit that cannot be simulated even without a suppressor.
+/// A netlist that names none or cannot be sized, a circuit that cannot be simulated even without a suppressor, or an
+/// interruption.
 pub fn size(netlist: &Netlist, progress: &mut Progress<'_>) -> Result<Comparison, Failure> {
     let sizing = netlist.sizing.as_ref().ok_or_else(no_sizing)?;
     let tried = tried(sizing)?;
@@ -97,6 +101,7 @@ pub fn size(netlist: &Netlist, progress: &mut Progress<'_>) -> Result<Comparison
         names: &names,
         cycle: Cycle::of(facts.time_constant(), transition),
         level: DEFAULT_RELEASE * facts.nominal.current.abs(),
+        stop: Arc::default(),
     };
     let bare = Trial::new(&ground, &Addition::default()).map_err(failure)?;
     ground.level = bare.level();
@@ -118,9 +123,15 @@ pub fn size(netlist: &Netlist, progress: &mut Progress<'_>) -> Result<Comparison
                 usize::MAX => 1.0,
                 runs => runs as f64 / (runs as f64 + EXPECTED_RUNS),
             };
-            progress(done.iter().sum::<f64>() / tried.len() as f64, tried[k].word);
+            let share = done.iter().sum::<f64>() / tried.len() as f64;
+            if progress(share, tried[k].word).is_break() {
+                ground.stop.store(true, Ordering::Relaxed);
+            }
         },
     );
+    if ground.stop.load(Ordering::Relaxed) {
+        return Err(Failure::Interrupted);
+    }
     let standings: Vec<Standing> = candidates
         .iter()
         .map(|candidate| ranking::standing(candidate, bounded))
@@ -159,6 +170,7 @@ impl Comparison {
             names: &self.names,
             cycle: self.cycle_of(candidate),
             level: self.level,
+            stop: Arc::default(),
         };
         let (mut document, mut sources) = ground.document(&candidate.addition);
         let accuracy = format!("{FINE:e}");
@@ -183,7 +195,7 @@ impl Comparison {
                 Diagnostic::error("refused", "the candidate's netlist is refused")
             })))
         })?;
-        crate::run::run(&netlist, &mut |_, _| std::ops::ControlFlow::Continue(()))
+        crate::run::run(&netlist, &mut |_, _| ControlFlow::Continue(()))
     }
 
     /// The cycle that a candidate was run with at nominal values.
@@ -238,6 +250,7 @@ fn facts(rig: &Rig, names: &Names) -> Result<Facts, Failure> {
         names,
         cycle: Cycle::of(1.0, 0.0),
         level: 1.0,
+        stop: Arc::default(),
     };
     let mut bare = Trial::new(&ground, &Addition::default()).map_err(failure)?;
     Facts::find(&mut bare.netlist, &rig.coil, &rig.switch)

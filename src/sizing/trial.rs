@@ -11,6 +11,9 @@ use crate::netlist::{Document, Node};
 use crate::run::{Netlist, ReadError, again, pilot, read_document};
 use crate::studies::{Corner, Side, Spread, Tried, Worst, spreads, worst};
 use std::collections::BTreeMap;
+use std::ops::ControlFlow;
+use std::sync::Arc;
+use std::sync::atomic::{AtomicBool, Ordering};
 
 /// The open phase is doubled so often at most until the coil has let go.
 const MOST_DOUBLINGS: u32 = 6;
@@ -112,6 +115,7 @@ impl Trouble {
             Trouble::Refused(headline) => headline.clone(),
             Trouble::Failed(Failure::Refused(diagnostic)) => diagnostic.headline.clone(),
             Trouble::Failed(Failure::Stopped { headline, .. }) => headline.clone(),
+            Trouble::Failed(Failure::Interrupted) => "it was interrupted".into(),
         }
     }
 }
@@ -147,6 +151,7 @@ pub struct Trial {
     doublings: u32,
     level: Level,
     known: BTreeMap<Corner, Reached>,
+    stop: Arc<AtomicBool>,
     /// Simulations so far.
     pub runs: usize,
 }
@@ -170,6 +175,8 @@ pub struct Ground<'a> {
     pub cycle: Cycle,
     /// Release current at nominal values [A].
     pub level: f64,
+    /// Set once somebody asks for an end: runs end at their next step.
+    pub stop: Arc<AtomicBool>,
 }
 
 impl Ground<'_> {
@@ -241,6 +248,7 @@ impl Trial {
             doublings: 0,
             level,
             known: BTreeMap::new(),
+            stop: Arc::clone(&ground.stop),
             runs: 0,
         })
     }
@@ -374,7 +382,14 @@ impl Trial {
             self.scales = pilot(&self.netlist)?;
         }
         self.runs += 1;
-        let figures = again(&self.netlist, &self.scales, &self.added)?;
+        let stop = &self.stop;
+        let figures = again(&self.netlist, &self.scales, &self.added, &mut |_| {
+            if stop.load(Ordering::Relaxed) {
+                ControlFlow::Break(())
+            } else {
+                ControlFlow::Continue(())
+            }
+        })?;
         let value = |k: usize| figures.readings[k].taken.map(|taken| taken.value);
         let [at_opening, at_closing] = self.handles.current.map(|k| value(k).unwrap_or(f64::NAN));
         let last = self.handles.release.map(value);

@@ -108,14 +108,16 @@ fn run_prints_one_object_with_the_fixed_names() {
             "duration",
             "accepted_steps",
             "rejected_steps",
-            "newton_iterations"
+            "newton_iterations",
+            "reached",
+            "interrupted"
         ]
     );
     assert_eq!(json["analysis"]["kind"], "transient");
     assert_eq!(json["analysis"]["duration"], 0.12);
     assert_eq!(
         keys(&json["readings"]["kick"]),
-        ["value", "unit", "time", "error"]
+        ["value", "unit", "time", "error", "time_error"]
     );
     assert_eq!(json["readings"]["kick"]["unit"], "V");
     assert_eq!(keys(&json["limits"]), ["driver_voltage", "release_time"]);
@@ -128,7 +130,7 @@ fn run_prints_one_object_with_the_fixed_names() {
     assert_eq!(limit["holds"], true);
     assert_eq!(
         keys(&json["ratings"]["k1_driver"]["voltage"]),
-        ["peak", "rated", "used", "time"]
+        ["peak", "rated", "used", "time", "error"]
     );
     assert_eq!(keys(&json["ledger"]), ["elements", "imbalance"]);
     assert_eq!(

@@ -12,7 +12,8 @@ use std::collections::BTreeMap;
 const RELAY: &str = "netlists/relay_diode.yaml";
 
 fn sized(netlist: &coilbreak::run::Netlist) -> Comparison {
-    size(netlist, &mut |_, _| {}).unwrap_or_else(|failure| panic!("{failure:?}"))
+    size(netlist, &mut |_, _| std::ops::ControlFlow::Continue(()))
+        .unwrap_or_else(|failure| panic!("{failure:?}"))
 }
 
 fn candidate<'a>(comparison: &'a Comparison, word: &str) -> &'a Candidate {

@@ -13,7 +13,9 @@ pub fn run(outcome: &Outcome) -> Value {
         .number("duration", outcome.duration)
         .value("accepted_steps", counted.accepted)
         .value("rejected_steps", counted.rejected)
-        .value("newton_iterations", counted.newton_iterations);
+        .value("newton_iterations", counted.newton_iterations)
+        .number("reached", outcome.reached)
+        .value("interrupted", outcome.interrupted());
     Object::new()
         .text("title", Some(&outcome.title))
         .value("analysis", analysis)
@@ -34,7 +36,8 @@ fn readings(outcome: &Outcome) -> Value {
             .optional("value", reading.value)
             .text("unit", Some(reading.kind.symbol))
             .optional("time", reading.time)
-            .value("error", Value::Null);
+            .optional("error", reading.error)
+            .optional("time_error", reading.time_error);
         (reading.name.clone(), object)
     }))
 }
@@ -68,7 +71,8 @@ fn ratings(outcome: &Outcome) -> Value {
                     .optional("peak", rating.used.peak)
                     .number("rated", rating.used.rated)
                     .optional("used", rating.used.used)
-                    .optional("time", rating.used.time);
+                    .optional("time", rating.used.time)
+                    .optional("error", rating.error);
                 (rating.rating.clone(), object)
             });
         (name, table(own))

@@ -11,6 +11,14 @@ const DIGITS: usize = 4;
 /// The whole text of `run`.
 pub fn run(outcome: &Outcome, screen: Screen) -> String {
     let mut text = String::new();
+    if outcome.interrupted() {
+        let _ = writeln!(
+            text,
+            "Interrupted after {} of {}: what follows is over what was simulated.",
+            duration(outcome.reached),
+            duration(outcome.duration)
+        );
+    }
     let _ = writeln!(text, "{}", answer(outcome));
     section(&mut text, "Limits", &limits(outcome), screen);
     section(&mut text, "Readings", &readings(outcome), screen);
@@ -154,6 +162,13 @@ fn limits(outcome: &Outcome) -> Table {
 }
 
 fn readings(outcome: &Outcome) -> Table {
+    if outcome
+        .readings
+        .iter()
+        .any(|reading| reading.error.is_some())
+    {
+        return verified(outcome);
+    }
     let mut table = Table::new()
         .column("reading", Align::Left)
         .column("value", Align::Right)
@@ -170,6 +185,56 @@ fn readings(outcome: &Outcome) -> Table {
         ]);
     }
     table
+}
+
+/// Digits that are printed of a verified reading at most.
+const MOST_DIGITS: usize = 9;
+
+/// Readings with their numerical errors: every digit that stands, and the error in the reading's unit.
+fn verified(outcome: &Outcome) -> Table {
+    let mut table = Table::new()
+        .column("reading", Align::Left)
+        .column("value", Align::Right)
+        .column("error", Align::Right)
+        .column("digits", Align::Right)
+        .column("at", Align::Right)
+        .column("error", Align::Right)
+        .column("", Align::Left);
+    for reading in &outcome.readings {
+        let digits = reading
+            .value
+            .zip(reading.error)
+            .map(|(value, error)| digits_that_stand(value, error));
+        let shown = |digits: Option<usize>| digits.unwrap_or(DIGITS).clamp(2, MOST_DIGITS);
+        let at = reading
+            .time
+            .zip(reading.time_error)
+            .map(|(time, error)| digits_that_stand(time, error));
+        let or_nothing = |value: Option<f64>, symbol: &str, digits: usize| {
+            value.map_or(String::new(), |value| engineering(value, symbol, digits))
+        };
+        table.row([
+            reading.name.clone(),
+            engineering_or_dash(reading.value, reading.kind.symbol, shown(digits)),
+            engineering_or_dash(reading.error, reading.kind.symbol, 2),
+            digits.map_or("—".into(), |digits| digits.to_string()),
+            or_nothing(reading.time, "s", shown(at)),
+            or_nothing(reading.time_error, "s", 2),
+            reading.remark.unwrap_or("").to_owned(),
+        ]);
+    }
+    table
+}
+
+/// How many significant digits of a value stand: the last one is off by no more than half a unit. At most 15, what a
+/// number holds.
+pub fn digits_that_stand(value: f64, error: f64) -> usize {
+    if value == 0.0 || !(value.is_finite() && error.is_finite()) {
+        return 0;
+    }
+    let first = value.abs().log10().floor();
+    let last = (2.0 * error).log10().ceil();
+    (first - last + 1.0).clamp(0.0, 15.0) as usize
 }
 
 fn ratings(outcome: &Outcome) -> Table {
@@ -253,4 +318,26 @@ pub fn coils(reports: &[CoilReport]) -> Table {
         ]);
     }
     table
+}
+
+#[cfg(test)]
+mod tests {
+    use super::digits_that_stand;
+
+    #[test]
+    fn the_last_digit_that_stands_is_off_by_half_a_unit_at_most() {
+        for (value, error, digits) in [
+            (1.2345, 4e-4, 4),
+            (1.2345, 5.1e-4, 3),
+            (-9.99, 0.004, 3),
+            (24.0, 30.0, 0),
+            (24.0, 1e-30, 15),
+            (24.0, 0.0, 15),
+            (0.0, 1e-9, 0),
+            (3e-9, 1e-12, 4),
+            (1.0, f64::NAN, 0),
+        ] {
+            assert_eq!(digits_that_stand(value, error), digits, "{value} {error}");
+        }
+    }
 }

@@ -137,7 +137,7 @@ fn interruption(
         winding: None,
     };
     let (start, _) = recorded.span()?;
-    let all = |what| outcome.events.all(&owner, what).iter().copied();
+    let all = |what| outcome.events.all(&owner, what);
     let opens = all(Happening::Opens).find(|&time| time >= start)?;
     let end = all(Happening::Closes)
         .find(|&time| time > opens)

@@ -177,7 +177,7 @@ fn a_long_run_records_little_and_counts_every_edge() {
 
 #[test]
 fn an_event_late_in_a_long_run_is_found() {
-    let text = RING.replace("from: 9.9 s", "from: k opens 1500, to: k closes 1500");
+    let text = RING.replace("from: 9.9 s", "from: k opens 1500, to: k closes 1501");
     let netlist = from_text(
         &text,
         &[

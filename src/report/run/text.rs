@@ -334,7 +334,7 @@ mod tests {
             (24.0, 1e-30, 15),
             (24.0, 0.0, 15),
             (0.0, 1e-9, 0),
-            (3e-9, 1e-12, 4),
+            (3e-9, 1e-12, 3),
             (1.0, f64::NAN, 0),
         ] {
             assert_eq!(digits_that_stand(value, error), digits, "{value} {error}");

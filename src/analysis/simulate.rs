@@ -2,7 +2,7 @@
 
 use super::failure::Failure;
 use super::start::start;
-use super::swings::{Swings, Wish, tolerances};
+use super::swings::{Swings, Wish};
 use super::task::Start;
 use crate::circuit::Circuit;
 use crate::dae::{Advance, Ending, March, Method, Point, Span, State, Statistics, Tolerances};
@@ -72,7 +72,7 @@ impl Simulation<'_> {
     ) -> Result<(Vec<f64>, Ending), Failure> {
         let mut swings = Swings::new(self.circuit.unknowns.len(), wishes);
         let loose = self.pilot_tolerances();
-        let (_, ending) = self.run(&loose, &mut |_, shown, log| match shown {
+        let (_, ending) = self.march(&loose, f64::INFINITY, &mut |_, shown, log| match shown {
             Shown::Step(step) => {
                 swings.step(step, log);
                 watch(step.to)
@@ -108,13 +108,17 @@ impl Simulation<'_> {
         scales: &[f64],
         watcher: &mut Watcher<'_>,
     ) -> Result<(Statistics, Ending), Failure> {
-        self.run(&tolerances(scales, self.settings.accuracy), watcher)
+        let accuracy = self.settings.accuracy;
+        let local = self.method.local_tolerance(accuracy);
+        let fine = Tolerances::absolute(scales.iter().map(|scale| local * scale).collect());
+        self.march(&fine, Method::pile(accuracy), watcher)
     }
 
-    /// Runs with given tolerances.
-    pub fn run(
+    /// Runs with given tolerances, of which `pile` may pile up.
+    fn march(
         &self,
-        fine: &Tolerances,
+        tolerances: &Tolerances,
+        pile: f64,
         watcher: &mut Watcher<'_>,
     ) -> Result<(Statistics, Ending), Failure> {
         let circuit = self.circuit;
@@ -128,8 +132,9 @@ impl Simulation<'_> {
         }
         let mut march = March::new(self.method, state);
         let span = Span {
+            pile,
             longest_step: self.settings.longest_step,
-            ..Span::new(self.settings.duration, fine)
+            ..Span::new(self.settings.duration, tolerances)
         };
         let ending = march
             .run(circuit, span, &mut |advance| match advance {

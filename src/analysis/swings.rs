@@ -5,7 +5,7 @@
 //! whole swing.
 
 use crate::circuit::Circuit;
-use crate::dae::{Step, Tolerances};
+use crate::dae::Step;
 use crate::signals::{EventLog, Window};
 
 /// A window in which some unknowns are read.
@@ -137,17 +137,3 @@ impl Swings {
             .max(least * whole)
     }
 }
-
-/// Absolute tolerances of a step for an accuracy of the whole run.
-pub fn tolerances(scales: &[f64], accuracy: f64) -> Tolerances {
-    Tolerances::absolute(
-        scales
-            .iter()
-            .map(|scale| LOCAL_SHARE * accuracy * scale)
-            .collect(),
-    )
-}
-
-/// Tolerated error of one step as a share of the accuracy asked of the whole run. Steps' errors add up, and along a
-/// ringing they add up in phase; the share is calibrated on the test set of stored reference solutions.
-pub const LOCAL_SHARE: f64 = 0.3;

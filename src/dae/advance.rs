@@ -56,7 +56,29 @@ pub struct Step<'a> {
     pub varied: Option<Varied<'a>>,
 }
 
+/// Parts of a step whose polynomial is of a higher degree than three. A sine of which a step of order 9 takes the phase
+/// phi is missed by a cubic over a quarter of it by 2e-6 phi^4: by 0.2 times the accuracy at 1e-6, where phi is 0.6.
+const PARTS: usize = 4;
+
 impl Step<'_> {
+    /// Spans [s] that make up the step, over each of which a cubic follows the polynomial to the accuracy of the method.
+    pub fn parts(&self) -> impl Iterator<Item = (f64, f64)> + use<> {
+        let count = if self.dense.points.len() > 4 {
+            PARTS
+        } else {
+            1
+        };
+        let (from, to) = (self.from, self.to);
+        let edge = move |k: usize| {
+            if k == count {
+                to
+            } else {
+                from + (to - from) * k as f64 / count as f64
+            }
+        };
+        (0..count).map(move |k| (edge(k), edge(k + 1)))
+    }
+
     fn share(&self, time: f64) -> f64 {
         (time - self.from) / (self.to - self.from)
     }

@@ -35,6 +35,14 @@ impl Control {
         }
     }
 
+    /// The order of the estimates to come.
+    pub fn follow(&mut self, order: u32) {
+        if self.order != f64::from(order) {
+            self.order = f64::from(order);
+            self.last = None;
+        }
+    }
+
     /// An event: the errors so far tell nothing about the steps to come.
     pub fn restart(&mut self) {
         self.last = None;

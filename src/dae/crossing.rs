@@ -100,11 +100,10 @@ impl Watch {
         };
         system.guards(at_end, &mut self.end);
         let mut first: Option<(f64, usize)> = None;
-        if self.points.is_empty() {
-            self.points
-                .extend(step.dense.points.iter().filter(|&&point| point > 0.0));
-            self.points.sort_by(f64::total_cmp);
-        }
+        self.points.clear();
+        self.points
+            .extend(step.dense.points.iter().filter(|&&point| point > 0.0));
+        self.points.sort_by(f64::total_cmp);
         for guard in 0..self.start.len() {
             let within = first.map_or(1.0, |found| found.0);
             if let Some(root) = self.root(system, step, guard, within) {

@@ -10,9 +10,10 @@ use super::crossing::{Crossing, Watch};
 use super::event::{Company, Events};
 use super::experience::Experience;
 use super::methods::{Attempt, Method, Stepper, Trial};
+use super::pile::Pile;
 use super::statistics::Statistics;
 use super::system::{Cause, Point, System};
-use super::tolerances::Tolerances;
+use super::tolerances::{Tolerances, largest};
 use super::trouble::{MarchError, Trouble};
 use super::variations::{Kept, Variations};
 use crate::math::Elimination;
@@ -47,6 +48,9 @@ pub struct Span<'a> {
     pub until: f64,
     /// Tolerated error of each unknown in a step.
     pub tolerances: &'a Tolerances,
+    /// So many steps' errors may pile up before the tolerances fall, see [`Method::pile`]; infinity where they are those
+    /// of single steps however long the run.
+    pub pile: f64,
     /// Longest step [s]; infinity for none.
     pub longest_step: f64,
     /// Length [s] tried first; none lets the march choose.
@@ -59,6 +63,7 @@ impl<'a> Span<'a> {
         Span {
             until,
             tolerances,
+            pile: f64::INFINITY,
             longest_step: f64::INFINITY,
             first_step: None,
         }
@@ -93,8 +98,20 @@ struct Scratch {
     watch: Watch,
     events: Events,
     experience: Experience,
+    pile: Pile,
     weights: Vec<f64>,
     before: Vec<f64>,
+}
+
+impl Scratch {
+    /// Adds the error of the step tried last to what is left of those before it.
+    fn pile_up(&mut self, free: f64) {
+        let share = self.pile.share;
+        if self.stepper.carry(&mut self.pile.errors, 1.0 / share) {
+            let height = share * largest(&self.pile.errors, &self.weights).0;
+            self.pile.grown(height, free);
+        }
+    }
 }
 
 /// The observer's face.
@@ -145,6 +162,7 @@ impl March {
             watch: Watch::new(system),
             events: Events::new(system, self.elimination),
             experience: Experience::default(),
+            pile: Pile::new(system.size()),
             weights: vec![0.0; system.size()],
             before: vec![0.0; system.size()],
         });
@@ -217,6 +235,7 @@ impl<S: System + ?Sized> Run<'_, '_, '_, S> {
                 cause: Trouble::NotFinite,
             });
         }
+        self.scratch.pile = Pile::new(x.len());
         self.span.tolerances.weigh(x, &mut self.scratch.weights);
         let flow = (self.observer)(&Advance::Start {
             time: *time,
@@ -291,20 +310,19 @@ impl<S: System + ?Sized> Run<'_, '_, '_, S> {
                     } else {
                         End::Own
                     });
+                    self.follow_order();
                     let factor = self.scratch.control.next(length, error);
                     // A step cut short by an event says little about the steps after it, unless it would shrink.
                     let hard = self.scratch.stepper.is_hard();
                     self.scratch
                         .experience
                         .learn(length * factor.clamp(0.5, 2.0), hard);
-                    self.length = if at_stop {
-                        self.length.max(length * factor)
-                    } else {
-                        length * factor
-                    };
+                    let next = self.scratch.stepper.choose(length, length * factor);
+                    self.length = if at_stop { self.length.max(next) } else { next };
                     return Ok((end, self.keep(to)?));
                 }
                 Attempt::Solved { error, unknown } => {
+                    self.follow_order();
                     let factor = self.scratch.control.again(error);
                     self.shrink(length, factor, unknown, Trouble::Inaccurate)?;
                 }
@@ -315,6 +333,12 @@ impl<S: System + ?Sized> Run<'_, '_, '_, S> {
                 }
             }
         }
+    }
+
+    /// Tells the control the order of the estimate made last.
+    fn follow_order(&mut self) {
+        let method = self.scratch.stepper.method(self.method);
+        self.scratch.control.follow(method.estimated);
     }
 
     /// End of the step to be tried, and whether it is the stop.
@@ -385,18 +409,21 @@ impl<S: System + ?Sized> Run<'_, '_, '_, S> {
                 dense: scratch.stepper.dense(),
             };
             variations
-                .step(self.system, self.method, &kept)
+                .step(self.system, scratch.stepper.method(self.method), &kept)
                 .map_err(|singular| MarchError {
                     time: to,
                     unknown: Some(singular.column),
                     cause: Trouble::Singular,
                 })?;
         }
+        if self.span.pile.is_finite() {
+            scratch.pile_up(self.span.pile);
+        }
         scratch.stepper.keep();
         scratch.watch.keep();
-        self.span
-            .tolerances
-            .weigh(&self.state.x, &mut scratch.weights);
+        scratch
+            .pile
+            .weigh(self.span.tolerances, &self.state.x, &mut scratch.weights);
         self.counted.accepted += 1;
         let step = Step {
             from,
@@ -436,9 +463,9 @@ impl<S: System + ?Sized> Run<'_, '_, '_, S> {
                 self.length = length;
                 scratch.stepper.expect_hard(hard);
             }
-            self.span
-                .tolerances
-                .weigh(&self.state.x, &mut scratch.weights);
+            scratch
+                .pile
+                .weigh(self.span.tolerances, &self.state.x, &mut scratch.weights);
         }
         Ok((self.observer)(&event))
     }

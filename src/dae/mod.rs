@@ -14,6 +14,7 @@ pub mod march;
 pub mod methods;
 mod newton;
 pub mod pattern;
+mod pile;
 pub mod start;
 pub mod statistics;
 pub mod system;

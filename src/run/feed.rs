@@ -168,15 +168,17 @@ impl Feed {
     }
 
     fn step(&mut self, circuit: &Circuit, step: &Step<'_>, log: &EventLog) {
-        self.signals.read(circuit, step);
-        for (signal, taking) in &mut self.readings {
-            taking.feed(&self.signals.piece(*signal), log);
-        }
-        for metered in &mut self.ratings {
-            metered.meter.feed(&self.signals.piece(metered.signal));
-        }
-        if let Some(recorder) = &mut self.recorder {
-            recorder.step(step.from, step.to, self.signals.first(self.recorded.0));
+        for (from, to) in step.parts() {
+            self.signals.read(circuit, step, (from, to));
+            for (signal, taking) in &mut self.readings {
+                taking.feed(&self.signals.piece(*signal), log);
+            }
+            for metered in &mut self.ratings {
+                metered.meter.feed(&self.signals.piece(metered.signal));
+            }
+            if let Some(recorder) = &mut self.recorder {
+                recorder.step(from, to, self.signals.first(self.recorded.0));
+            }
         }
         if let Some(keeper) = &mut self.keeper {
             keeper.step(circuit, step);

@@ -78,7 +78,8 @@ pub fn perform(
     }
 }
 
-/// The method of all transients: the quickest of the list at the accuracies asked, as measured in `tests/benches`.
+/// The method of all transients: the first of the list, which needs the least work at every accuracy, as measured in
+/// `tests/benches`.
 pub fn method() -> &'static Method {
     crate::dae::METHODS
         .first()

@@ -16,6 +16,9 @@ use std::ops::ControlFlow;
 const FINER: f64 = 0.1;
 /// Stated error over what moved.
 const STATED: f64 = 2.0;
+/// Two runs may agree by chance, short smooth ones to the last digits: no figure is stated to be surer than this share
+/// of the accuracy, of its own size. The repetition's own error is commonly a tenth of a tenth.
+const CHANCE: f64 = 1e-2;
 /// Rounding of a reading as a share of its value, of an instant as a share of the run.
 const ROUNDING: f64 = 1e-13;
 
@@ -59,6 +62,11 @@ impl Repeated<'_> {
             figures => figures?,
         };
         let rounding = ROUNDING * settings.duration;
+        let chance = ROUNDING.max(CHANCE * settings.accuracy);
+        let moved = |value: Option<f64>, finer: Option<f64>, least: f64| {
+            let (value, finer) = (value?, finer?);
+            Some((STATED * (value - finer).abs()).max(least.max(chance * value.abs())))
+        };
         let mut cautions = Vec::new();
         for (reading, fine) in outcome.readings.iter_mut().zip(&figures.readings) {
             let (value, time) = fine.value_and_time();
@@ -87,13 +95,6 @@ impl Repeated<'_> {
         outcome.cautions.extend(cautions);
         Ok(())
     }
-}
-
-/// The error of a value that moved to another one.
-fn moved(value: Option<f64>, finer: Option<f64>, rounding: f64) -> Option<f64> {
-    let (value, finer) = (value?, finer?);
-    let least = rounding.max(ROUNDING * value.abs());
-    Some((STATED * (value - finer).abs()).max(least))
 }
 
 /// A caution where a limit's verdict hangs on the numerical error.

@@ -27,7 +27,7 @@ struct Signal {
     energy: f64,
 }
 
-/// Signals by name, and their values at both ends and both thirds of the step read last.
+/// Signals by name, and their values at both ends and both thirds of the span read last.
 #[derive(Default)]
 pub struct Signals {
     list: Vec<Signal>,
@@ -76,21 +76,14 @@ impl Signals {
             .map(|signal| (signal.name.clone(), signal.kind))
     }
 
-    /// Reads every signal at both ends and both thirds of a step.
-    pub fn read(&mut self, circuit: &Circuit, step: &Step<'_>) {
-        let length = step.to - step.from;
-        let times = [
-            step.from,
-            step.from + length / 3.0,
-            step.from + 2.0 * length / 3.0,
-            step.to,
-        ];
-        for (time, point) in times.iter().zip(&mut self.points).take(3) {
+    /// Reads every signal at both ends and both thirds of a span within a step.
+    pub fn read(&mut self, circuit: &Circuit, step: &Step<'_>, (from, to): (f64, f64)) {
+        let third = (to - from) / 3.0;
+        let times = [from, from + third, from + 2.0 * third, to];
+        for (time, point) in times.iter().zip(&mut self.points) {
             point.resize(step.x1.len(), 0.0);
             step.at(*time, point);
         }
-        self.points[3].clear();
-        self.points[3].extend_from_slice(step.x1);
         for (signal, values) in self.list.iter_mut().zip(&mut self.values) {
             for (value, (time, x)) in values.iter_mut().zip(times.iter().zip(&self.points)) {
                 let at = Point {
@@ -101,14 +94,14 @@ impl Signals {
                 *value = circuit.read(&signal.tap, at);
             }
             if matches!(signal.tap, Tap::Energy(_)) {
-                *values = accumulated(signal.energy, step.from, step.to, *values);
+                *values = accumulated(signal.energy, from, to, *values);
                 signal.energy = values[3];
             }
         }
-        self.span = (step.from, step.to);
+        self.span = (from, to);
     }
 
-    /// A signal during the step read last.
+    /// A signal during the span read last.
     pub fn piece(&self, number: usize) -> Piece {
         Piece {
             from: self.span.0,
@@ -117,7 +110,7 @@ impl Signals {
         }
     }
 
-    /// Values of the first so many during the step read last, as a recorder takes them.
+    /// Values of the first so many during the span read last, as a recorder takes them.
     pub fn first(&self, count: usize) -> &[[f64; 4]] {
         &self.values[..count]
     }

@@ -1,6 +1,6 @@
 //! Work and error of every method over accuracies, on problems with known solutions and the four circuits.
 //!
-//! `cargo bench --bench precision` prints the table; `-- METHOD PROBLEM LOCAL` marches one of them (names may be
+//! `cargo bench --bench precision` prints the table; `-- METHOD PROBLEM ACCURACY` marches one of them (names may be
 //! shortened), to be counted by an instruction counter. Figures and what they say are in `tests/benches/README.md`.
 
 #[path = "../circuits/mod.rs"]
@@ -11,8 +11,8 @@ use circuits::problems::PROBLEMS;
 use coilbreak::dae::{METHODS, Method, Statistics};
 use std::time::Instant;
 
-/// Local tolerances, as shares of each swing.
-const LOCALS: [f64; 8] = [3e-2, 3e-3, 3e-4, 3e-5, 3e-6, 3e-7, 3e-8, 3e-9];
+/// Accuracies asked of the whole run.
+const ACCURACIES: [f64; 7] = [1e-2, 1e-3, 1e-4, 1e-5, 1e-6, 1e-7, 1e-8];
 
 /// One march: error over swing, and work.
 type Marched = Option<(f64, Statistics)>;
@@ -23,8 +23,8 @@ fn kinds() -> Vec<Kind> {
     for problem in PROBLEMS {
         kinds.push((
             problem.name,
-            Box::new(|method, local| {
-                let reached = problem.run(method, local).ok()?;
+            Box::new(|method, accuracy| {
+                let reached = problem.run(method, accuracy).ok()?;
                 Some((reached.error, reached.counted))
             }),
         ));
@@ -32,8 +32,8 @@ fn kinds() -> Vec<Kind> {
     for case in CASES {
         kinds.push((
             case.name,
-            Box::new(|method, local| {
-                let outcome = (case.run)(method, local).ok()?;
+            Box::new(|method, accuracy| {
+                let outcome = (case.run)(method, accuracy).ok()?;
                 let waveforms = outcome.quantities.iter().filter(|q| q.name != "t_peak");
                 let error = waveforms.map(|q| q.error()).fold(0.0, f64::max);
                 Some((error, outcome.counted))
@@ -50,10 +50,10 @@ fn main() {
         .collect();
     let begins =
         |name: &str, word: Option<&String>| word.is_none_or(|word| name.starts_with(word.as_str()));
-    let locals = words
+    let accuracies = words
         .get(2)
         .and_then(|word| word.parse().ok())
-        .map_or(LOCALS.to_vec(), |local| vec![local]);
+        .map_or(ACCURACIES.to_vec(), |accuracy| vec![accuracy]);
     for (name, march) in kinds() {
         if !begins(name, words.get(1)) {
             continue;
@@ -61,21 +61,21 @@ fn main() {
         println!("\n{name}");
         println!(
             "{:12} {:>7} {:>9} {:>8} {:>6} {:>8} {:>8} {:>8} {:>9}",
-            "method", "local", "error", "steps", "lost", "factors", "solves", "evals", "time_us"
+            "method", "asked", "error", "steps", "lost", "factors", "solves", "evals", "time_us"
         );
         for method in METHODS {
             if words.first().is_some_and(|word| method.name != *word) {
                 continue;
             }
-            for &local in &locals {
+            for &accuracy in &accuracies {
                 let begun = Instant::now();
-                let Some((error, counted)) = march(method, local) else {
-                    println!("{:12} {local:>7.0e} gave up", method.name);
+                let Some((error, counted)) = march(method, accuracy) else {
+                    println!("{:12} {accuracy:>7.0e} gave up", method.name);
                     continue;
                 };
                 let time = begun.elapsed().as_secs_f64() * 1e6;
                 println!(
-                    "{:12} {local:>7.0e} {error:>9.1e} {:>8} {:>6} {:>8} {:>8} {:>8} {time:>9.0}",
+                    "{:12} {accuracy:>7.0e} {error:>9.1e} {:>8} {:>6} {:>8} {:>8} {:>8} {time:>9.0}",
                     method.name,
                     counted.accepted,
                     counted.rejected,

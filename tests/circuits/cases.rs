@@ -30,7 +30,7 @@ pub struct Outcome {
 
 pub struct Case {
     pub name: &'static str,
-    /// Marches with local tolerances of this share of each swing and reads.
+    /// Marches at an accuracy of the whole run and reads.
     pub run: fn(&'static Method, f64) -> Result<Outcome, MarchError>,
     /// Marches alone.
     pub bare: fn(&'static Method, f64),
@@ -86,6 +86,14 @@ pub const CASES: &[Case] = &[
         },
     },
 ];
+
+/// A span whose tolerances serve an accuracy of the whole run.
+pub fn whole(until: f64, tolerances: &Tolerances, accuracy: f64) -> Span<'_> {
+    Span {
+        pile: Method::pile(accuracy),
+        ..Span::new(until, tolerances)
+    }
+}
 
 pub trait Swings {
     fn swings(&self) -> Vec<f64>;
@@ -151,10 +159,10 @@ fn bare<S: System + Swings>(
     state: State,
     until: f64,
     method: &'static Method,
-    local: f64,
+    accuracy: f64,
 ) {
-    let tolerances = tolerances(system, local);
-    let _ = March::new(method, state).run(system, Span::new(until, &tolerances), &mut |_| {
+    let tolerances = tolerances(system, method.local_tolerance(accuracy));
+    let _ = March::new(method, state).run(system, whole(until, &tolerances, accuracy), &mut |_| {
         ControlFlow::Continue(())
     });
 }
@@ -199,18 +207,22 @@ impl RelayReadings {
 fn relay_case(
     suppressor: Suppressor,
     method: &'static Method,
-    local: f64,
+    accuracy: f64,
 ) -> Result<Outcome, MarchError> {
     let relay = Relay::new(suppressor);
     let mut march = March::new(method, relay_state(suppressor));
     let mut read = RelayReadings::default();
-    let tolerances = tolerances(&relay, local);
-    march.run(&relay, Span::new(60e-3, &tolerances), &mut |advance| {
-        if let Advance::Step(step) = advance {
-            read.step(&relay, step);
-        }
-        ControlFlow::Continue(())
-    })?;
+    let tolerances = tolerances(&relay, method.local_tolerance(accuracy));
+    march.run(
+        &relay,
+        whole(60e-3, &tolerances, accuracy),
+        &mut |advance| {
+            if let Advance::Step(step) = advance {
+                read.step(&relay, step);
+            }
+            ControlFlow::Continue(())
+        },
+    )?;
     let case = match suppressor {
         Suppressor::Diode => "R1",
         Suppressor::None => "R2",
@@ -271,7 +283,7 @@ struct BuckReadings {
     x: Vec<f64>,
 }
 
-fn buck_case(method: &'static Method, local: f64) -> Result<Outcome, MarchError> {
+fn buck_case(method: &'static Method, accuracy: f64) -> Result<Outcome, MarchError> {
     let buck = Buck::new();
     let state = begin(&buck, buck.start(), buck.off());
     let mut march = March::new(method, state);
@@ -279,8 +291,8 @@ fn buck_case(method: &'static Method, local: f64) -> Result<Outcome, MarchError>
         low: f64::INFINITY,
         ..BuckReadings::default()
     };
-    let tolerances = tolerances(&buck, local);
-    march.run(&buck, Span::new(5e-3, &tolerances), &mut |advance| {
+    let tolerances = tolerances(&buck, method.local_tolerance(accuracy));
+    march.run(&buck, whole(5e-3, &tolerances, accuracy), &mut |advance| {
         if let Advance::Step(step) = advance {
             read.x.resize(step.x0.len(), 0.0);
             read.current = read.current.max(extremes(step, buck::WINDING)[1].0);

@@ -1,29 +1,28 @@
 //! Circuits whose whole waveform is known in closed form.
 
-/// A charged capacitor rings with a coil: 1 nF, 1 mH, 1 ohm; quality 1000, 159 kHz. Unknowns: voltage, current.
-pub mod ring {
+/// A charged capacitor rings with a coil: 1 nF, 1 mH, 159 kHz. Unknowns: voltage, current.
+mod ringing {
     use crate::circuits::problems::Hand;
     use coilbreak::dae::System;
 
     const C: f64 = 1e-9;
     const L: f64 = 1e-3;
-    const R: f64 = 1.0;
     const VOLTS: f64 = 10.0;
     /// 2 pi sqrt(LC) [s].
     pub const PERIOD: f64 = std::f64::consts::TAU * 1e-6;
     pub const SWINGS: &[f64] = &[20.0, 0.02];
 
-    pub fn system() -> Box<dyn System> {
-        Box::new(Hand::new(2, |s, _, x| {
+    pub fn system(r: f64) -> Box<dyn System> {
+        Box::new(Hand::new(2, move |s, _, x| {
             s.q(0, C * x[0]);
             s.dq(0, 0, C);
             s.f(0, x[1]);
             s.df(0, 1, 1.0);
             s.q(1, L * x[1]);
             s.dq(1, 1, L);
-            s.f(1, R * x[1] - x[0]);
+            s.f(1, r * x[1] - x[0]);
             s.df(1, 0, -1.0);
-            s.df(1, 1, R);
+            s.df(1, 1, r);
         }))
     }
 
@@ -31,13 +30,35 @@ pub mod ring {
         vec![VOLTS, 0.0]
     }
 
-    /// L C v'' + R C v' + v = 0.
-    pub fn solution(t: f64) -> Vec<f64> {
-        let (a, w0) = (R / (2.0 * L), 1.0 / (L * C).sqrt());
+    /// L C v'' + r C v' + v = 0.
+    pub fn solution(r: f64, t: f64) -> Vec<f64> {
+        let (a, w0) = (r / (2.0 * L), 1.0 / (L * C).sqrt());
         let w = (w0 * w0 - a * a).sqrt();
         let (sin, cos) = (w * t).sin_cos();
         let e = VOLTS * (-a * t).exp();
         vec![e * (cos + a / w * sin), C * e * w0 * w0 / w * sin]
+    }
+}
+
+/// With 1 ohm: quality 1000.
+pub mod ring {
+    pub use super::ringing::{PERIOD, SWINGS, start};
+    pub fn system() -> Box<dyn coilbreak::dae::System> {
+        super::ringing::system(1.0)
+    }
+    pub fn solution(t: f64) -> Vec<f64> {
+        super::ringing::solution(1.0, t)
+    }
+}
+
+/// With 0.05 ohm: quality 20 000.
+pub mod barely {
+    pub use super::ringing::{PERIOD, SWINGS, start};
+    pub fn system() -> Box<dyn coilbreak::dae::System> {
+        super::ringing::system(0.05)
+    }
+    pub fn solution(t: f64) -> Vec<f64> {
+        super::ringing::solution(0.05, t)
     }
 }
 

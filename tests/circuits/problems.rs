@@ -1,11 +1,12 @@
 //! Problems with a solution that is known from outside, marched and held against it over the whole run.
 
-use super::closed::{driven, ring, saturating};
+use super::cases::whole;
+use super::closed::{barely, driven, ring, saturating};
 use super::published::{AMPLIFIER, MODULATOR, amplifier, modulator};
 use super::stamps::{Places, Stamps};
 use coilbreak::dae::{
-    Advance, Evaluation, March, MarchError, Method, Pattern, Point, Span, State, Statistics,
-    System, Tolerances,
+    Advance, Evaluation, March, MarchError, Method, Pattern, Point, State, Statistics, System,
+    Tolerances,
 };
 use std::ops::ControlFlow;
 
@@ -79,6 +80,15 @@ pub const PROBLEMS: &[Problem] = &[
         truth: Truth::Everywhere(ring::solution),
     },
     Problem {
+        name: "barely damped ring of 5000 periods",
+        source: "closed form of the damped oscillation",
+        system: barely::system,
+        start: barely::start,
+        until: 5000.0 * barely::PERIOD,
+        swings: barely::SWINGS,
+        truth: Truth::Everywhere(barely::solution),
+    },
+    Problem {
         name: "resonant circuit on a sine, 2000 periods",
         source: "closed form: forced and free oscillation",
         system: driven::system,
@@ -126,8 +136,14 @@ pub struct Reached {
 }
 
 impl Problem {
-    /// Marches with local tolerances of this share of each swing.
-    pub fn run(&self, method: &'static Method, local: f64) -> Result<Reached, MarchError> {
+    /// True where the values are printed ones.
+    pub fn is_published(&self) -> bool {
+        matches!(self.truth, Truth::End(_))
+    }
+
+    /// Marches at an accuracy of the whole run.
+    pub fn run(&self, method: &'static Method, accuracy: f64) -> Result<Reached, MarchError> {
+        let local = method.local_tolerance(accuracy);
         let absolute = self.swings.iter().map(|swing| local * swing).collect();
         let tolerances = Tolerances::absolute(absolute);
         let state = State {
@@ -148,7 +164,7 @@ impl Problem {
         };
         march.run(
             &*(self.system)(),
-            Span::new(self.until, &tolerances),
+            whole(self.until, &tolerances, accuracy),
             &mut |advance| {
                 if let (Truth::Everywhere(solution), Advance::Step(step)) = (&self.truth, advance) {
                     for share in [0.15, 0.4, 0.65, 0.85, 1.0] {

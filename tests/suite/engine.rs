@@ -7,7 +7,7 @@ use coilbreak::math::Elimination;
 use std::ops::ControlFlow;
 
 fn run(case: &Case, method: &'static Method, accuracy: f64) -> Outcome {
-    match (case.run)(method, method.local_tolerance(accuracy)) {
+    match (case.run)(method, accuracy) {
         Ok(outcome) => outcome,
         Err(error) => panic!("{} by {}: {error}", case.name, method.name),
     }

@@ -1,5 +1,6 @@
 //! The integration tests, one module per theme.
 
+mod accuracy;
 mod bad_input;
 mod binary;
 #[path = "../circuits/mod.rs"]

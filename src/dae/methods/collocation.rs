@@ -58,6 +58,8 @@ pub(crate) struct Collocation<const S: usize> {
     pub(super) steps_before: Vec<f64>,
     pub(super) defect: Vec<f64>,
     pub(super) error: Vec<f64>,
+    /// The step's estimated error, with its sign.
+    pub(super) estimate: Vec<f64>,
     /// Values at the start, after the estimate has settled what was not.
     pub(super) settled: Vec<f64>,
     pub(super) coefficients: Vec<f64>,
@@ -108,6 +110,7 @@ impl<const S: usize> Collocation<S> {
             steps_before: vec![0.0; S * n],
             defect: vec![0.0; n],
             error: vec![0.0; n],
+            estimate: vec![0.0; n],
             settled: vec![0.0; n],
             coefficients: vec![0.0; (S + 1) * n],
             laid: 0.0,
@@ -129,6 +132,68 @@ impl<const S: usize> Collocation<S> {
         self.failures = 0;
         self.tried = 0.0;
         self.hard = 0;
+    }
+
+    /// Carries small changes of the start through the step tried last, to first order and with its own factors, and adds
+    /// `share` of its estimated error.
+    pub fn carry(&mut self, changes: &mut [f64], share: f64) {
+        let n = self.defect.len();
+        self.error.fill(0.0);
+        for (column, change) in changes.iter().enumerate() {
+            for slot in self.pattern.starts[column]..self.pattern.starts[column + 1] {
+                self.error[self.pattern.rows[slot]] += self.base.dq[slot] * change;
+            }
+        }
+        let rates: [f64; S] =
+            std::array::from_fn(|i| self.table.inverse[i].iter().sum::<f64>() / self.tried);
+        if self.own {
+            let right = self.coupled.right_mut();
+            for (row, charge) in self.error.iter().enumerate() {
+                for (i, rate) in rates.iter().enumerate() {
+                    right[S * row + i] = rate * charge;
+                }
+            }
+            self.coupled.solve();
+            let right = self.coupled.right_mut();
+            for (row, change) in changes.iter_mut().enumerate() {
+                *change = right[S * row + S - 1];
+            }
+        } else {
+            for (steps, rate) in self.steps.chunks_exact_mut(n.max(1)).zip(rates) {
+                for (step, charge) in steps.iter_mut().zip(&self.error) {
+                    *step = rate * charge;
+                }
+            }
+            self.split.solve(&self.table, &mut self.steps);
+            changes.copy_from_slice(&self.steps[(S - 1) * n..]);
+        }
+        for (change, error) in changes.iter_mut().zip(&self.estimate) {
+            *change += share * error;
+        }
+    }
+
+    /// Goes on where a method with another number of stages stands: its start and its polynomial.
+    pub fn take_over<const R: usize>(&mut self, other: &Collocation<R>) {
+        self.restart();
+        self.based = other.based;
+        if other.based {
+            self.base.f.copy_from_slice(&other.base.f);
+            self.base.q.copy_from_slice(&other.base.q);
+            self.base.df.copy_from_slice(&other.base.df);
+            self.base.dq.copy_from_slice(&other.base.dq);
+        }
+        self.careful = other.careful;
+        if other.laid == 0.0 {
+            return;
+        }
+        let n = self.defect.len();
+        for (k, &point) in self.table.points.iter().enumerate() {
+            other
+                .dense()
+                .at(point, &mut self.coefficients[k * n..(k + 1) * n]);
+        }
+        divide_differences(&self.table.points, &mut self.coefficients, n);
+        (self.laid, self.origin) = (other.laid, other.origin);
     }
 
     pub fn expect_hard(&mut self, hard: bool) {

@@ -25,6 +25,7 @@ impl<const S: usize> Collocation<S> {
     ) -> Result<(f64, usize), Failure> {
         self.collect_defect(trial.length);
         let mut most = self.filtered(system, trial, counted);
+        self.estimate.copy_from_slice(&self.error);
         // Between all stages where slopes change much, else in the widest gap: an algebraic unknown is exact at every
         // stage, and only here shows how well the polynomial follows it.
         for gap in 0..S - 1 {

@@ -72,7 +72,7 @@ pub struct Variations<'a, S: ?Sized> {
     turned: bool,
     differences: Differences,
     linear: Linear,
-    stages: Option<Stages>,
+    stages: Vec<(&'static str, Stages)>,
     /// Polynomials of the step kept last: for each column the coefficients as in [`Dense`].
     coefficients: Vec<f64>,
 }
@@ -97,7 +97,7 @@ impl<'a, S: System + ?Sized> Variations<'a, S> {
             turned: true,
             differences: Differences::new(system),
             linear: Linear::new(system),
-            stages: None,
+            stages: Vec::new(),
             coefficients: Vec::new(),
         }
     }

@@ -38,7 +38,10 @@ impl Stages {
     pub fn new<S: System + ?Sized>(method: &Method, system: &S) -> Self {
         match method.family {
             Family::Diagonal(table) => Stages::Diagonal(table, table.polynomial()),
-            Family::Collocation3 => Stages::Collocation3(Box::new(Joint::new(system))),
+            // The march names the method that made the step, and a graded one is none.
+            Family::Graded | Family::Collocation3 => {
+                Stages::Collocation3(Box::new(Joint::new(system)))
+            }
             Family::Collocation5 => Stages::Collocation5(Box::new(Joint::new(system))),
         }
     }
@@ -78,16 +81,20 @@ impl<S: System + ?Sized> Variations<'_, S> {
         };
         let rows = kept.dense.coefficients.len();
         self.coefficients.resize(self.columns.len() * rows, 0.0);
-        let mut stages = self
+        let known = self
             .stages
-            .take()
-            .unwrap_or_else(|| Stages::new(method, system));
+            .iter()
+            .position(|(name, _)| *name == method.name);
+        let (name, mut stages) = match known {
+            Some(place) => self.stages.swap_remove(place),
+            None => (method.name, Stages::new(method, system)),
+        };
         let done = match &mut stages {
             Stages::Diagonal(table, polynomial) => self.one_by_one(system, table, polynomial, kept),
             Stages::Collocation3(joint) => self.together(system, joint, kept),
             Stages::Collocation5(joint) => self.together(system, joint, kept),
         };
-        self.stages = Some(stages);
+        self.stages.push((name, stages));
         done?;
         self.differences.settle();
         self.lay(kept);

@@ -5,6 +5,7 @@ use super::start::start;
 use super::swings::{Swings, Wish};
 use super::task::Start;
 use crate::circuit::Circuit;
+use crate::dae::methods;
 use crate::dae::{Advance, Ending, March, Method, Point, Span, State, Statistics, Tolerances};
 use crate::signals::{EventLog, Happening, Owner};
 use std::ops::ControlFlow;
@@ -54,11 +55,17 @@ pub struct Simulation<'a> {
     pub method: &'static Method,
 }
 
-/// Accuracy of the pilot run.
-const PILOT: f64 = 1e-2;
+/// Share of an unknown's magnitude that a step of the pilot run may be off by: a scale needs one digit.
+const PILOT: f64 = 3e-2;
+/// Share of the run in which a magnitude past fades by e from the pilot run's tolerances.
+const MEMORY: f64 = 0.1;
+/// Steps that the lightest method may take from one event to the next. It creeps where a charge of next to nothing hangs
+/// on a junction that goes from conducting to blocking; whoever rings for long is as well off with the run's own method.
+const CREEPING: u32 = 1000;
 
 impl Simulation<'_> {
-    /// Finds the swings of all unknowns by a quick pilot run.
+    /// Finds the swings of all unknowns by a quick pilot run: with the lightest method, and where that fails or creeps
+    /// with the run's own.
     pub fn pilot(&self, wishes: Vec<Wish>) -> Result<Vec<f64>, Failure> {
         let (scales, _) = self.pilot_watched(wishes, &mut |_| ControlFlow::Continue(()))?;
         Ok(scales)
@@ -70,16 +77,50 @@ impl Simulation<'_> {
         wishes: Vec<Wish>,
         watch: &mut dyn FnMut(f64) -> ControlFlow<()>,
     ) -> Result<(Vec<f64>, Ending), Failure> {
-        let mut swings = Swings::new(self.circuit.unknowns.len(), wishes);
-        let loose = self.pilot_tolerances();
-        let (_, ending) = self.march(&loose, f64::INFINITY, &mut |_, shown, log| match shown {
-            Shown::Step(step) => {
-                swings.step(step, log);
-                watch(step.to)
+        let light = self.pilot_by(methods::LIGHTEST, CREEPING, wishes.clone(), watch);
+        match light {
+            Ok((scales, Some(ending))) => Ok((scales, ending)),
+            Ok((_, None)) | Err(_) => {
+                let (scales, ending) = self.pilot_by(self.method, u32::MAX, wishes, watch)?;
+                Ok((scales, ending.unwrap_or(Ending::Stopped)))
             }
-            Shown::Start(_) | Shown::Event { .. } => ControlFlow::Continue(()),
-        })?;
-        Ok((swings.scales(self.circuit), ending))
+        }
+    }
+
+    /// One attempt: the scales, and how it ended, which is nothing where it took more than `most` steps between events.
+    fn pilot_by(
+        &self,
+        method: &'static Method,
+        most: u32,
+        wishes: Vec<Wish>,
+        watch: &mut dyn FnMut(f64) -> ControlFlow<()>,
+    ) -> Result<(Vec<f64>, Option<Ending>), Failure> {
+        let mut swings = Swings::new(self.circuit.unknowns.len(), wishes);
+        let mut steps = 0;
+        let pilot = Simulation { method, ..*self };
+        let (_, ending) = pilot.march(
+            &self.pilot_tolerances(),
+            f64::INFINITY,
+            &mut |_, shown, log| {
+                match shown {
+                    Shown::Start(_) => {}
+                    Shown::Event { .. } => steps = 0,
+                    Shown::Step(step) => {
+                        steps += 1;
+                        swings.step(step, log);
+                        if steps > most {
+                            return ControlFlow::Break(());
+                        }
+                        return watch(step.to);
+                    }
+                }
+                ControlFlow::Continue(())
+            },
+        )?;
+        Ok((
+            swings.scales(self.circuit),
+            (steps <= most).then_some(ending),
+        ))
     }
 
     /// Tolerances of the pilot run: relative, above a floor that is small for what it measures.
@@ -99,6 +140,7 @@ impl Simulation<'_> {
                 .map(|unknown| floor(unknown.measure))
                 .collect(),
             relative: PILOT,
+            memory: MEMORY * self.settings.duration,
         }
     }
 

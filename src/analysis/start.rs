@@ -107,6 +107,7 @@ fn fine(circuit: &Circuit) -> Tolerances {
     Tolerances {
         absolute,
         relative: 1e-8,
+        memory: f64::INFINITY,
     }
 }
 

@@ -421,9 +421,12 @@ impl<S: System + ?Sized> Run<'_, '_, '_, S> {
         }
         scratch.stepper.keep();
         scratch.watch.keep();
-        scratch
-            .pile
-            .weigh(self.span.tolerances, &self.state.x, &mut scratch.weights);
+        scratch.pile.weigh(
+            self.span.tolerances,
+            &self.state.x,
+            to - from,
+            &mut scratch.weights,
+        );
         self.counted.accepted += 1;
         let step = Step {
             from,
@@ -463,9 +466,12 @@ impl<S: System + ?Sized> Run<'_, '_, '_, S> {
                 self.length = length;
                 scratch.stepper.expect_hard(hard);
             }
-            scratch
-                .pile
-                .weigh(self.span.tolerances, &self.state.x, &mut scratch.weights);
+            scratch.pile.weigh(
+                self.span.tolerances,
+                &self.state.x,
+                0.0,
+                &mut scratch.weights,
+            );
         }
         Ok((self.observer)(&event))
     }

@@ -22,6 +22,8 @@ pub(crate) struct Pile {
     pub errors: Vec<f64>,
     /// Share of the tolerance in force.
     pub share: f64,
+    /// Share that is in the weights.
+    weighed: f64,
 }
 
 impl Pile {
@@ -30,17 +32,24 @@ impl Pile {
         Pile {
             errors: vec![0.0; size],
             share: 1.0,
+            weighed: 1.0,
         }
     }
 
-    /// Reciprocal tolerances at `x`, with the share in force.
-    pub fn weigh(&self, tolerances: &Tolerances, x: &[f64], weights: &mut [f64]) {
-        tolerances.weigh(x, weights);
+    /// Lets the reciprocal tolerances follow to `x`, where the march has gone on by `length` [s], with the share in force.
+    pub fn weigh(&mut self, tolerances: &Tolerances, x: &[f64], length: f64, weights: &mut [f64]) {
+        if self.weighed < 1.0 {
+            for weight in &mut *weights {
+                *weight *= self.weighed;
+            }
+        }
+        tolerances.follow(x, length, weights);
         if self.share < 1.0 {
             for weight in weights {
                 *weight /= self.share;
             }
         }
+        self.weighed = self.share;
     }
 
     /// The errors are now this many tolerances (without the share) high; up to `free` of them are harmless.

@@ -5,8 +5,11 @@
 pub struct Tolerances {
     /// Absolute part, one positive value per unknown.
     pub absolute: Vec<f64>,
-    /// Share of the unknown's present magnitude that is added; 0 leaves the absolute part alone.
+    /// Share of the unknown's magnitude that is added; 0 leaves the absolute part alone.
     pub relative: f64,
+    /// How long a magnitude past still counts [s], 0 for the present one alone: it fades by e in this time. An
+    /// oscillation's zeros are then not resolved as if they were all there is.
+    pub memory: f64,
 }
 
 impl Tolerances {
@@ -15,13 +18,27 @@ impl Tolerances {
         Tolerances {
             absolute,
             relative: 0.0,
+            memory: f64::INFINITY,
         }
     }
 
-    /// Fills `weights` with the reciprocal of what is tolerated at `x`.
+    /// Fills `weights` with the reciprocal of what is tolerated at `x`, where a march begins.
     pub(crate) fn weigh(&self, x: &[f64], weights: &mut [f64]) {
         for ((weight, &absolute), &value) in weights.iter_mut().zip(&self.absolute).zip(x) {
             *weight = 1.0 / (absolute + self.relative * value.abs());
+        }
+    }
+
+    /// Lets `weights` follow to `x`, where the march has gone on by `length` [s].
+    pub(crate) fn follow(&self, x: &[f64], length: f64, weights: &mut [f64]) {
+        if self.relative == 0.0 {
+            self.weigh(x, weights);
+            return;
+        }
+        let faded = (length / self.memory).exp();
+        for ((weight, &absolute), &value) in weights.iter_mut().zip(&self.absolute).zip(x) {
+            let here = 1.0 / (absolute + self.relative * value.abs());
+            *weight = here.min(*weight * faded);
         }
     }
 }

@@ -17,6 +17,7 @@ mod long_runs;
 mod netlists;
 mod numerical_error;
 mod peers;
+mod pilot;
 mod plots;
 mod readme;
 mod record;

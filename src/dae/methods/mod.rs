@@ -37,6 +37,9 @@ pub const METHODS: &[Method] = &[
     esdirk4::METHOD,
 ];
 
+/// The method with the lightest step: where a rough answer will do.
+pub const LIGHTEST: &Method = &tr_bdf2::METHOD;
+
 /// An implicit one-step method.
 #[derive(Clone, Copy, Debug)]
 pub struct Method {

@@ -48,6 +48,7 @@ fn a_junction_without_capacitance_is_followed_at_loose_and_fine_tolerances() {
             let tolerances = Tolerances {
                 absolute: absolute.to_vec(),
                 relative,
+                memory: 0.0,
             };
             let state = State {
                 time: 0.0,

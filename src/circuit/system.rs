@@ -147,6 +147,6 @@ impl Circuit {
 const MOST_AT_ONCE: usize = 16;
 
 fn zeroed(values: &mut Vec<f64>, size: usize) {
-    values.clear();
     values.resize(size, 0.0);
+    values.fill(0.0);
 }

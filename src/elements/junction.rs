@@ -131,7 +131,7 @@ impl Conduction {
     /// strongest curvature is taken on the current's scale instead of the voltage's.
     pub fn limited(&self, old: f64, new: f64) -> f64 {
         let forward = if self.saturation_current > 0.0 {
-            climb(old, new, self.slope_voltage, self.critical())
+            climb(old, new, self.slope_voltage, || self.critical())
         } else {
             new
         };
@@ -153,8 +153,13 @@ impl Conduction {
 }
 
 /// Limits a climb on an exponential: the current may grow as its tangent says, so the voltage by the logarithm.
-fn climb(old: f64, new: f64, scale: f64, critical: f64) -> f64 {
-    if new <= critical || new - old <= 2.0 * scale {
+fn climb(old: f64, new: f64, scale: f64, critical: impl Fn() -> f64) -> f64 {
+    // Nearly all steps end at the first comparison, before the logarithm.
+    if new - old <= 2.0 * scale {
+        return new;
+    }
+    let critical = critical();
+    if new <= critical {
         return new;
     }
     if old > 0.0 {

@@ -11,39 +11,41 @@ pub const NOWHERE: u32 = u32::MAX;
 
 /// Where shares go; made anew for each evaluation of the whole circuit.
 pub struct Stamper<'a> {
-    goal: Goal<'a>,
+    f: &'a mut [f64],
+    q: &'a mut [f64],
+    /// Slopes df and dq.
+    slopes: [&'a mut [f64]; 2],
+    /// Slots of the slopes that are still to come; none where no slopes are asked for.
+    slots: std::slice::Iter<'a, u32>,
+    /// Where positions are recorded instead.
+    record: Option<&'a mut Vec<(Unknown, Unknown)>>,
     /// What independent sources multiply their value by: 1 but while an operating point is being sought.
     source_share: f64,
-}
-
-enum Goal<'a> {
-    Record(&'a mut Vec<(Unknown, Unknown)>),
-    Fill {
-        out: &'a mut Evaluation,
-        slots: &'a [u32],
-        next: usize,
-        slopes: bool,
-    },
 }
 
 impl<'a> Stamper<'a> {
     /// Records the positions only; values are dropped.
     pub fn recording(positions: &'a mut Vec<(Unknown, Unknown)>) -> Self {
         Stamper {
-            goal: Goal::Record(positions),
+            f: &mut [],
+            q: &mut [],
+            slopes: [&mut [], &mut []],
+            slots: [].iter(),
+            record: Some(positions),
             source_share: 1.0,
         }
     }
 
     /// Adds to `out`, whose vectors are sized and zeroed; `slots` is one number per recorded position.
     pub fn filling(out: &'a mut Evaluation, slots: &'a [u32], slopes: bool) -> Self {
+        let Evaluation { f, q, df, dq } = out;
+        let slots = if slopes { slots } else { &[] };
         Stamper {
-            goal: Goal::Fill {
-                out,
-                slots,
-                next: 0,
-                slopes,
-            },
+            f,
+            q,
+            slopes: [df, dq],
+            slots: slots.iter(),
+            record: None,
             source_share: 1.0,
         }
     }
@@ -64,9 +66,7 @@ impl<'a> Stamper<'a> {
     /// Adds `value` to f of a row.
     #[inline]
     pub fn f(&mut self, row: Unknown, value: f64) {
-        if let Goal::Fill { out, .. } = &mut self.goal
-            && let Some(f) = out.f.get_mut(row.0 as usize)
-        {
+        if let Some(f) = self.f.get_mut(row.0 as usize) {
             *f += value;
         }
     }
@@ -74,9 +74,7 @@ impl<'a> Stamper<'a> {
     /// Adds `value` to q of a row.
     #[inline]
     pub fn q(&mut self, row: Unknown, value: f64) {
-        if let Goal::Fill { out, .. } = &mut self.goal
-            && let Some(q) = out.q.get_mut(row.0 as usize)
-        {
+        if let Some(q) = self.q.get_mut(row.0 as usize) {
             *q += value;
         }
     }
@@ -95,23 +93,12 @@ impl<'a> Stamper<'a> {
 
     #[inline]
     fn slope(&mut self, row: Unknown, column: Unknown, slope: f64, charge: bool) {
-        match &mut self.goal {
-            Goal::Record(positions) => positions.push((row, column)),
-            Goal::Fill {
-                out,
-                slots,
-                next,
-                slopes,
-            } => {
-                if *slopes {
-                    let slot = slots[*next] as usize;
-                    *next += 1;
-                    let into = if charge { &mut out.dq } else { &mut out.df };
-                    if let Some(value) = into.get_mut(slot) {
-                        *value += slope;
-                    }
-                }
+        if let Some(&slot) = self.slots.next() {
+            if let Some(value) = self.slopes[usize::from(charge)].get_mut(slot as usize) {
+                *value += slope;
             }
+        } else if let Some(positions) = &mut self.record {
+            positions.push((row, column));
         }
     }
 

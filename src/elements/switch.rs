@@ -102,6 +102,8 @@ struct Switch {
     /// Logarithms of both conductances.
     closed: f64,
     open: f64,
+    /// Conductances closed and open [S].
+    at_rest: (f64, f64),
     transition: f64,
     breakdown: Option<Breakdown>,
     branch: Branch,
@@ -137,6 +139,7 @@ fn read(fields: &Fields<'_>, around: &Surroundings<'_>) -> Option<Made> {
         initially_closed,
         closed: 0.0,
         open: 0.0,
+        at_rest: (0.0, 0.0),
         transition: 0.0,
         breakdown: None,
         branch: Branch::default(),
@@ -204,7 +207,11 @@ impl Switch {
     }
 
     fn conductance(&self, at: Point<'_>) -> f64 {
-        self.logarithm(at.time, at.mode).exp()
+        match at.mode[STATE] {
+            CLOSED => self.at_rest.0,
+            OPEN => self.at_rest.1,
+            _ => self.logarithm(at.time, at.mode).exp(),
+        }
     }
 
     /// Breakdown current [A] and slope [S].
@@ -245,6 +252,7 @@ impl Element for Switch {
         }
         self.closed = -closed.ln();
         self.open = -open.ln();
+        self.at_rest = (self.closed.exp(), self.open.exp());
         self.transition = values[self.keys.transition];
         self.breakdown = self.keys.breakdown.map(|(voltage, resistance)| Breakdown {
             knee: values[voltage],

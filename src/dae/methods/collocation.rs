@@ -30,7 +30,7 @@ const PATIENCE: u32 = 10;
 /// Memory of the family.
 #[derive(Debug)]
 pub(crate) struct Collocation<const S: usize> {
-    pub(super) table: Coefficients<S>,
+    pub(super) table: &'static Coefficients<S>,
     pub(super) pattern: Pattern,
     pub(super) split: Split<S>,
     pub(super) coupled: Coupled<S>,
@@ -92,7 +92,7 @@ impl<const S: usize> Collocation<S> {
     pub fn new<Y: System + ?Sized>(system: &Y, elimination: Elimination) -> Self {
         let (n, pattern) = (system.size(), system.pattern().clone());
         Collocation {
-            table: Coefficients::new(),
+            table: Coefficients::shared(),
             split: Split::new(&pattern, elimination),
             coupled: Coupled::new(&pattern, elimination),
             stages: vec![0.0; (S + 1) * n],

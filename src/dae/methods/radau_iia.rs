@@ -8,6 +8,8 @@ use super::{Family, Method};
 use crate::math::dense::DenseLu;
 use nalgebra::DMatrix;
 use num_complex::Complex64;
+use std::any::Any;
+use std::sync::OnceLock;
 
 /// Three stages or five, as it pays: the orders are those of three.
 pub const GRADED: Method = Method {
@@ -87,8 +89,23 @@ fn between<const S: usize>(points: &[f64], share: f64) -> Between<S> {
     at
 }
 
+static THREE: OnceLock<Coefficients<3>> = OnceLock::new();
+static FIVE_STAGES: OnceLock<Coefficients<5>> = OnceLock::new();
+
 impl<const S: usize> Coefficients<S> {
-    pub fn new() -> Self {
+    /// The coefficients, worked out once for the whole program: a short run would spend a share of its time on them.
+    pub fn shared() -> &'static Self {
+        let table: &'static dyn Any = if S == 3 {
+            THREE.get_or_init(Coefficients::new)
+        } else {
+            FIVE_STAGES.get_or_init(Coefficients::new)
+        };
+        table
+            .downcast_ref()
+            .expect("the methods have three stages or five")
+    }
+
+    fn new() -> Self {
         let mut points = vec![0.0];
         points.extend(right_radau_points(S));
         let slopes = differentiation(&points);

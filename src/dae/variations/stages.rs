@@ -49,7 +49,7 @@ impl Stages {
 
 /// Memory for the stages of a collocation step.
 pub(super) struct Joint<const K: usize> {
-    table: Coefficients<K>,
+    table: &'static Coefficients<K>,
     coupled: Coupled<K>,
     outs: [Evaluation; K],
     explicit: [Explicit; K],
@@ -58,7 +58,7 @@ pub(super) struct Joint<const K: usize> {
 impl<const K: usize> Joint<K> {
     fn new<S: System + ?Sized>(system: &S) -> Self {
         Joint {
-            table: Coefficients::new(),
+            table: Coefficients::shared(),
             coupled: Coupled::new(system.pattern(), Elimination::Automatic),
             outs: std::array::from_fn(|_| evaluation(system.size(), system.pattern().len())),
             explicit: std::array::from_fn(|_| Explicit::default()),

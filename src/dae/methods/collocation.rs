@@ -164,7 +164,7 @@ impl<const S: usize> Collocation<S> {
                     *step = rate * charge;
                 }
             }
-            self.split.solve(&self.table, &mut self.steps);
+            self.split.solve(self.table, &mut self.steps);
             changes.copy_from_slice(&self.steps[(S - 1) * n..]);
         }
         for (change, error) in changes.iter_mut().zip(&self.estimate) {
@@ -283,7 +283,7 @@ impl<const S: usize> Collocation<S> {
         }
         self.factored = 0.0;
         self.split.take_slopes(&self.next);
-        self.split.factor_real(&self.table, trial.length)?;
+        self.split.factor_real(self.table, trial.length)?;
         counted.factorizations += 1;
         self.split.solve_real(&mut self.error);
         counted.solves += 1;
@@ -329,10 +329,10 @@ impl<const S: usize> Collocation<S> {
         }
         self.factored = 0.0;
         self.split.take_slopes(&self.base);
-        self.split.factor_real(&self.table, trial.length)?;
+        self.split.factor_real(self.table, trial.length)?;
         counted.factorizations += 1;
         if self.hard == 0 {
-            self.split.factor_pairs(&self.table, trial.length)?;
+            self.split.factor_pairs(self.table, trial.length)?;
             counted.factorizations += self.table.pairs.len() as u64;
             self.factored = trial.length;
         }

@@ -159,7 +159,7 @@ impl<const S: usize> Collocation<S> {
         if self.own {
             self.split.take_slopes(&self.probe);
             self.factored = 0.0;
-            self.split.factor_real(&self.table, trial.length)?;
+            self.split.factor_real(self.table, trial.length)?;
             counted.factorizations += 1;
         }
         let rows = self.defect.iter().zip(&self.probe.f);

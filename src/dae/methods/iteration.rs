@@ -198,7 +198,7 @@ impl<const S: usize> Collocation<S> {
                 self.steps[k % S * n + k / S] = step;
             }
         } else {
-            self.split.solve(&self.table, &mut self.steps);
+            self.split.solve(self.table, &mut self.steps);
             counted.solves += 1 + self.table.pairs.len() as u64;
         }
     }
@@ -229,7 +229,7 @@ impl<const S: usize> Collocation<S> {
                 most = most.max((step * trial.weights[k / S]).abs());
             }
         } else {
-            self.split.solve(&self.table, &mut self.steps);
+            self.split.solve(self.table, &mut self.steps);
             for steps in self.steps.chunks_exact(n.max(1)) {
                 most = most.max(largest(steps, trial.weights).0);
             }

@@ -1,12 +1,15 @@
 //! A transient: the pilot run that finds the swings, then the run itself, shown to an observer.
 
 use super::failure::Failure;
-use super::start::start;
+use super::start::{Begun, begin, vary};
 use super::swings::{Swings, Wish};
 use super::task::Start;
 use crate::circuit::Circuit;
 use crate::dae::methods;
-use crate::dae::{Advance, Ending, March, Method, Point, Span, State, Statistics, Tolerances};
+use crate::dae::{
+    Advance, Ending, March, Method, Moved, Point, Shadows, Span, State, Statistics, Tolerances,
+    Variations,
+};
 use crate::signals::{EventLog, Happening, Owner};
 use std::ops::ControlFlow;
 
@@ -39,6 +42,8 @@ pub enum Shown<'a> {
         after: Point<'a>,
         /// Elements that opened or closed.
         happened: &'a [(usize, Happening)],
+        /// Derivatives at it, where variations are carried along.
+        varied: Option<Moved<'a>>,
     },
 }
 
@@ -53,6 +58,12 @@ pub struct Simulation<'a> {
     pub settings: Settings,
     /// The method.
     pub method: &'static Method,
+}
+
+/// Tolerances of a march, of which `pile` may pile up.
+struct Wanted<'a> {
+    tolerances: &'a Tolerances,
+    pile: f64,
 }
 
 /// Share of an unknown's magnitude that a step of the pilot run may be off by: a scale needs one digit.
@@ -98,25 +109,26 @@ impl Simulation<'_> {
         let mut swings = Swings::new(self.circuit.unknowns.len(), wishes);
         let mut steps = 0;
         let pilot = Simulation { method, ..*self };
-        let (_, ending) = pilot.march(
-            &self.pilot_tolerances(),
-            f64::INFINITY,
-            &mut |_, shown, log| {
-                match shown {
-                    Shown::Start(_) => {}
-                    Shown::Event { .. } => steps = 0,
-                    Shown::Step(step) => {
-                        steps += 1;
-                        swings.step(step, log);
-                        if steps > most {
-                            return ControlFlow::Break(());
-                        }
-                        return watch(step.to);
+        let wanted = Wanted {
+            tolerances: &self.pilot_tolerances(),
+            pile: f64::INFINITY,
+        };
+        let begun = begin(self.circuit, self.settings.start)?;
+        let (_, ending) = pilot.march(wanted, begun, None, &mut |_, shown, log| {
+            match shown {
+                Shown::Start(_) => {}
+                Shown::Event { .. } => steps = 0,
+                Shown::Step(step) => {
+                    steps += 1;
+                    swings.step(step, log);
+                    if steps > most {
+                        return ControlFlow::Break(());
                     }
+                    return watch(step.to);
                 }
-                ControlFlow::Continue(())
-            },
-        )?;
+            }
+            ControlFlow::Continue(())
+        })?;
         Ok((
             swings.scales(self.circuit),
             (steps <= most).then_some(ending),
@@ -150,21 +162,53 @@ impl Simulation<'_> {
         scales: &[f64],
         watcher: &mut Watcher<'_>,
     ) -> Result<(Statistics, Ending), Failure> {
+        let begun = begin(self.circuit, self.settings.start)?;
+        self.march_scaled(scales, begun, None, watcher)
+    }
+
+    /// The same, and the derivatives by each column's parameter are carried along: steps and events are shown with them.
+    pub fn run_varied(
+        &self,
+        scales: &[f64],
+        columns: &[Shadows<'_, Circuit>],
+        watcher: &mut Watcher<'_>,
+    ) -> Result<(Statistics, Ending), Failure> {
+        let (circuit, from) = (self.circuit, self.settings.start);
+        let begun = begin(circuit, from)?;
+        let all = columns.iter().copied().map(Some).collect();
+        let mut variations = Variations::new(circuit, all, scales.to_vec());
+        vary(circuit, from, &begun, columns, &mut variations)?;
+        self.march_scaled(scales, begun, Some(&mut variations), watcher)
+    }
+
+    fn march_scaled(
+        &self,
+        scales: &[f64],
+        begun: Begun,
+        variations: Option<&mut Variations<'_, Circuit>>,
+        watcher: &mut Watcher<'_>,
+    ) -> Result<(Statistics, Ending), Failure> {
         let accuracy = self.settings.accuracy;
         let local = self.method.local_tolerance(accuracy);
         let fine = Tolerances::absolute(scales.iter().map(|scale| local * scale).collect());
-        self.march(&fine, Method::pile(accuracy), watcher)
+        let wanted = Wanted {
+            tolerances: &fine,
+            pile: Method::pile(accuracy),
+        };
+        self.march(wanted, begun, variations, watcher)
     }
 
-    /// Runs with given tolerances, of which `pile` may pile up.
     fn march(
         &self,
-        tolerances: &Tolerances,
-        pile: f64,
+        wanted: Wanted<'_>,
+        begun: Begun,
+        variations: Option<&mut Variations<'_, Circuit>>,
         watcher: &mut Watcher<'_>,
     ) -> Result<(Statistics, Ending), Failure> {
         let circuit = self.circuit;
-        let (state, happened) = start(circuit, self.settings.start)?;
+        let Begun {
+            state, happened, ..
+        } = begun;
         let mut log = EventLog::default();
         for (k, what) in happened {
             log.note(&owner(circuit, k), what, 0.0);
@@ -174,12 +218,12 @@ impl Simulation<'_> {
         }
         let mut march = March::new(self.method, state);
         let span = Span {
-            pile,
+            pile: wanted.pile,
             longest_step: self.settings.longest_step,
-            ..Span::new(self.settings.duration, tolerances)
+            ..Span::new(self.settings.duration, wanted.tolerances)
         };
         let ending = march
-            .run(circuit, span, &mut |advance| match advance {
+            .run_varied(circuit, span, variations, &mut |advance| match advance {
                 Advance::Start { .. } => ControlFlow::Continue(()),
                 Advance::Step(step) => watcher(circuit, Shown::Step(step), &log),
                 Advance::Event {
@@ -189,7 +233,7 @@ impl Simulation<'_> {
                     x_after,
                     mode_before,
                     mode_after,
-                    ..
+                    varied,
                 } => {
                     let (mut x, mut mode) = (x_before.to_vec(), mode_before.to_vec());
                     let mut happened = Vec::new();
@@ -218,6 +262,7 @@ impl Simulation<'_> {
                             before,
                             after,
                             happened: &happened,
+                            varied: *varied,
                         },
                         &log,
                     )

@@ -5,15 +5,33 @@ use super::task::Start;
 use crate::circuit::Circuit;
 use crate::circuit::checks::without_rest;
 use crate::dae::{
-    Cause, Evaluation, Point, State, System, Tolerances, Trouble, consistent_start, operating_point,
+    Cause, Evaluation, Point, Shadows, State, System, Tolerances, Trouble, Variations,
+    consistent_start, operating_point,
 };
 use crate::elements::{Happening, Measure};
+use crate::math::Singular;
 
 /// Rounds in which watches may change their switches at the start before that counts as chattering.
 const MOST_ROUNDS: usize = 32;
 
+/// Where a run begins.
+pub struct Begun {
+    /// Before the clock's events of time zero.
+    pub rested: State,
+    /// After them: a consistent state.
+    pub state: State,
+    /// What happened at that very instant.
+    pub happened: Vec<(usize, Happening)>,
+}
+
 /// A consistent state at time zero, and what happened at that very instant.
 pub fn start(circuit: &Circuit, from: Start) -> Result<(State, Vec<(usize, Happening)>), Failure> {
+    let begun = begin(circuit, from)?;
+    Ok((begun.state, begun.happened))
+}
+
+/// Where a run begins, with the way there.
+pub fn begin(circuit: &Circuit, from: Start) -> Result<Begun, Failure> {
     let tolerances = fine(circuit);
     let mut state = State {
         time: 0.0,
@@ -41,8 +59,67 @@ pub fn start(circuit: &Circuit, from: Start) -> Result<(State, Vec<(usize, Happe
             },
         ));
     }
+    let rested = state.clone();
     let happened = first_instant(circuit, &mut state, &tolerances)?;
-    Ok((state, happened))
+    Ok(Begun {
+        rested,
+        state,
+        happened,
+    })
+}
+
+/// Starts variations where a run begins: at rest the equations themselves tell how the state moves with a parameter, from
+/// given charges these do; and charges pass the events of time zero.
+///
+/// # Errors
+/// A start that is not determined.
+pub fn vary(
+    circuit: &Circuit,
+    from: Start,
+    begun: &Begun,
+    columns: &[Shadows<'_, Circuit>],
+    variations: &mut Variations<'_, Circuit>,
+) -> Result<(), Failure> {
+    let slopes = |of: fn(&Circuit) -> Vec<f64>| -> Vec<Vec<f64>> {
+        let slope = |shadows: &Shadows<'_, Circuit>| {
+            let (more, less) = (of(shadows.more), of(shadows.less));
+            let pairs = more.iter().zip(&less);
+            pairs
+                .map(|(more, less)| (more - less) / (2.0 * shadows.step))
+                .collect()
+        };
+        columns.iter().map(slope).collect()
+    };
+    for (column, modes) in slopes(Circuit::start_mode).iter().enumerate() {
+        variations.mode_mut(column).copy_from_slice(modes);
+    }
+    let failed = |singular: Singular| {
+        let cause = Trouble::Singular;
+        Failure::start(
+            circuit,
+            crate::dae::StartError {
+                unknown: Some(singular.column),
+                cause,
+            },
+        )
+    };
+    let rested = begun.rested.point();
+    match from {
+        Start::OperatingPoint => variations.start_at_rest(circuit, rested),
+        Start::Zero => {
+            let charges = slopes(Circuit::initial_charges).concat();
+            variations.start_from_charges(circuit, rested, &charges)
+        }
+    }
+    .map_err(failed)?;
+    if begun.rested.mode != begun.state.mode {
+        let charges = (0..columns.len()).flat_map(|column| variations.q(column).to_vec());
+        let charges: Vec<f64> = charges.collect();
+        variations
+            .start_from_charges(circuit, begun.state.point(), &charges)
+            .map_err(failed)?;
+    }
+    Ok(())
 }
 
 /// The state at rest with given modes; no event is taken.

@@ -6,7 +6,7 @@ use super::interrupt::Interrupt;
 use super::progress::Progress;
 use crate::report::files::{self, FileError, write};
 use crate::report::{chart, plots, run};
-use crate::run::{Netlist, Outcome, Request, Stage};
+use crate::run::{Netlist, Outcome, Request, Stage, parameter};
 use std::path::{Path, PathBuf};
 
 /// Arguments of `run`.
@@ -20,18 +20,32 @@ pub struct Arguments {
     /// Repeats the run at a tenth of the accuracy and states the numerical error of each reading
     #[arg(long)]
     verify: bool,
+    /// Differentiates every reading by these values, such as `elements.k1_coil.resistance`
+    #[arg(long, value_name = "PATH", num_args = 1..)]
+    sensitivity: Vec<String>,
 }
 
 /// Runs the command.
 pub fn main(arguments: &Arguments) -> u8 {
     let source = &arguments.source;
-    let netlist = match source.read() {
+    let mut netlist = match source.read() {
         Ok(netlist) => netlist,
         Err(code) => return code,
     };
-    let request = Request {
+    let mut request = Request {
         verify: arguments.verify,
+        ..Request::default()
     };
+    let mut unknown = Vec::new();
+    for path in &arguments.sensitivity {
+        match parameter(&mut netlist, path.trim()) {
+            Ok(value) => request.sensitivity.push(value),
+            Err(diagnostic) => unknown.push(*diagnostic),
+        }
+    }
+    if !unknown.is_empty() {
+        return source.fail(exit::WRONG, &unknown, &netlist.sources);
+    }
     let interrupt = Interrupt::listen();
     let mut progress = Progress::new();
     let result = crate::run::perform(&netlist, &request, &mut |stage, time, duration| {

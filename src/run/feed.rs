@@ -232,7 +232,8 @@ impl Feed {
         keeper.map_or(Ledger::default(), |keeper| keeper.close(circuit, at))
     }
 
-    fn found(&self) -> Vec<Found> {
+    /// What the readings came to so far.
+    pub fn found(&self) -> Vec<Found> {
         let takings = self.readings.iter();
         takings.map(|(_, taking)| taking.finish()).collect()
     }

@@ -12,6 +12,7 @@ mod obvious;
 mod outcome;
 mod repeated;
 mod results;
+mod sensitivity;
 mod verify;
 mod watched;
 
@@ -20,12 +21,17 @@ pub use coils::{CoilReport, CurvePoint, coil_reports};
 pub use netlist::{Netlist, ReadError, Sizing, read, read_coils, read_document};
 pub use outcome::{LimitResult, Outcome, RatingResult, ReadingResult, Work};
 pub use repeated::{Figures, RatingFigure, again, pilot};
+pub use sensitivity::{Sensitivity, parameter};
 
+use crate::analysis::simulate::Shown;
 use crate::analysis::{Analysis, Failure, Settings, Simulation, Transient, Wish};
 use crate::circuit::{Circuit, Tap};
 use crate::dae::{Ending, Method, Point};
 use crate::elements::Unknown;
+use crate::netlist::Value;
+use crate::signals::EventLog;
 use feed::{Feed, Keeps};
+use sensitivity::Neighbours;
 use std::ops::ControlFlow;
 
 /// What is asked of a run besides what its netlist asks.
@@ -33,6 +39,8 @@ use std::ops::ControlFlow;
 pub struct Request {
     /// Repeat it at a tenth of the accuracy and state the numerical error of each reading.
     pub verify: bool,
+    /// Values by which every reading is differentiated.
+    pub sensitivity: Vec<Value>,
 }
 
 /// What a run is at.
@@ -122,11 +130,28 @@ fn over_time(
         waveforms: Some((circuit.values()[transient.record_from], duration)),
         accounts: None,
     };
+    let neighbours = request.sensitivity.iter();
+    let neighbours: Vec<Neighbours> = neighbours
+        .map(|&value| Neighbours::of(netlist, value))
+        .collect::<Result<_, Failure>>()?;
     let mut feed = Feed::new(netlist, keeps);
-    let (counted, ending) = simulation.run_scaled(&scales, &mut |circuit, shown, log| {
+    let mut moved = sensitivity::Watcher::new(&neighbours);
+    let mut show = |circuit: &Circuit, shown: Shown<'_>, log: &EventLog| {
+        if !neighbours.is_empty() {
+            moved.take(&shown, log);
+        }
         watch(Stage::Run, feed.take(circuit, shown, log), duration)
-    })?;
-    let mut outcome = feed.finish(netlist, duration, Work { counted, ending });
+    };
+    let (counted, ending) = if neighbours.is_empty() {
+        simulation.run_scaled(&scales, &mut show)?
+    } else {
+        let shadows: Vec<_> = neighbours.iter().map(Neighbours::shadows).collect();
+        simulation.run_varied(&scales, &shadows, &mut show)?
+    };
+    let work = Work { counted, ending };
+    let sensitivities = moved.finish(netlist, &feed.found(), work);
+    let mut outcome = feed.finish(netlist, duration, work);
+    outcome.sensitivities = sensitivities;
     if request.verify && ending == Ending::Reached {
         let repeated = verify::Repeated {
             netlist,

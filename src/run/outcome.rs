@@ -1,6 +1,6 @@
 //! What a run came to.
 
-use super::CoilReport;
+use super::{CoilReport, Sensitivity};
 use crate::analysis::{Account, Ledger};
 use crate::dae::{Ending, Statistics};
 use crate::diag::Diagnostic;
@@ -103,6 +103,8 @@ pub struct Outcome {
     pub cautions: Vec<Diagnostic>,
     /// Defaults used.
     pub defaults: Vec<DefaultUsed>,
+    /// How the readings move with the values that were asked for.
+    pub sensitivities: Vec<Sensitivity>,
     /// Recorded waveforms.
     pub traces: Vec<Trace>,
     /// What happened when.

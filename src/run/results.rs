@@ -53,6 +53,7 @@ pub fn outcome(netlist: &Netlist, analysis: &'static str, findings: Findings) ->
         coils: coil_reports(circuit),
         cautions: netlist.cautions.clone(),
         defaults: netlist.defaults.clone(),
+        sensitivities: Vec::new(),
         traces: findings.traces,
         events: findings.events,
     };

@@ -23,7 +23,10 @@ const WITHIN: f64 = 0.9;
 
 fn verified(netlist: &str, accuracy: &str) -> Outcome {
     let accuracy = format!("analysis.transient.accuracy={accuracy}");
-    let request = Request { verify: true };
+    let request = Request {
+        verify: true,
+        ..Request::default()
+    };
     let netlist = from_text(netlist, &[&accuracy]);
     perform(&netlist, &request, &mut |_, _, _| ControlFlow::Continue(()))
         .unwrap_or_else(|failure| panic!("{failure:?}"))
@@ -212,7 +215,10 @@ fn without_verification_no_error_is_stated() {
 
 #[test]
 fn a_repetition_that_is_stopped_leaves_the_outcome_and_says_so() {
-    let request = Request { verify: true };
+    let request = Request {
+        verify: true,
+        ..Request::default()
+    };
     let outcome = perform(
         &from_text(CLOSE, &[]),
         &request,

@@ -418,7 +418,7 @@ impl<S: System + ?Sized> Variations<'_, S> {
                 if taken.cause == Cause::Time {
                     let mut next = shadow.next_event(self.last_event_of(column, shift), &mode);
                     for _ in 0..MOST_AT_ONCE {
-                        if next > limit {
+                        if next > limit || next == f64::INFINITY {
                             break;
                         }
                         shadow.transition(Cause::Time, next, &mut x, &mut mode);

@@ -13,6 +13,7 @@
 mod events;
 mod explicit;
 mod linear;
+mod shifted;
 mod stages;
 
 use super::dense::Dense;
@@ -22,6 +23,7 @@ use super::system::{Point, System};
 pub(crate) use events::Taken;
 use explicit::{Differences, Explicit, Moving};
 use linear::Linear;
+pub use shifted::{HeldStep, MovedStep};
 pub(crate) use stages::Kept;
 use stages::Stages;
 
@@ -155,6 +157,8 @@ impl<'a, S: System + ?Sized> Variations<'a, S> {
             points,
             coefficients: &self.coefficients,
             size: self.scales.len(),
+            modes: &self.mode,
+            mode_size: self.differences.modes(),
         }
     }
 
@@ -174,9 +178,16 @@ pub struct Varied<'a> {
     points: &'a [f64],
     coefficients: &'a [f64],
     size: usize,
+    modes: &'a [f64],
+    mode_size: usize,
 }
 
 impl<'a> Varied<'a> {
+    /// d(mode)/dp of a column, constant over the step.
+    pub fn mode(&self, column: usize) -> &'a [f64] {
+        &self.modes[column * self.mode_size..(column + 1) * self.mode_size]
+    }
+
     /// The polynomial of dx/dp of a column, at fixed time.
     pub fn dense(&self, column: usize) -> Dense<'a> {
         let rows = self.points.len() * self.size;

@@ -27,6 +27,7 @@ pub fn run(outcome: &Outcome) -> Value {
         .value("steady_state", Value::Null)
         .value("cautions", cautions(&outcome.cautions))
         .value("defaults", defaults(outcome))
+        .value("sensitivities", sensitivities(outcome))
         .into()
 }
 
@@ -39,6 +40,25 @@ fn readings(outcome: &Outcome) -> Value {
             .optional("error", reading.error)
             .optional("time_error", reading.time_error);
         (reading.name.clone(), object)
+    }))
+}
+
+/// Derivatives by reading and path; null where none was asked for.
+fn sensitivities(outcome: &Outcome) -> Value {
+    if outcome.sensitivities.is_empty() {
+        return Value::Null;
+    }
+    table(outcome.readings.iter().map(|reading| {
+        let own = outcome.sensitivities.iter();
+        let own = own.filter(|sensitivity| sensitivity.reading == reading.name);
+        let rows = own.map(|sensitivity| {
+            let object = Object::new()
+                .optional("value", sensitivity.value)
+                .text("unit", Some(&sensitivity.unit()))
+                .text("remark", sensitivity.remark);
+            (sensitivity.path.clone(), object)
+        });
+        (reading.name.clone(), table(rows))
     }))
 }
 

@@ -22,6 +22,7 @@ pub fn run(outcome: &Outcome, screen: Screen) -> String {
     let _ = writeln!(text, "{}", answer(outcome));
     section(&mut text, "Limits", &limits(outcome), screen);
     section(&mut text, "Readings", &readings(outcome), screen);
+    section(&mut text, "Sensitivities", &sensitivities(outcome), screen);
     section(&mut text, "Ratings used", &ratings(outcome), screen);
     section(&mut text, "Where the energy went", &ledger(outcome), screen);
     if !outcome.accounts.is_empty() {
@@ -222,6 +223,33 @@ fn verified(outcome: &Outcome) -> Table {
             or_nothing(reading.time_error, "s", 2),
             reading.remark.unwrap_or("").to_owned(),
         ]);
+    }
+    table
+}
+
+/// How readings move with values: the derivative, and what a step of the value changes.
+fn sensitivities(outcome: &Outcome) -> Table {
+    let mut table = Table::new()
+        .column("reading", Align::Left)
+        .column("value moved", Align::Left)
+        .column("derivative", Align::Right)
+        .column("step", Align::Right)
+        .column("changes it by", Align::Right)
+        .column("", Align::Left);
+    for reading in &outcome.readings {
+        let own = outcome.sensitivities.iter();
+        for sensitivity in own.filter(|sensitivity| sensitivity.reading == reading.name) {
+            let (change, step) = sensitivity.step();
+            let unit = sensitivity.unit();
+            table.row([
+                reading.name.clone(),
+                sensitivity.path.clone(),
+                engineering_or_dash(sensitivity.value, unit.as_str(), DIGITS),
+                step.to_owned(),
+                engineering_or_dash(change, sensitivity.kind.symbol, DIGITS),
+                sensitivity.remark.unwrap_or("").to_owned(),
+            ]);
+        }
     }
     table
 }

@@ -66,7 +66,7 @@ const ENOUGH: usize = 3;
 
 /// Places and weights of the interpolating quadrature over the points of a step, 0 first: over those at which the
 /// equations are solved, with the start where these are few.
-fn rule(points: &[f64]) -> Vec<(f64, f64)> {
+pub fn rule(points: &[f64]) -> Vec<(f64, f64)> {
     let solved = points.get(1..).unwrap_or(&[]);
     let places = if solved.len() >= ENOUGH {
         solved

@@ -1,5 +1,6 @@
 //! The signals that a run reads off its circuit, each once, step by step.
 
+use crate::analysis::ledger::rule;
 use crate::circuit::{Circuit, Entry, Tap};
 use crate::dae::{Point, Step};
 use crate::signals::{Owner, Phrase, Piece, Quantity, RatingKind, Watched};
@@ -25,6 +26,8 @@ struct Signal {
     kind: Kind,
     tap: Tap,
     energy: f64,
+    /// The energy at the start of the step at hand.
+    at_step: f64,
 }
 
 /// Signals by name, and their values at both ends and both thirds of the span read last.
@@ -34,6 +37,9 @@ pub struct Signals {
     values: Vec<[f64; 4]>,
     points: [Vec<f64>; 4],
     span: (f64, f64),
+    /// The points of a step that the rule for energies was made for, and the rule.
+    ruled: Vec<f64>,
+    rule: Vec<(f64, f64)>,
 }
 
 impl Signals {
@@ -46,6 +52,7 @@ impl Signals {
                 kind,
                 tap,
                 energy: 0.0,
+                at_step: 0.0,
             });
             self.values.push([0.0; 4]);
             self.list.len() - 1
@@ -93,12 +100,46 @@ impl Signals {
                 };
                 *value = circuit.read(&signal.tap, at);
             }
-            if matches!(signal.tap, Tap::Energy(_)) {
-                *values = accumulated(signal.energy, from, to, *values);
-                signal.energy = values[3];
-            }
         }
         self.span = (from, to);
+        self.accumulate(circuit, step);
+    }
+
+    /// Turns powers into the energies so far. What a step adds is the ledger's own sum over the points at which the
+    /// method has solved the equations; within the step it grows as the power's cubics say.
+    fn accumulate(&mut self, circuit: &Circuit, step: &Step<'_>) {
+        let (from, to) = self.span;
+        let energies = self.list.iter_mut().zip(&mut self.values);
+        for (signal, values) in energies.filter(|(signal, _)| matches!(signal.tap, Tap::Energy(_)))
+        {
+            if from == step.from {
+                signal.at_step = signal.energy;
+            }
+            *values = accumulated(signal.energy, from, to, *values);
+            if to == step.to {
+                if self.ruled != step.dense.points {
+                    self.ruled = step.dense.points.to_vec();
+                    self.rule = rule(&self.ruled);
+                }
+                let length = step.to - step.from;
+                let x = &mut self.points[0];
+                let mut sum = 0.0;
+                for &(place, weight) in &self.rule {
+                    step.dense.at(place, x);
+                    let at = Point {
+                        time: step.from + place * length,
+                        x,
+                        mode: step.mode,
+                    };
+                    sum += weight * length * circuit.read(&signal.tap, at);
+                }
+                let missing = signal.at_step + sum - values[3];
+                for (k, value) in values.iter_mut().enumerate() {
+                    *value += missing * k as f64 / 3.0;
+                }
+            }
+            signal.energy = values[3];
+        }
     }
 
     /// A signal during the span read last.

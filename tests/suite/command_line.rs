@@ -98,7 +98,8 @@ fn run_prints_one_object_with_the_fixed_names() {
             "coils",
             "steady_state",
             "cautions",
-            "defaults"
+            "defaults",
+            "sensitivities"
         ]
     );
     assert_eq!(

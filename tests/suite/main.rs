@@ -24,6 +24,7 @@ mod record;
 mod release;
 mod rings;
 mod saturating_cores;
+mod sensitivities;
 mod shipped_netlists;
 mod sizing;
 mod structure;

@@ -34,15 +34,8 @@ pub struct Repeated<'a> {
 
 impl Repeated<'_> {
     /// Repeats the run and puts the errors into its outcome; `watch` is told the simulated time [s] and may stop the
-    /// repetition, which leaves the outcome as it was but for a caution.
-    ///
-    /// # Errors
-    /// A repetition that could not be completed.
-    pub fn verify(
-        &self,
-        outcome: &mut Outcome,
-        watch: &mut dyn FnMut(f64) -> ControlFlow<()>,
-    ) -> Result<(), Failure> {
+    /// repetition. One that does not get to its end leaves the outcome as it was but for a caution.
+    pub fn verify(&self, outcome: &mut Outcome, watch: &mut dyn FnMut(f64) -> ControlFlow<()>) {
         let settings = self.simulation.settings;
         let finer = Simulation {
             settings: Settings {
@@ -52,14 +45,11 @@ impl Repeated<'_> {
             ..*self.simulation
         };
         let figures = match figures(self.netlist, &finer, self.scales, &[], watch) {
-            Err(Failure::Interrupted) => {
-                let text = "the repetition was interrupted: nothing is known of the errors";
-                outcome
-                    .cautions
-                    .push(Diagnostic::caution("not-verified", text));
-                return Ok(());
+            Ok(figures) => figures,
+            Err(failure) => {
+                outcome.cautions.push(unverified(&failure));
+                return;
             }
-            figures => figures?,
         };
         let rounding = ROUNDING * settings.duration;
         let chance = ROUNDING.max(CHANCE * settings.accuracy);
@@ -93,8 +83,19 @@ impl Repeated<'_> {
         let limits = outcome.limits.iter();
         cautions.extend(limits.filter_map(|limit| within(limit, outcome)));
         outcome.cautions.extend(cautions);
-        Ok(())
     }
+}
+
+/// Why nothing is known of the errors.
+fn unverified(failure: &Failure) -> Diagnostic {
+    let why = match failure {
+        Failure::Interrupted => "it was interrupted",
+        Failure::Refused(diagnostic) => &diagnostic.headline,
+        Failure::Stopped { headline, .. } => headline,
+    };
+    let text =
+        format!("nothing is known of the errors, the repetition did not get to its end: {why}");
+    Diagnostic::caution("not-verified", text)
 }
 
 /// A caution where a limit's verdict hangs on the numerical error.

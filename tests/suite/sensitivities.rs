@@ -156,7 +156,7 @@ const SHIPPED: &[(&str, &[&str], &[&str])] = &[
     ),
     (
         "relay_diode_zener",
-        &["analysis.transient.accuracy=1e-8"],
+        &["analysis.transient.accuracy=1e-6"],
         &[
             "elements.supply.voltage",
             "elements.k1_coil.resistance",

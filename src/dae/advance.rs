@@ -61,12 +61,13 @@ pub struct Step<'a> {
 const PARTS: usize = 4;
 
 impl Step<'_> {
-    /// Spans [s] that make up the step, over each of which a cubic follows the polynomial to the accuracy of the method.
-    pub fn parts(&self) -> impl Iterator<Item = (f64, f64)> + use<> {
+    /// Spans [s] that make up the step, over each of which a cubic follows the polynomial to the accuracy of the method;
+    /// each of them again in so many.
+    pub fn parts(&self, again: usize) -> impl Iterator<Item = (f64, f64)> + use<> {
         let count = if self.dense.points.len() > 4 {
-            PARTS
+            PARTS * again
         } else {
-            1
+            again
         };
         let (from, to) = (self.from, self.to);
         let edge = move |k: usize| {

@@ -19,11 +19,14 @@ pub struct Keeps<'a> {
     pub waveforms: Option<(f64, f64)>,
     /// Elements whose account is kept, by index; None for all.
     pub accounts: Option<&'a [usize]>,
+    /// Pieces in place of each one that a reading is fed: 1, or more where it is differentiated.
+    pub pieces: usize,
 }
 
 /// The watcher of one run.
 pub struct Feed {
     signals: Signals,
+    pieces: usize,
     /// Readings, each with the number of its signal.
     readings: Vec<(usize, Taking)>,
     ratings: Vec<Metered>,
@@ -108,6 +111,7 @@ impl Feed {
             .waveforms
             .map(|(from, until)| Recorder::new(signals.named(), from, until));
         Feed {
+            pieces: keeps.pieces,
             readings,
             recorder,
             recorded: (signals.len(), keeps.waveforms.map_or(0.0, |(from, _)| from)),
@@ -168,7 +172,7 @@ impl Feed {
     }
 
     fn step(&mut self, circuit: &Circuit, step: &Step<'_>, log: &EventLog) {
-        for (from, to) in step.parts() {
+        for (from, to) in step.parts(self.pieces) {
             self.signals.read(circuit, step, (from, to));
             for (signal, taking) in &mut self.readings {
                 taking.feed(&self.signals.piece(*signal), log);

@@ -129,6 +129,11 @@ fn over_time(
     let keeps = Keeps {
         waveforms: Some((circuit.values()[transient.record_from], duration)),
         accounts: None,
+        pieces: if request.sensitivity.is_empty() {
+            1
+        } else {
+            sensitivity::PIECES
+        },
     };
     let neighbours = request.sensitivity.iter();
     let neighbours: Vec<Neighbours> = neighbours

@@ -74,6 +74,7 @@ pub(super) fn figures(
     let keeps = Keeps {
         waveforms: None,
         accounts: Some(accounts),
+        pieces: 1,
     };
     let mut feed = Feed::new(netlist, keeps);
     let (counted, ending) = simulation.run_scaled(scales, &mut |circuit, shown, log| {

@@ -29,6 +29,10 @@ const FROM_ZERO: f64 = 1e-9;
 const ONE_SIDED: f64 = 0.05;
 /// Rounding of a reading, as a share of it.
 const ROUNDING: f64 = 1e-11;
+/// Pieces in place of each one that a reading is fed. Where a crest lies between a cubic's values matters little to its
+/// height and much to how that moves: 1e-4 of it in a ring of 30 periods at an accuracy of 1e-6 with one piece, 2e-6
+/// with four, no less with sixteen.
+pub const PIECES: usize = 4;
 /// The name under which a path of the command line stands among the sources.
 const ASKED: &str = "--sensitivity";
 
@@ -197,6 +201,7 @@ impl<'a> Watcher<'a> {
         let keeps = Keeps {
             waveforms: None,
             accounts: Some(&[]),
+            pieces: PIECES,
         };
         let feed = |netlist: &Netlist| (Feed::new(netlist, keeps), EventLog::default());
         Watcher {

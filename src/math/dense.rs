@@ -3,8 +3,8 @@
 //! Rows are compared after scaling each by its own largest entry, because the rows of one system measure
 //! different things (currents beside voltages). Golub & Van Loan, *Matrix Computations*, 3.4 (from memory).
 
-use super::matrix::Singular;
 use super::scalar::Scalar;
+use super::singular::Singular;
 
 /// Factors of a dense square matrix; the memory is kept between factorisations.
 #[derive(Clone, Debug, Default)]

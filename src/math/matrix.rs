@@ -2,14 +2,8 @@
 
 use super::dense::DenseLu;
 use super::scalar::Scalar;
+use super::singular::Singular;
 use super::sparse::SparseLu;
-
-/// A matrix without a usable pivot (or with a value that is not finite).
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub struct Singular {
-    /// Column at which elimination ended: the unknown that the equations do not determine.
-    pub column: usize,
-}
 
 /// How a matrix is eliminated.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
@@ -116,6 +110,14 @@ impl<T: Scalar> Matrix<T> {
         match &self.factors {
             Factors::Dense(_) => self.size * self.size,
             Factors::Sparse(lu) => lu.filled(),
+        }
+    }
+
+    /// How often the sparse elimination has chosen its pivots; 0 for a dense one, which chooses them every time.
+    pub fn orders(&self) -> u64 {
+        match &self.factors {
+            Factors::Dense(_) => 0,
+            Factors::Sparse(lu) => lu.orders(),
         }
     }
 

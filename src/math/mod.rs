@@ -11,10 +11,12 @@ pub mod matrix;
 pub mod quadrature;
 pub mod root;
 pub mod scalar;
+pub mod singular;
 pub mod sparse;
 
-pub use matrix::{Elimination, Matrix, Singular};
+pub use matrix::{Elimination, Matrix};
 pub use scalar::Scalar;
+pub use singular::Singular;
 
 #[cfg(test)]
 mod tests;

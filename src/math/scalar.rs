@@ -30,6 +30,8 @@ pub trait Scalar:
     fn from_real(value: f64) -> Self;
     /// The sum of the parts' magnitudes: zero for zero alone, within a factor sqrt 2 of the modulus, and cheap.
     fn size(self) -> f64;
+    /// The number times a real factor.
+    fn scaled(self, factor: f64) -> Self;
     /// True where no part is infinite or not a number.
     fn is_finite(self) -> bool {
         self.size().is_finite()
@@ -47,6 +49,10 @@ impl Scalar for f64 {
     fn size(self) -> f64 {
         self.abs()
     }
+    #[inline]
+    fn scaled(self, factor: f64) -> f64 {
+        self * factor
+    }
 }
 
 impl Scalar for Complex64 {
@@ -59,5 +65,9 @@ impl Scalar for Complex64 {
     #[inline]
     fn size(self) -> f64 {
         self.re.abs() + self.im.abs()
+    }
+    #[inline]
+    fn scaled(self, factor: f64) -> Complex64 {
+        self * factor
     }
 }

@@ -149,6 +149,104 @@ fn refilling_with_other_numbers_keeps_solving_also_where_old_pivots_vanish() {
     }
 }
 
+/// Solution of the sample's equations for its row sums: all ones, whatever the scales.
+fn ones<T: Scalar>(sample: &Sample<T>, matrix: &mut Matrix<T>) -> Vec<T> {
+    let mut x = vec![T::ZERO; sample.size];
+    for (&row, &value) in sample.rows.iter().zip(&sample.values) {
+        x[row] += value;
+    }
+    matrix.solve(&mut x);
+    x
+}
+
+#[test]
+fn pivots_are_kept_while_they_serve_and_chosen_anew_when_they_do_not() {
+    // A chain of conductances as a switch sees it: the entry that was the natural pivot falls by fifteen decades; the matrix stays well conditioned.
+    let mut sample = Sample {
+        size: 3,
+        starts: vec![0, 2, 5, 7],
+        rows: vec![0, 1, 0, 1, 2, 1, 2],
+        values: vec![4.0, -1.0, -1.0, 3.0, -1.0, -1.0, 2.0],
+    };
+    let mut matrix = sample.matrix(Elimination::Sparse);
+    let mut solved = |sample: &Sample<f64>, orders: u64| {
+        matrix.values_mut().copy_from_slice(&sample.values);
+        matrix.factor().unwrap();
+        assert_eq!(matrix.orders(), orders);
+        for x in ones(sample, &mut matrix) {
+            assert!((x - 1.0).abs() < 1e-14, "{x}");
+        }
+    };
+    solved(&sample, 1);
+    for factor in [0.5, 2.0, 10.0] {
+        sample.values[0] = 4.0 * factor;
+        solved(&sample, 1);
+    }
+    // Kept as a pivot, 1e-15 would leave nothing of the other entries of its row (Golub & Van Loan, 3.3, from memory).
+    sample.values[0] = 4e-15;
+    solved(&sample, 2);
+    sample.values[0] = 8e-15;
+    solved(&sample, 2);
+}
+
+#[test]
+fn rows_and_columns_may_be_scaled_over_many_decades() {
+    fn check<T: Scalar>(make: impl Fn(&mut Numbers) -> T) {
+        for size in [3, 10, 40] {
+            let mut sample = Sample::random(size, 3, &make);
+            let mut numbers = Numbers(99);
+            let mut decades = |most: f64| -> Vec<f64> {
+                let scale = |_| 10.0_f64.powf(most * numbers.next());
+                (0..size).map(scale).collect()
+            };
+            let (rows, columns) = (decades(12.0), decades(9.0));
+            let mut plain = sample.matrix(Elimination::Sparse);
+            plain.factor().unwrap();
+            let b: Vec<T> = (0..size).map(|k| T::from_real((k as f64).cos())).collect();
+            let mut x = b.clone();
+            plain.solve(&mut x);
+            for column in 0..size {
+                for slot in sample.starts[column]..sample.starts[column + 1] {
+                    let factor = rows[sample.rows[slot]] * columns[column];
+                    sample.values[slot] = sample.values[slot].scaled(factor);
+                }
+            }
+            let mut scaled = sample.matrix(Elimination::Sparse);
+            scaled.factor().unwrap();
+            let mut y: Vec<T> = b.iter().zip(&rows).map(|(b, row)| b.scaled(*row)).collect();
+            scaled.solve(&mut y);
+            // D A E y = D b has the solution y = x/E.
+            let largest = x.iter().fold(0.0_f64, |most, x| most.max(x.size()));
+            for ((x, y), column) in x.iter().zip(&y).zip(&columns) {
+                let gap = (*x - y.scaled(*column)).size();
+                assert!(gap < 1e-9 * largest, "size {size}: {gap:e} of {largest:e}");
+            }
+        }
+    }
+    check(|numbers| numbers.next());
+    check(|numbers| Complex64::new(numbers.next(), numbers.next()));
+}
+
+#[test]
+fn values_that_are_no_numbers_are_refused_with_old_pivots_too() {
+    for place in 0..7 {
+        let mut matrix = Matrix::new(
+            3,
+            &[0, 2, 5, 7],
+            &[0, 1, 0, 1, 2, 1, 2],
+            Elimination::Sparse,
+        );
+        let mut values = [4.0, -1.0, -1.0, 3.0, -1.0, -1.0, 2.0];
+        matrix.values_mut().copy_from_slice(&values);
+        matrix.factor().unwrap();
+        for bad in [f64::NAN, f64::INFINITY] {
+            values[place] = bad;
+            matrix.values_mut().copy_from_slice(&values);
+            assert!(matrix.factor().is_err(), "{bad} at {place}");
+        }
+    }
+}
+
 #[test]
 fn an_undetermined_unknown_is_named() {
     for elimination in [Elimination::Dense, Elimination::Sparse] {
@@ -191,4 +289,31 @@ fn a_line_fills_no_more_than_a_few_entries_a_section() {
         small < 5 * 1000 && large < 10 * small + 50,
         "{small} {large}"
     );
+}
+
+#[test]
+fn a_grid_fills_within_a_tenth_of_the_order_of_minimum_degree() {
+    // 402 664 entries of L and U in faer's order of approximate minimum degree (tests/benches/candidates, `grid 100`).
+    let side = 100;
+    let (mut starts, mut rows, mut values) = (vec![0], Vec::new(), Vec::new());
+    for node in 0..side * side {
+        let (i, j) = (node / side, node % side);
+        let mut column = vec![node];
+        column.extend((i > 0).then(|| node - side));
+        column.extend((i + 1 < side).then_some(node + side));
+        column.extend((j > 0).then(|| node - 1));
+        column.extend((j + 1 < side).then_some(node + 1));
+        column.sort_unstable();
+        values.extend(
+            column
+                .iter()
+                .map(|&row| if row == node { 4.1 } else { -1.0 }),
+        );
+        rows.extend(column);
+        starts.push(rows.len());
+    }
+    let mut matrix = Matrix::new(side * side, &starts, &rows, Elimination::Sparse);
+    matrix.values_mut().copy_from_slice(&values);
+    matrix.factor().unwrap();
+    assert!(matrix.filled() < 442_930, "{}", matrix.filled());
 }

@@ -1,117 +1,63 @@
 //! Sparse LU factors with a structure that is found once and refilled with numbers thereafter.
 //!
-//! With rows and columns in pivot order, P A Q = L U is computed column by column ("left-looking"): a column of
-//! A is spread out, the finished columns of L that U names are subtracted, and what is left is the pivot and,
-//! divided by it, the new column of L. Gilbert & Peierls, *SIAM J. Sci. Stat. Comput.* 9 (1988) 862 (from memory).
-//! A pivot that has become small beside its column has the order chosen anew.
+//! With rows and columns in pivot order, P A Q = L U is computed row by row: the entries of a row before its pivot
+//! become multipliers, from the first on, and each multiplier's row of U is subtracted from the rest ("up-looking";
+//! Duff, Erisman & Reid, *Direct Methods for Sparse Matrices*, chapter 10, from memory).
+//!
+//! Columns are brought to one size by powers of two (currents beside voltages beside flux linkages). What is subtracted
+//! from a row, held against the row's own largest entry, says whether the pivots of last time still serve: it is the
+//! growth of the elimination, whatever the rows' scales. Where it becomes large the order is chosen anew.
 
-use super::super::matrix::Singular;
 use super::super::scalar::Scalar;
-use super::order::{Order, order};
-use sprs::CsMatI;
+use super::super::singular::Singular;
+use super::order::order;
+use super::structure::Structure;
 
-/// While refilling, a pivot below this share of its column's largest scaled entry asks for a new order. It is far
-/// below the share asked of a new pivot, so that changing numbers seldom lead to a new order.
-const GUARD: f64 = 1e-4;
-
-type Structure = CsMatI<(), u32>;
-
-/// What does not depend on the numbers.
-#[derive(Clone, Debug)]
-struct Structured {
-    row_order: Vec<u32>,
-    column_order: Vec<u32>,
-    /// Place (in pivot order) of each row of the matrix.
-    places: Vec<u32>,
-    /// Below the diagonal, by column, places ascending.
-    lower: Structure,
-    /// Above the diagonal, by column, places ascending.
-    upper: Structure,
-    /// Row scales in pivot order.
-    scales: Vec<f64>,
-}
+/// While refilling, a multiple of a row of U that is subtracted may be so many times the largest entry of the row that it
+/// is subtracted from. A new pivot allows ten times an entry, so that changing numbers seldom lead to a new order.
+const GROWTH: f64 = 1e3;
+/// Or so many times what it was with fresh pivots.
+const WORN: f64 = 10.0;
 
 /// Factors of a sparse square matrix.
 #[derive(Clone, Debug)]
 pub struct SparseLu<T> {
-    size: usize,
-    structured: Option<Structured>,
-    lower: Vec<T>,
-    upper: Vec<T>,
-    reciprocals: Vec<T>,
+    structure: Option<Structure>,
+    /// Entries of L and U by position; reciprocals in the pivots' places.
+    entries: Vec<T>,
+    /// Sum of the sizes of each row of U.
+    held: Vec<f64>,
+    /// One row spread out, where targets are not noted.
     spread: Vec<T>,
+    /// Growth with fresh pivots.
+    growth: f64,
+    orders: u64,
 }
 
-impl Structured {
-    fn new(order: Order) -> Self {
-        let size = order.rows.len();
-        let places = inverse(&order.rows);
-        let column_places = inverse(&order.columns);
-        let mut upper = vec![Vec::new(); size];
-        for (place, behind) in order.behind.iter().enumerate() {
-            for &column in behind {
-                upper[column_places[column as usize] as usize].push(place as u32);
-            }
-        }
-        let lower: Vec<Vec<u32>> = order
-            .below
-            .iter()
-            .map(|below| {
-                let mut column: Vec<u32> = below.iter().map(|&row| places[row as usize]).collect();
-                column.sort_unstable();
-                column
-            })
-            .collect();
-        Structured {
-            scales: order
-                .rows
-                .iter()
-                .map(|&row| order.scales[row as usize])
-                .collect(),
-            row_order: order.rows,
-            column_order: order.columns,
-            lower: compressed(size, &lower),
-            upper: compressed(size, &upper),
-            places,
-        }
-    }
-}
-
-fn inverse(order: &[u32]) -> Vec<u32> {
-    let mut places = vec![0; order.len()];
-    for (place, &line) in order.iter().enumerate() {
-        places[line as usize] = place as u32;
-    }
-    places
-}
-
-fn compressed(size: usize, columns: &[Vec<u32>]) -> Structure {
-    let mut starts = vec![0_u32];
-    let mut places = Vec::new();
-    for column in columns {
-        places.extend_from_slice(column);
-        starts.push(places.len() as u32);
-    }
-    let values = vec![(); places.len()];
-    CsMatI::new_csc((size, size), starts, places, values)
-}
+/// Why the pivots at hand do not serve: the place at which it showed.
+struct Worn(usize);
 
 impl<T: Scalar> SparseLu<T> {
     /// Room for a matrix of this size.
     pub fn new(size: usize) -> Self {
         SparseLu {
-            size,
-            structured: None,
-            lower: Vec::new(),
-            upper: Vec::new(),
-            reciprocals: vec![T::ZERO; size],
+            structure: None,
+            entries: Vec::new(),
+            held: vec![0.0; size],
             spread: vec![T::ZERO; size],
+            growth: 0.0,
+            orders: 0,
         }
     }
 
     /// Entries stored in L and U, diagonals counted once.
     pub fn filled(&self) -> usize {
-        self.lower.len() + self.upper.len() + self.size
+        self.entries.len()
+    }
+
+    /// How often pivots have been chosen.
+    pub fn orders(&self) -> u64 {
+        self.orders
     }
 
     /// Factors the matrix compressed by column, with the pivots of last time where they serve.
@@ -121,99 +67,175 @@ impl<T: Scalar> SparseLu<T> {
         rows: &[usize],
         values: &[T],
     ) -> Result<(), Singular> {
-        if let Some(structured) = self.structured.take() {
-            let served = self.refill(&structured, starts, rows, values, GUARD);
-            self.structured = Some(structured);
+        if let Some(structure) = self.structure.take() {
+            let most = GROWTH.max(WORN * self.growth);
+            let served = self.refill(&structure, starts, values, most);
+            self.structure = Some(structure);
             if served.is_ok() {
                 return Ok(());
             }
         }
-        let structured = Structured::new(order(starts, rows, values)?);
-        self.lower.resize(structured.lower.nnz(), T::ZERO);
-        self.upper.resize(structured.upper.nnz(), T::ZERO);
-        let done = self.refill(&structured, starts, rows, values, 0.0);
-        self.structured = Some(structured);
-        done
+        let order = order(starts, rows, values)?;
+        let structure = Structure::new(order, starts, rows);
+        self.orders += 1;
+        self.entries.clear();
+        self.entries.resize(structure.places.len(), T::ZERO);
+        let filled = self.refill(&structure, starts, values, f64::MAX);
+        let columns = filled.map_err(|worn| Singular {
+            column: structure.columns[worn.0] as usize,
+        });
+        self.structure = Some(structure);
+        self.growth = columns?;
+        Ok(())
     }
 
+    /// Computes L and U; the largest growth in any row, which may be `most`.
     fn refill(
         &mut self,
-        structured: &Structured,
+        structure: &Structure,
         starts: &[usize],
-        rows: &[usize],
         values: &[T],
-        guard: f64,
-    ) -> Result<(), Singular> {
-        let (lower_starts, lower_rows) = parts(&structured.lower);
-        let (upper_starts, upper_rows) = parts(&structured.upper);
-        for k in 0..self.size {
-            let column = structured.column_order[k] as usize;
-            for slot in starts[column]..starts[column + 1] {
-                self.spread[structured.places[rows[slot]] as usize] = values[slot];
-            }
-            for slot in span(upper_starts, k) {
-                let j = upper_rows[slot] as usize;
-                let factor = std::mem::take(&mut self.spread[j]);
-                self.upper[slot] = factor;
-                if factor != T::ZERO {
-                    let below = span(lower_starts, j);
-                    for (&row, &entry) in lower_rows[below.clone()].iter().zip(&self.lower[below]) {
-                        self.spread[row as usize] -= entry * factor;
-                    }
-                }
-            }
-            let pivot = std::mem::take(&mut self.spread[k]);
-            let reciprocal = T::ONE / pivot;
-            let mut most = 0.0_f64;
-            for slot in span(lower_starts, k) {
-                let row = lower_rows[slot] as usize;
-                let entry = std::mem::take(&mut self.spread[row]);
-                most = most.max(entry.size() * structured.scales[row]);
-                self.lower[slot] = entry * reciprocal;
-            }
-            self.reciprocals[k] = reciprocal;
-            let size = pivot.size() * structured.scales[k];
-            if !(size > f64::MIN_POSITIVE && size >= guard * most && most.is_finite()) {
-                self.spread.fill(T::ZERO);
-                return Err(Singular { column });
+        most: f64,
+    ) -> Result<f64, Worn> {
+        self.entries.fill(T::ZERO);
+        for (span, &weight) in starts.windows(2).zip(&structure.weights) {
+            let span = span[0]..span[1];
+            for (&position, value) in structure.positions[span.clone()].iter().zip(&values[span]) {
+                self.entries[position as usize] = value.scaled(weight);
             }
         }
-        Ok(())
+        let mut growth = 0.0_f64;
+        let mut targets = structure.targets.as_deref();
+        for row in 0..structure.size() {
+            let (start, end) = (structure.starts[row], structure.starts[row + 1]);
+            let pivot = structure.pivots[row] as usize;
+            let mut peak = 0.0_f64;
+            let mut subtracted = 0.0;
+            if (start as usize) < pivot {
+                let own = &self.entries[start as usize..end as usize];
+                peak = own.iter().fold(peak, |most, entry| most.max(entry.size()));
+                subtracted = match &mut targets {
+                    Some(targets) => self.subtract_noted(structure, row, targets),
+                    None => self.subtract_spread(structure, row),
+                };
+                growth = growth.max(subtracted / peak);
+            }
+            let size = self.entries[pivot].size();
+            let upper = &self.entries[pivot..end as usize];
+            let held = upper.iter().fold(0.0, |sum: f64, entry| sum + entry.size());
+            self.held[row] = held;
+            // Written so that what is not a number fails.
+            let serves = size > f64::MIN_POSITIVE && held.is_finite() && subtracted <= most * peak;
+            if !serves {
+                return Err(Worn(row));
+            }
+            self.entries[pivot] = T::ONE / self.entries[pivot];
+        }
+        Ok(growth)
+    }
+
+    /// Turns the entries before a row's pivot into multipliers and subtracts their rows; the size of the
+    /// largest row subtracted. Takes the row's share off `targets`.
+    #[inline]
+    fn subtract_noted(&mut self, structure: &Structure, row: usize, targets: &mut &[u32]) -> f64 {
+        let mut most = 0.0_f64;
+        for position in structure.starts[row] as usize..structure.pivots[row] as usize {
+            let above = structure.places[position] as usize;
+            let first = structure.pivots[above] as usize;
+            let multiplier = self.entries[position] * self.entries[first];
+            self.entries[position] = multiplier;
+            most = larger(most, multiplier.size() * self.held[above]);
+            let behind = first + 1..structure.starts[above + 1] as usize;
+            let (here, rest) = targets.split_at(behind.len());
+            *targets = rest;
+            for (&target, source) in here.iter().zip(behind) {
+                let product = multiplier * self.entries[source];
+                self.entries[target as usize] -= product;
+            }
+        }
+        most
+    }
+
+    /// The same with the row spread out over all places.
+    fn subtract_spread(&mut self, structure: &Structure, row: usize) -> f64 {
+        let (start, end) = (
+            structure.starts[row] as usize,
+            structure.starts[row + 1] as usize,
+        );
+        let pivot = structure.pivots[row] as usize;
+        let places = &structure.places[start..end];
+        for (&place, &entry) in places.iter().zip(&self.entries[start..end]) {
+            self.spread[place as usize] = entry;
+        }
+        let mut most = 0.0_f64;
+        for &above in &structure.places[start..pivot] {
+            let first = structure.pivots[above as usize] as usize;
+            let multiplier = self.spread[above as usize] * self.entries[first];
+            self.spread[above as usize] = multiplier;
+            if multiplier == T::ZERO {
+                continue;
+            }
+            most = larger(most, multiplier.size() * self.held[above as usize]);
+            let behind = first + 1..structure.starts[above as usize + 1] as usize;
+            for (&place, &entry) in structure.places[behind.clone()]
+                .iter()
+                .zip(&self.entries[behind])
+            {
+                self.spread[place as usize] -= multiplier * entry;
+            }
+        }
+        for (&place, entry) in places.iter().zip(&mut self.entries[start..end]) {
+            *entry = self.spread[place as usize];
+        }
+        most
     }
 
     /// Solves A x = b: `x` holds b on entry; `work` is any vector of the same length.
     pub fn solve(&self, x: &mut [T], work: &mut [T]) {
-        let Some(structured) = &self.structured else {
+        let Some(structure) = &self.structure else {
             return;
         };
-        let (lower_starts, lower_rows) = parts(&structured.lower);
-        let (upper_starts, upper_rows) = parts(&structured.upper);
-        for (value, &row) in work.iter_mut().zip(&structured.row_order) {
-            *value = x[row as usize];
-        }
-        for k in 0..self.size {
-            let value = work[k];
-            let below = span(lower_starts, k);
-            for (&row, &entry) in lower_rows[below.clone()].iter().zip(&self.lower[below]) {
-                work[row as usize] -= entry * value;
+        let rows = structure
+            .rows
+            .iter()
+            .zip(structure.starts.iter().zip(&structure.pivots));
+        for (k, (&row, (&start, &pivot))) in rows.enumerate() {
+            let before = start as usize..pivot as usize;
+            let mut sum = x[row as usize];
+            for (&place, &entry) in structure.places[before.clone()]
+                .iter()
+                .zip(&self.entries[before])
+            {
+                sum -= entry * work[place as usize];
             }
+            work[k] = sum;
         }
-        for k in (0..self.size).rev() {
-            let value = work[k] * self.reciprocals[k];
-            x[structured.column_order[k] as usize] = value;
-            let above = span(upper_starts, k);
-            for (&row, &entry) in upper_rows[above.clone()].iter().zip(&self.upper[above]) {
-                work[row as usize] -= entry * value;
+        let columns = structure
+            .columns
+            .iter()
+            .zip(structure.pivots.iter().zip(&structure.starts[1..]));
+        for (k, (&column, (&pivot, &end))) in columns.enumerate().rev() {
+            let behind = pivot as usize + 1..end as usize;
+            let mut sum = work[k];
+            for (&place, &entry) in structure.places[behind.clone()]
+                .iter()
+                .zip(&self.entries[behind])
+            {
+                sum -= entry * work[place as usize];
             }
+            let value = sum * self.entries[pivot as usize];
+            work[k] = value;
+            x[column as usize] = value.scaled(structure.weights[column as usize]);
         }
     }
 }
 
-fn parts(structure: &Structure) -> (&[u32], &[u32]) {
-    (structure.indptr().into_raw_storage(), structure.indices())
-}
-
+/// The larger of two; what is not a number wins and stays.
 #[inline]
-fn span(starts: &[u32], k: usize) -> std::ops::Range<usize> {
-    starts[k] as usize..starts[k + 1] as usize
+fn larger(most: f64, here: f64) -> f64 {
+    if here > most || here.is_nan() {
+        here
+    } else {
+        most
+    }
 }

@@ -3,11 +3,14 @@
 //! Among the entries that are not small beside the rest of their column, the one is taken whose row and column
 //! hold the fewest others: Markowitz, *Management Science* 3 (1957) 255; Duff, Erisman & Reid, *Direct Methods for
 //! Sparse Matrices*, chapter 7 (both from memory). The elimination is carried out on the way, so that zeros on
-//! the diagonal (sources, windings) need no treatment of their own.
+//! the diagonal (sources, windings) need no treatment of their own. A row or column with one entry left costs
+//! nothing and comes first: nodes held by ideal sources and currents that are only looked at never meet the rest,
+//! which is what a block triangular form would gain.
 
-use super::super::matrix::Singular;
 use super::super::scalar::Scalar;
-use std::collections::BTreeSet;
+use super::super::singular::Singular;
+use super::buckets::Buckets;
+use super::lists::Lists;
 
 /// A pivot must reach this share of the largest scaled entry left in its column.
 const THRESHOLD: f64 = 0.1;
@@ -16,50 +19,64 @@ const SEARCHED: usize = 4;
 
 /// Pivots in their order, and the structure that they leave.
 #[derive(Clone, Debug, Default)]
-pub struct Order {
+pub(super) struct Order {
     /// Row of each pivot.
     pub rows: Vec<u32>,
     /// Column of each pivot.
     pub columns: Vec<u32>,
     /// Per pivot, the rows below it that its column reaches.
-    pub below: Vec<Vec<u32>>,
+    pub below: Lists,
     /// Per pivot, the columns behind it that its row reaches.
-    pub behind: Vec<Vec<u32>>,
-    /// Reciprocal of each row's largest entry in the matrix.
-    pub scales: Vec<f64>,
+    pub behind: Lists,
+    /// Factor of each column that brings its largest entry to between 1 and 2: a power of two, so that nothing rounds.
+    pub weights: Vec<f64>,
 }
 
-/// What is left of the matrix while it is eliminated. Entries of finished columns stay in `rows` until merged.
+/// What is left of the matrix while it is eliminated.
 struct Rest<T> {
+    /// Entries of each row that is left, by ascending column; columns that are done hold none.
     rows: Vec<Vec<(u32, T)>>,
+    /// Rows of each column that is left, in no order.
     columns: Vec<Vec<u32>>,
-    row_counts: Vec<u32>,
-    row_done: Vec<bool>,
+    by_row: Buckets,
+    by_column: Buckets,
     column_done: Vec<bool>,
-    by_row: BTreeSet<(u32, u32)>,
-    by_column: BTreeSet<(u32, u32)>,
+    /// Reciprocal of each row's largest entry in the matrix, columns measured by their own largest entries.
     scales: Vec<f64>,
+    merged: Vec<(u32, T)>,
 }
+
+/// An entry that may be the pivot: least cost first, then the diagonal (which keeps a symmetric pattern symmetric), then
+/// the first row and column.
+type Candidate = (u64, bool, u32, u32);
 
 /// Orders the pivots of the matrix compressed by column.
-pub fn order<T: Scalar>(starts: &[usize], rows: &[usize], values: &[T]) -> Result<Order, Singular> {
+pub(super) fn order<T: Scalar>(
+    starts: &[usize],
+    rows: &[usize],
+    values: &[T],
+) -> Result<Order, Singular> {
     let size = starts.len() - 1;
-    let mut rest = Rest::new(starts, rows, values)?;
-    let mut order = Order::default();
+    let weights = column_weights(starts, values);
+    let mut rest = Rest::new(starts, rows, values, &weights)?;
+    let mut order = Order {
+        weights,
+        ..Order::default()
+    };
     for _ in 0..size {
         let (row, column) = rest.pivot()?;
-        let (below, behind) = rest.eliminate(row, column);
-        order.rows.push(row);
-        order.columns.push(column);
-        order.below.push(below);
-        order.behind.push(behind);
+        rest.eliminate(row, column, &mut order);
     }
-    order.scales = rest.scales;
     Ok(order)
 }
 
 impl<T: Scalar> Rest<T> {
-    fn new(starts: &[usize], positions: &[usize], values: &[T]) -> Result<Self, Singular> {
+    fn new(
+        starts: &[usize],
+        positions: &[usize],
+        values: &[T],
+        weights: &[f64],
+    ) -> Result<Self, Singular> {
         let size = starts.len() - 1;
         let mut rows = vec![Vec::new(); size];
         let mut columns = vec![Vec::new(); size];
@@ -72,38 +89,28 @@ impl<T: Scalar> Rest<T> {
                 }
                 rows[row].push((column as u32, value));
                 columns[column].push(row as u32);
-                scales[row] = scales[row].max(value.size());
+                scales[row] = scales[row].max(value.size() * weights[column]);
             }
         }
         if let Some(row) = scales.iter().position(|&largest| largest == 0.0) {
             return Err(Singular { column: row });
         }
-        let row_counts: Vec<u32> = rows.iter().map(|row| row.len() as u32).collect();
         Ok(Rest {
-            by_row: (0..size as u32)
-                .map(|k| (row_counts[k as usize], k))
-                .collect(),
-            by_column: (0..size as u32)
-                .map(|k| (columns[k as usize].len() as u32, k))
-                .collect(),
-            row_done: vec![false; size],
+            by_row: Buckets::new(rows.iter().map(Vec::len)),
+            by_column: Buckets::new(columns.iter().map(Vec::len)),
             column_done: vec![false; size],
             scales: scales.into_iter().map(|largest| 1.0 / largest).collect(),
+            merged: Vec::new(),
             rows,
             columns,
-            row_counts,
         })
     }
 
-    fn value(&self, row: u32, column: u32) -> T {
-        let entries = &self.rows[row as usize];
-        entries
-            .binary_search_by_key(&column, |entry| entry.0)
-            .map_or(T::ZERO, |k| entries[k].1)
-    }
-
     fn scaled(&self, row: u32, column: u32) -> f64 {
-        self.value(row, column).size() * self.scales[row as usize]
+        let entries = &self.rows[row as usize];
+        let place = entries.binary_search_by_key(&column, |entry| entry.0);
+        let value = place.map_or(T::ZERO, |place| entries[place].1);
+        value.size() * self.scales[row as usize]
     }
 
     fn column_peak(&self, column: u32) -> f64 {
@@ -113,41 +120,41 @@ impl<T: Scalar> Rest<T> {
     }
 
     /// The acceptable entry with the least product of other entries in its row and its column.
-    fn pivot(&self) -> Result<(u32, u32), Singular> {
-        let mut best: Option<(u64, u32, u32)> = None;
+    fn pivot(&mut self) -> Result<(u32, u32), Singular> {
+        let mut best: Option<Candidate> = None;
         let mut searched = 0;
-        let mut columns = self.by_column.iter().peekable();
-        let mut rows = self.by_row.iter().peekable();
-        loop {
-            let column_count = columns.peek().map_or(u32::MAX, |line| line.0);
-            let row_count = rows.peek().map_or(u32::MAX, |line| line.0);
-            let least = u64::from(column_count.min(row_count).saturating_sub(1));
-            if best.is_some_and(|(cost, ..)| searched >= SEARCHED || cost <= least * least) {
+        let least = self.by_row.least().min(self.by_column.least()).max(1);
+        'search: for count in least..=self.rows.len() {
+            // What a line of this count could cost at least.
+            let others = count as u64 - 1;
+            if best.is_some_and(|(cost, ..)| cost <= others * others) {
                 break;
             }
-            let found = if column_count <= row_count {
-                match columns.next() {
-                    Some(&(_, column)) => self.best_in_column(column),
-                    None => break,
-                }
-            } else {
-                match rows.next() {
-                    Some(&(_, row)) => self.best_in_row(row),
-                    None => break,
-                }
-            };
-            if let Some(found) = found {
+            for column in self.by_column.of(count) {
+                best = better(best, self.best_in_column(column));
                 searched += 1;
-                best = Some(best.map_or(found, |best| best.min(found)));
+                if best.is_some() && searched >= SEARCHED {
+                    break 'search;
+                }
+            }
+            if best.is_some_and(|(cost, ..)| cost <= others * (others + 1)) {
+                break;
+            }
+            for row in self.by_row.of(count) {
+                best = better(best, self.best_in_row(row));
+                searched += 1;
+                if best.is_some() && searched >= SEARCHED {
+                    break 'search;
+                }
             }
         }
-        best.map(|(_, row, column)| (row, column))
+        best.map(|(.., row, column)| (row, column))
             .ok_or_else(|| Singular {
                 column: self.undetermined(),
             })
     }
 
-    fn best_in_column(&self, column: u32) -> Option<(u64, u32, u32)> {
+    fn best_in_column(&self, column: u32) -> Option<Candidate> {
         let peak = self.column_peak(column);
         let others = (self.columns[column as usize].len() as u64).saturating_sub(1);
         self.columns[column as usize]
@@ -156,30 +163,24 @@ impl<T: Scalar> Rest<T> {
                 peak > f64::MIN_POSITIVE && self.scaled(row, column) >= THRESHOLD * peak
             })
             .map(|&row| {
-                (
-                    others * u64::from(self.row_counts[row as usize] - 1),
-                    row,
-                    column,
-                )
+                let along = self.rows[row as usize].len() as u64 - 1;
+                (others * along, row != column, row, column)
             })
             .min()
     }
 
-    fn best_in_row(&self, row: u32) -> Option<(u64, u32, u32)> {
-        let others = u64::from(self.row_counts[row as usize]).saturating_sub(1);
-        self.rows[row as usize]
+    fn best_in_row(&self, row: u32) -> Option<Candidate> {
+        let entries = &self.rows[row as usize];
+        let others = (entries.len() as u64).saturating_sub(1);
+        entries
             .iter()
-            .filter(|entry| !self.column_done[entry.0 as usize])
             .filter(|entry| {
                 let scaled = entry.1.size() * self.scales[row as usize];
                 scaled > f64::MIN_POSITIVE && scaled >= THRESHOLD * self.column_peak(entry.0)
             })
             .map(|entry| {
-                (
-                    others * (self.columns[entry.0 as usize].len() as u64 - 1),
-                    row,
-                    entry.0,
-                )
+                let along = self.columns[entry.0 as usize].len() as u64 - 1;
+                (others * along, row != entry.0, row, entry.0)
             })
             .min()
     }
@@ -189,62 +190,89 @@ impl<T: Scalar> Rest<T> {
         self.column_done.iter().position(|done| !done).unwrap_or(0)
     }
 
-    /// Takes the pivot out and subtracts its row; returns the rows and columns that it reaches.
-    fn eliminate(&mut self, row: u32, column: u32) -> (Vec<u32>, Vec<u32>) {
-        let below: Vec<u32> = std::mem::take(&mut self.columns[column as usize]);
-        self.by_column.remove(&(below.len() as u32, column));
-        self.by_row.remove(&(self.row_counts[row as usize], row));
-        self.row_done[row as usize] = true;
-        self.column_done[column as usize] = true;
-        let pivot = self.value(row, column);
+    /// Takes the pivot out, subtracts its row from the others of its column, and notes what it reaches.
+    fn eliminate(&mut self, row: u32, column: u32, order: &mut Order) {
+        let below = std::mem::take(&mut self.columns[column as usize]);
         let mut line = std::mem::take(&mut self.rows[row as usize]);
-        line.retain(|entry| !self.column_done[entry.0 as usize]);
+        self.by_column.remove(column, below.len());
+        self.by_row.remove(row, line.len());
+        self.column_done[column as usize] = true;
+        let mut pivot = T::ONE;
+        line.retain(|entry| {
+            if entry.0 == column {
+                pivot = entry.1;
+            }
+            entry.0 != column
+        });
         for &(reached, _) in &line {
-            let count = self.columns[reached as usize].len() as u32;
-            self.by_column.remove(&(count, reached));
-            self.columns[reached as usize].retain(|&other| other != row);
+            let rows = &mut self.columns[reached as usize];
+            self.by_column.remove(reached, rows.len());
+            if let Some(place) = rows.iter().position(|&other| other == row) {
+                rows.swap_remove(place);
+            }
         }
-        let below: Vec<u32> = below.into_iter().filter(|&other| other != row).collect();
-        for &other in &below {
-            let multiplier = self.value(other, column) / pivot;
-            self.subtract(other, multiplier, &line);
+        let reciprocal = T::ONE / pivot;
+        for &other in below.iter().filter(|&&other| other != row) {
+            self.subtract(other, column, reciprocal, &line);
         }
         for &(reached, _) in &line {
-            self.by_column
-                .insert((self.columns[reached as usize].len() as u32, reached));
+            let count = self.columns[reached as usize].len();
+            self.by_column.insert(reached, count);
         }
-        (below, line.into_iter().map(|entry| entry.0).collect())
+        order.rows.push(row);
+        order.columns.push(column);
+        order
+            .below
+            .push(below.into_iter().filter(|&other| other != row));
+        order.behind.push(line.into_iter().map(|entry| entry.0));
     }
 
-    /// Row `row` less `multiplier` times the pivot's `line`: both sorted by column, so a merge.
-    fn subtract(&mut self, row: u32, multiplier: T, line: &[(u32, T)]) {
-        let old = std::mem::take(&mut self.rows[row as usize]);
-        let mut merged = Vec::with_capacity(old.len() + line.len());
-        let mut line = line.iter().peekable();
-        for (column, value) in old
-            .into_iter()
-            .filter(|entry| !self.column_done[entry.0 as usize])
-        {
-            while let Some(&&(reached, above)) = line.peek().filter(|entry| entry.0 < column) {
-                merged.push((reached, -(multiplier * above)));
+    /// Clears a row's entry in the pivot's column with the pivot's `line`: both ascend by column, so a merge.
+    fn subtract(&mut self, row: u32, pivot_column: u32, reciprocal: T, line: &[(u32, T)]) {
+        let old = &self.rows[row as usize];
+        let place = old.binary_search_by_key(&pivot_column, |entry| entry.0);
+        let multiplier = place.map_or(T::ZERO, |place| old[place].1) * reciprocal;
+        self.by_row.remove(row, old.len());
+        self.merged.clear();
+        let mut line = line.iter().copied().peekable();
+        for &(column, value) in old.iter().filter(|entry| entry.0 != pivot_column) {
+            while let Some((reached, above)) = line.next_if(|entry| entry.0 < column) {
+                self.merged.push((reached, -(multiplier * above)));
                 self.columns[reached as usize].push(row);
-                line.next();
             }
-            match line.peek() {
-                Some(&&(reached, above)) if reached == column => {
-                    merged.push((column, value - multiplier * above));
-                    line.next();
-                }
-                _ => merged.push((column, value)),
+            match line.next_if(|entry| entry.0 == column) {
+                Some((_, above)) => self.merged.push((column, value - multiplier * above)),
+                None => self.merged.push((column, value)),
             }
         }
-        for &(reached, above) in line {
-            merged.push((reached, -(multiplier * above)));
+        for (reached, above) in line {
+            self.merged.push((reached, -(multiplier * above)));
             self.columns[reached as usize].push(row);
         }
-        self.by_row.remove(&(self.row_counts[row as usize], row));
-        self.row_counts[row as usize] = merged.len() as u32;
-        self.by_row.insert((merged.len() as u32, row));
-        self.rows[row as usize] = merged;
+        // The old row's memory serves the next merge.
+        std::mem::swap(&mut self.rows[row as usize], &mut self.merged);
+        self.by_row.insert(row, self.rows[row as usize].len());
     }
+}
+
+fn better(best: Option<Candidate>, found: Option<Candidate>) -> Option<Candidate> {
+    match (best, found) {
+        (Some(best), Some(found)) => Some(best.min(found)),
+        (best, found) => best.or(found),
+    }
+}
+
+/// Powers of two that bring the largest entry of each column to between 1 and 2; 1 for a column of zeros.
+fn column_weights<T: Scalar>(starts: &[usize], values: &[T]) -> Vec<f64> {
+    const EXPONENT: u64 = 0x7ff << 52;
+    let weight = |span: &[usize]| {
+        let column = values[span[0]..span[1]].iter();
+        let peak = column.fold(0.0, |most: f64, value| most.max(value.size()));
+        if peak.is_normal() {
+            1.0 / f64::from_bits(peak.to_bits() & EXPONENT)
+        } else {
+            1.0
+        }
+    };
+    starts.windows(2).map(weight).collect()
 }

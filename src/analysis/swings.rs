@@ -103,12 +103,22 @@ impl Swings {
     pub fn scales(&self, circuit: &Circuit) -> Vec<f64> {
         let size = circuit.unknowns.len();
         let mut scales: Vec<f64> = (0..size).map(|unknown| self.scale(unknown)).collect();
+        let mut largest_of = Vec::new();
+        for (unknown, claimed) in circuit.unknowns.iter().enumerate() {
+            let high = self.whole.high[unknown].abs();
+            let here = self.whole.swing(unknown).max(high);
+            match largest_of
+                .iter_mut()
+                .find(|(measure, _)| *measure == claimed.measure)
+            {
+                Some((_, largest)) => *largest = f64::max(*largest, here),
+                None => largest_of.push((claimed.measure, here)),
+            }
+        }
         for (unknown, scale) in scales.iter_mut().enumerate() {
             let measure = circuit.unknowns[unknown].measure;
-            let largest = (0..size)
-                .filter(|&other| circuit.unknowns[other].measure == measure)
-                .map(|other| self.whole.swing(other).max(self.whole.high[other].abs()))
-                .fold(0.0, f64::max);
+            let found = largest_of.iter().find(|(other, _)| *other == measure);
+            let largest = found.map_or(0.0, |(_, largest)| *largest);
             // A circuit in which a whole measure rests at zero still needs a positive tolerance.
             let floor = if largest > 0.0 && largest.is_finite() {
                 LEAST_OF_MEASURE * largest

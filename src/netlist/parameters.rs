@@ -74,7 +74,7 @@ impl Parameters {
     /// The nominal values.
     pub fn nominal(&self) -> Values {
         Values {
-            numbers: self.entries.iter().map(|entry| entry.nominal).collect(),
+            numbers: Arc::new(self.entries.iter().map(|entry| entry.nominal).collect()),
             trace: None,
         }
     }
@@ -83,7 +83,8 @@ impl Parameters {
 /// Values in force, one per parameter [SI].
 #[derive(Clone, Debug)]
 pub struct Values {
-    numbers: Vec<f64>,
+    /// Shared, so that tracing copies nothing: every element of a circuit is traced once.
+    numbers: Arc<Vec<f64>>,
     /// Handles read since tracing began; None while nobody asks.
     trace: Option<Arc<Mutex<BTreeSet<Value>>>>,
 }
@@ -91,14 +92,14 @@ pub struct Values {
 impl Values {
     /// Changes one value.
     pub fn set(&mut self, value: Value, number: f64) {
-        self.numbers[value.0 as usize] = number;
+        Arc::make_mut(&mut self.numbers)[value.0 as usize] = number;
     }
 
     /// Runs `work` and tells which values it read: what an element's numbers depend on.
     pub fn traced<T>(&self, work: impl FnOnce(&Values) -> T) -> (T, BTreeSet<Value>) {
         let trace = Arc::new(Mutex::new(BTreeSet::new()));
         let values = Values {
-            numbers: self.numbers.clone(),
+            numbers: Arc::clone(&self.numbers),
             trace: Some(Arc::clone(&trace)),
         };
         let result = work(&values);

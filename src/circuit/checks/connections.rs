@@ -3,6 +3,7 @@
 use super::Check;
 use crate::circuit::Circuit;
 use crate::diag::{Diagnostic, Sink};
+use crate::elements::Terminal;
 
 /// The check.
 pub const CHECK: Check = Check {
@@ -12,13 +13,18 @@ pub const CHECK: Check = Check {
 };
 
 fn run(circuit: &Circuit, sink: &Sink) {
+    // Of each node, the first terminal on it and how many there are.
+    let mut met: Vec<(Option<&Terminal>, usize)> = vec![(None, 0); circuit.node_names.len()];
+    for entry in &circuit.entries {
+        for (terminal, unknown) in entry.terminals.iter().zip(&entry.nodes) {
+            if let Some((first, count)) = met.get_mut(unknown.0 as usize) {
+                first.get_or_insert(terminal);
+                *count += 1;
+            }
+        }
+    }
     for (k, name) in circuit.node_names.iter().enumerate() {
-        let mut terminals = circuit
-            .entries
-            .iter()
-            .flat_map(|entry| &entry.terminals)
-            .filter(|terminal| terminal.node.text == *name);
-        let (Some(only), None) = (terminals.next(), terminals.next()) else {
+        let (Some(only), 1) = met[k] else {
             continue;
         };
         let others = circuit

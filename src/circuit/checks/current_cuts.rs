@@ -1,7 +1,7 @@
 //! A node that only current sources meet has no law to obey: its current law is between given numbers.
 
 use super::Check;
-use crate::circuit::Circuit;
+use crate::circuit::{Circuit, Entry};
 use crate::diag::{Diagnostic, Sink};
 use crate::elements::element::PathKind;
 
@@ -14,22 +14,24 @@ pub const CHECK: Check = Check {
 
 fn run(circuit: &Circuit, sink: &Sink) {
     let mut reported = sink.has_errors();
-    for (node, name) in circuit.node_names.iter().enumerate() {
-        let mut touching = circuit
-            .entries
+    // Of each node, the first element that meets it, and whether only current sources do.
+    let mut met: Vec<Option<(&Entry, bool)>> = vec![None; circuit.node_names.len()];
+    for entry in &circuit.entries {
+        let paths = entry.element.paths();
+        let is_source = paths
             .iter()
-            .filter(|entry| entry.nodes.iter().any(|unknown| unknown.0 as usize == node))
-            .peekable();
-        let Some(&first) = touching.peek() else {
+            .all(|path| path.kind == PathKind::CurrentSource);
+        for unknown in &entry.nodes {
+            if let Some(node) = met.get_mut(unknown.0 as usize) {
+                let (first, only_sources) = node.unwrap_or((entry, true));
+                *node = Some((first, only_sources && is_source));
+            }
+        }
+    }
+    for (name, met) in circuit.node_names.iter().zip(met) {
+        let Some((first, only_sources)) = met else {
             continue;
         };
-        let only_sources = touching.all(|entry| {
-            entry
-                .element
-                .paths()
-                .iter()
-                .all(|path| path.kind == PathKind::CurrentSource)
-        });
         if only_sources && !reported {
             sink.report(
                 Diagnostic::error("current-source-cut", format!("only current sources meet at `{name}`"))

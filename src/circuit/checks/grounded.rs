@@ -4,6 +4,7 @@ use super::{Check, Sets};
 use crate::circuit::{Circuit, GROUND};
 use crate::diag::{Diagnostic, Sink};
 use crate::elements::element::PathKind;
+use std::collections::BTreeMap;
 
 /// The check.
 pub const CHECK: Check = Check {
@@ -41,17 +42,16 @@ fn run(circuit: &Circuit, sink: &Sink) {
         }
     }
     let ground = sets.root(circuit.node_names.len());
-    let mut islands: Vec<(usize, Vec<usize>)> = Vec::new();
+    let mut islands: BTreeMap<usize, Vec<usize>> = BTreeMap::new();
     for node in 0..circuit.node_names.len() {
         let root = sets.root(node);
         if root != ground {
-            match islands.iter_mut().find(|(known, _)| *known == root) {
-                Some((_, nodes)) => nodes.push(node),
-                None => islands.push((root, vec![node])),
-            }
+            islands.entry(root).or_default().push(node);
         }
     }
-    for (_, nodes) in islands {
+    let mut islands: Vec<Vec<usize>> = islands.into_values().collect();
+    islands.sort_unstable();
+    for nodes in islands {
         report(circuit, &nodes, sink);
     }
 }
@@ -61,7 +61,7 @@ fn report(circuit: &Circuit, nodes: &[usize], sink: &Sink) {
         entry
             .nodes
             .iter()
-            .any(|node| nodes.contains(&(node.0 as usize)))
+            .any(|node| nodes.binary_search(&(node.0 as usize)).is_ok())
     };
     let driven = circuit.entries.iter().find(|entry| {
         on(entry)

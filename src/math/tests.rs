@@ -205,9 +205,9 @@ fn rows_and_columns_may_be_scaled_over_many_decades() {
             let b: Vec<T> = (0..size).map(|k| T::from_real((k as f64).cos())).collect();
             let mut x = b.clone();
             plain.solve(&mut x);
-            for column in 0..size {
+            for (column, scale) in columns.iter().enumerate() {
                 for slot in sample.starts[column]..sample.starts[column + 1] {
-                    let factor = rows[sample.rows[slot]] * columns[column];
+                    let factor = rows[sample.rows[slot]] * scale;
                     sample.values[slot] = sample.values[slot].scaled(factor);
                 }
             }

@@ -46,14 +46,25 @@ impl<T: Scalar> Kernel<T> for Own<T> {
 
 fn symbolic<T>(set: &Set<T>) -> SymbolicSparseColMat<u32> {
     let narrow = |wide: &[usize]| wide.iter().map(|&k| k as u32).collect();
-    SymbolicSparseColMat::new_checked(set.size, set.size, narrow(&set.starts), None, narrow(&set.rows))
+    SymbolicSparseColMat::new_checked(
+        set.size,
+        set.size,
+        narrow(&set.starts),
+        None,
+        narrow(&set.rows),
+    )
 }
 
 /// Entries of L and U when a symmetric pattern is eliminated in the order of approximate minimum degree.
 pub fn minimum_degree<T>(set: &Set<T>) -> usize {
     let pattern = symbolic(set);
-    let order = cholesky::factorize_symbolic_cholesky(pattern.as_ref(), Side::Upper, SymmetricOrdering::Amd, Default::default())
-        .expect("memory for the structure");
+    let order = cholesky::factorize_symbolic_cholesky(
+        pattern.as_ref(),
+        Side::Upper,
+        SymmetricOrdering::Amd,
+        Default::default(),
+    )
+    .expect("memory for the structure");
     2 * order.len_val() - set.size
 }
 
@@ -68,7 +79,8 @@ pub struct Faer<T> {
 impl<T: ComplexField + Scalar> Faer<T> {
     pub fn new(set: &Set<T>) -> Self {
         let pattern = symbolic(set);
-        let symbolic = lu::factorize_symbolic_lu(pattern.as_ref(), Default::default()).expect("memory for the structure");
+        let symbolic = lu::factorize_symbolic_lu(pattern.as_ref(), Default::default())
+            .expect("memory for the structure");
         let factor = symbolic.factorize_numeric_lu_scratch::<T>(Par::Seq, Default::default());
         let solve = symbolic.solve_in_place_scratch::<T>(1, Par::Seq);
         Faer {
@@ -85,7 +97,13 @@ impl<T: ComplexField + Scalar> Kernel<T> for Faer<T> {
         let matrix = SparseColMatRef::new(self.pattern.as_ref(), values);
         let stack = MemStack::new(&mut self.memory);
         self.symbolic
-            .factorize_numeric_lu(&mut self.numeric, matrix, Par::Seq, stack, Default::default())
+            .factorize_numeric_lu(
+                &mut self.numeric,
+                matrix,
+                Par::Seq,
+                stack,
+                Default::default(),
+            )
             .expect("a regular matrix");
     }
     fn solve(&mut self, x: &mut [T]) {

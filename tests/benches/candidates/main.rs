@@ -63,7 +63,9 @@ fn measure<T: Scalar>(set: &Set<T>, name: &str, make: impl Fn() -> Box<dyn Kerne
         fresh.solve(&mut x);
         worst = worst.max(set.error(values, &x));
     }
-    let filled = fresh.filled().map_or(String::new(), |filled| format!(" filled {filled}"));
+    let filled = fresh
+        .filled()
+        .map_or(String::new(), |filled| format!(" filled {filled}"));
     println!(
         "{:<28}{:>7}{:>8}  {name:<9}{:>11}{:>11}{:>11}  error {worst:.0e}{filled}",
         set.name,
@@ -79,7 +81,9 @@ fn all<T>(set: &Set<T>)
 where
     T: Scalar + faer::traits::ComplexField + nalgebra::ComplexField,
 {
-    measure(set, "sparse", || Box::new(Own::new(set, Elimination::Sparse)));
+    measure(set, "sparse", || {
+        Box::new(Own::new(set, Elimination::Sparse))
+    });
     measure(set, "faer", || Box::new(Faer::new(set)));
     if set.size <= 300 {
         measure(set, "dense", || Box::new(Own::new(set, Elimination::Dense)));
@@ -88,21 +92,34 @@ where
 }
 
 fn main() {
-    println!("{:<28}{:>7}{:>8}  {:<9}{:>11}{:>11}{:>11}", "matrix", "size", "entries", "by", "first", "again", "solution");
+    println!(
+        "{:<28}{:>7}{:>8}  {:<9}{:>11}{:>11}{:>11}",
+        "matrix", "size", "entries", "by", "first", "again", "solution"
+    );
     let arguments: Vec<String> = std::env::args().skip(1).collect();
     if let [word, side] = arguments.as_slice()
         && word == "grid"
     {
         let set = matrices::grid(side.parse().expect("a number of nodes along a side"));
-        println!("{}: {} entries filled in the order of approximate minimum degree", set.name, kernels::minimum_degree(&set));
+        println!(
+            "{}: {} entries filled in the order of approximate minimum degree",
+            set.name,
+            kernels::minimum_degree(&set)
+        );
         return all(&set);
     }
     let netlists = if arguments.is_empty() {
         let files = ["relay_diode", "buck_telemetry", "valve_on_cable"];
-        files.map(|name| (name.to_owned(), matrices::shipped(name))).to_vec()
+        files
+            .map(|name| (name.to_owned(), matrices::shipped(name)))
+            .to_vec()
     } else {
-        let sections = arguments.iter().map(|sections| sections.parse().expect("a number of sections"));
-        sections.map(|n: usize| (format!("line of {n}"), matrices::line(n))).collect()
+        let sections = arguments
+            .iter()
+            .map(|sections| sections.parse().expect("a number of sections"));
+        sections
+            .map(|n: usize| (format!("line of {n}"), matrices::line(n)))
+            .collect()
     };
     for (name, text) in &netlists {
         let run = matrices::run(name, text);

@@ -2,7 +2,7 @@
 
 use coilbreak::analysis::simulate::Shown;
 use coilbreak::analysis::{Analysis, Settings, Simulation};
-use coilbreak::dae::{Evaluation, Pattern, Point, System, Tolerances};
+use coilbreak::dae::{Evaluation, Pattern, Point, System};
 use coilbreak::math::Scalar;
 use coilbreak::netlist::Input;
 use coilbreak::run::{method, read};
@@ -32,7 +32,9 @@ impl<T: Scalar> Set<T> {
             }
         }
         let rows = left.iter().zip(&terms);
-        rows.fold(0.0, |most, (left, terms)| f64::max(most, left.size() / terms))
+        rows.fold(0.0, |most, (left, terms)| {
+            f64::max(most, left.size() / terms)
+        })
     }
 }
 
@@ -67,12 +69,28 @@ pub fn line(sections: usize) -> Input {
     );
     for k in 1..=sections {
         let before = k - 1;
-        let _ = writeln!(text, "  l{k}: {{kind: inductor, nodes: [n{before}, n{k}], inductance: 1 uH, series_resistance: 0.1 ohm}}");
-        let _ = writeln!(text, "  c{k}: {{kind: capacitor, nodes: [n{k}, ground], capacitance: 1 nF, leakage_resistance: 10 Mohm}}");
+        let _ = writeln!(
+            text,
+            "  l{k}: {{kind: inductor, nodes: [n{before}, n{k}], inductance: 1 uH, series_resistance: 0.1 ohm}}"
+        );
+        let _ = writeln!(
+            text,
+            "  c{k}: {{kind: capacitor, nodes: [n{k}, ground], capacitance: 1 nF, leakage_resistance: 10 Mohm}}"
+        );
     }
-    let _ = writeln!(text, "  end: {{kind: resistor, nodes: [n{sections}, ground], resistance: 50 ohm}}");
-    let _ = writeln!(text, "analysis: {{transient: {{duration: 4 us, start: zero}}}}");
-    Input::Text { name: "line".into(), bytes: text.into_bytes(), folder: None }
+    let _ = writeln!(
+        text,
+        "  end: {{kind: resistor, nodes: [n{sections}, ground], resistance: 50 ohm}}"
+    );
+    let _ = writeln!(
+        text,
+        "analysis: {{transient: {{duration: 4 us, start: zero}}}}"
+    );
+    Input::Text {
+        name: "line".into(),
+        bytes: text.into_bytes(),
+        folder: None,
+    }
 }
 
 /// Runs a netlist and keeps its matrices.
@@ -88,12 +106,18 @@ pub fn run(name: &str, input: &Input) -> Run {
         start: transient.start,
         longest_step: f64::INFINITY,
     };
-    let simulation = Simulation { circuit, settings, method: method() };
+    let simulation = Simulation {
+        circuit,
+        settings,
+        method: method(),
+    };
     let (size, slots) = (circuit.size(), circuit.pattern().len());
-    let tolerances = Tolerances { absolute: vec![1e-4; size], relative: 1e-3 };
+    let scales = simulation
+        .pilot(Vec::new())
+        .unwrap_or_else(|_| panic!("a run to the end"));
     let most = MOST.0.min(1 + MOST.1 / slots);
     let (mut steps, mut count) = (Vec::new(), 0);
-    let _ = simulation.run(&tolerances, &mut |_, shown, _| {
+    let _ = simulation.run_scaled(&scales, &mut |_, shown, _| {
         let Shown::Step(step) = shown else {
             return ControlFlow::Continue(());
         };
@@ -102,13 +126,25 @@ pub fn run(name: &str, input: &Input) -> Run {
             let mut out = Evaluation::default();
             (out.f, out.q) = (vec![0.0; size], vec![0.0; size]);
             (out.df, out.dq) = (vec![0.0; slots], vec![0.0; slots]);
-            let at = Point { time: step.to, x: step.x1, mode: step.mode };
+            let at = Point {
+                time: step.to,
+                x: step.x1,
+                mode: step.mode,
+            };
             circuit.evaluate(at, true, &mut out);
             steps.push((step.to - step.from, out));
         }
-        if steps.len() < most { ControlFlow::Continue(()) } else { ControlFlow::Break(()) }
+        if steps.len() < most {
+            ControlFlow::Continue(())
+        } else {
+            ControlFlow::Break(())
+        }
     });
-    Run { name: name.into(), pattern: circuit.pattern().clone(), steps }
+    Run {
+        name: name.into(),
+        pattern: circuit.pattern().clone(),
+        steps,
+    }
 }
 
 impl Run {
@@ -140,8 +176,17 @@ impl Run {
         for column in 0..self.pattern.size {
             for slot in self.pattern.starts[column]..self.pattern.starts[column + 1] {
                 let charged = self.steps.iter().any(|(_, out)| out.dq[slot] != 0.0);
-                for (i, j) in (0..9).map(|k| (k / 3, k % 3)).filter(|(i, j)| charged || i == j) {
-                    positions.push((3 * column + j, 3 * self.pattern.rows[slot] + i, slot, W[i][j], i == j));
+                for (i, j) in (0..9)
+                    .map(|k| (k / 3, k % 3))
+                    .filter(|(i, j)| charged || i == j)
+                {
+                    positions.push((
+                        3 * column + j,
+                        3 * self.pattern.rows[slot] + i,
+                        slot,
+                        W[i][j],
+                        i == j,
+                    ));
                 }
             }
         }
@@ -176,7 +221,12 @@ pub fn grid(side: usize) -> Set<f64> {
     for node in 0..size {
         let (i, j) = (node / side, node % side);
         let mut column = vec![(node, 4.1)];
-        for (a, b) in [(i.wrapping_sub(1), j), (i + 1, j), (i, j.wrapping_sub(1)), (i, j + 1)] {
+        for (a, b) in [
+            (i.wrapping_sub(1), j),
+            (i + 1, j),
+            (i, j.wrapping_sub(1)),
+            (i, j + 1),
+        ] {
             if a < side && b < side {
                 // Conductances that differ, the same both ways.
                 let other = a * side + b;
@@ -188,5 +238,11 @@ pub fn grid(side: usize) -> Set<f64> {
         values.extend(column.iter().map(|entry| entry.1));
         starts.push(rows.len());
     }
-    Set { name: format!("grid of {side} x {side}"), size, starts, rows, values: vec![values] }
+    Set {
+        name: format!("grid of {side} x {side}"),
+        size,
+        starts,
+        rows,
+        values: vec![values],
+    }
 }

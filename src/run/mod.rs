@@ -26,7 +26,7 @@ pub use sensitivity::{Sensitivity, parameter};
 use crate::analysis::simulate::Shown;
 use crate::analysis::{Analysis, Failure, Settings, Simulation, Transient, Wish};
 use crate::circuit::{Circuit, Tap};
-use crate::dae::{Ending, Method, Point};
+use crate::dae::{Ending, Method};
 use crate::elements::Unknown;
 use crate::netlist::Value;
 use crate::signals::EventLog;
@@ -81,7 +81,7 @@ pub fn perform(
     watch: &mut Watch<'_>,
 ) -> Result<Outcome, Failure> {
     match &netlist.analysis {
-        Analysis::OperatingPoint => at_rest(netlist),
+        Analysis::OperatingPoint => at_rest(netlist, request),
         Analysis::Transient(transient) => over_time(netlist, transient, request, watch),
     }
 }
@@ -170,15 +170,25 @@ fn over_time(
     Ok(outcome)
 }
 
-fn at_rest(netlist: &Netlist) -> Result<Outcome, Failure> {
-    let circuit = &netlist.circuit;
-    let (state, _) = crate::analysis::start(circuit, crate::analysis::Start::OperatingPoint)?;
-    let at = Point {
-        time: 0.0,
-        x: &state.x,
-        mode: &state.mode,
+fn at_rest(netlist: &Netlist, request: &Request) -> Result<Outcome, Failure> {
+    let rest = |netlist: &Netlist| {
+        let from = crate::analysis::Start::OperatingPoint;
+        crate::analysis::start(&netlist.circuit, from).map(|(state, _)| state)
     };
-    Ok(results::at_rest(netlist, at))
+    let state = rest(netlist)?;
+    let found = results::found_at_rest(netlist, state.point());
+    let mut sensitivities = Vec::new();
+    for &value in &request.sensitivity {
+        let neighbours = Neighbours::of(netlist, value)?;
+        let readings = neighbours.each(|netlist| {
+            let state = rest(netlist)?;
+            Ok(results::found_at_rest(netlist, state.point()))
+        })?;
+        sensitivities.extend(neighbours.sensitivities(netlist, &found, &readings));
+    }
+    let mut outcome = results::at_rest(netlist, state.point());
+    outcome.sensitivities = sensitivities;
+    Ok(outcome)
 }
 
 /// Which unknowns each reading is made of, and in which window.

@@ -61,8 +61,8 @@ pub fn outcome(netlist: &Netlist, analysis: &'static str, findings: Findings) ->
     outcome
 }
 
-/// The outcome of a circuit at rest: every reading takes the value there.
-pub fn at_rest(netlist: &Netlist, at: Point<'_>) -> Outcome {
+/// The readings of a circuit at rest: every one takes the value there.
+pub fn found_at_rest(netlist: &Netlist, at: Point<'_>) -> Vec<Found> {
     let circuit = &netlist.circuit;
     let found = |reading: &crate::readings::Reading| {
         let phrase = &reading.signal.phrase;
@@ -75,8 +75,13 @@ pub fn at_rest(netlist: &Netlist, at: Point<'_>) -> Outcome {
         taking.feed(&Piece::instant(0.0, value), &EventLog::default());
         taking.finish()
     };
+    netlist.readings.iter().map(found).collect()
+}
+
+/// The outcome of a circuit at rest.
+pub fn at_rest(netlist: &Netlist, at: Point<'_>) -> Outcome {
     let findings = Findings {
-        readings: netlist.readings.iter().map(found).collect(),
+        readings: found_at_rest(netlist, at),
         ..Findings::default()
     };
     outcome(netlist, "operating_point", findings)

@@ -299,25 +299,11 @@ impl<'a> Watcher<'a> {
         self.release(&ends);
         let mut all = Vec::new();
         for (neighbours, feeds) in self.columns.iter().zip(self.feeds) {
-            let parameter = netlist.circuit.parameters.get(neighbours.value);
-            let mut figures = feeds.into_iter().zip(&neighbours.netlists);
-            let mut next = || {
-                let ((feed, _), netlist) = figures.next().expect("there are two neighbours");
-                feed.figures(&netlist.circuit, work).readings
-            };
-            let (more, less) = (next(), next());
-            for (k, found) in found.iter().enumerate() {
-                let (value, remark) = slope(found, [&more[k], &less[k]], neighbours.step);
-                all.push(Sensitivity {
-                    reading: netlist.readings[k].name.text.clone(),
-                    kind: found.kind,
-                    path: parameter.path.clone(),
-                    by: parameter.kind,
-                    at: netlist.circuit.values()[neighbours.value],
-                    value,
-                    remark,
-                });
-            }
+            let [more, less] = feeds;
+            let [high, low] = &neighbours.netlists;
+            let readings = [(more, high), (less, low)]
+                .map(|((feed, _), netlist)| feed.figures(&netlist.circuit, work).readings);
+            all.extend(neighbours.sensitivities(netlist, found, &readings));
         }
         all
     }
@@ -327,6 +313,38 @@ impl Neighbours {
     /// How far the neighbour of a side lies away.
     fn by(&self, side: usize) -> f64 {
         if side == 0 { self.step } else { -self.step }
+    }
+
+    /// What work gives of both neighbours, of the larger one first.
+    ///
+    /// # Errors
+    /// Those of the work.
+    pub fn each<T, E>(&self, work: impl Fn(&Netlist) -> Result<T, E>) -> Result<[T; 2], E> {
+        let [more, less] = &self.netlists;
+        Ok([work(more)?, work(less)?])
+    }
+
+    /// How the readings of a netlist move, from its own and those of the two neighbours.
+    pub fn sensitivities(
+        &self,
+        netlist: &Netlist,
+        found: &[Found],
+        [more, less]: &[Vec<Found>; 2],
+    ) -> Vec<Sensitivity> {
+        let parameter = netlist.circuit.parameters.get(self.value);
+        let one = |k: usize| {
+            let (value, remark) = slope(&found[k], [&more[k], &less[k]], self.step);
+            Sensitivity {
+                reading: netlist.readings[k].name.text.clone(),
+                kind: found[k].kind,
+                path: parameter.path.clone(),
+                by: parameter.kind,
+                at: netlist.circuit.values()[self.value],
+                value,
+                remark,
+            }
+        };
+        (0..found.len()).map(one).collect()
     }
 }
 

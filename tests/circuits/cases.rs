@@ -1,6 +1,7 @@
 //! The four cases: marched, read, and held against the reference quantities.
 
 use super::buck::{self, Buck};
+use super::kinks::Located;
 use super::measure::{extremes, integrate, passes};
 use super::relay::{self, Relay, Suppressor};
 use coilbreak::dae::{
@@ -62,6 +63,11 @@ pub const CASES: &[Case] = &[
                 l,
             )
         },
+    },
+    Case {
+        name: "R2 with the zeros of its flux located",
+        run: located_case,
+        bare: |m, l| drop(located_case(m, l)),
     },
     Case {
         name: "R3",
@@ -204,26 +210,48 @@ impl RelayReadings {
     }
 }
 
+/// The bare relay with the zeros of the flux, where the core's law has a kink, as located events.
+fn located_case(method: &'static Method, accuracy: f64) -> Result<Outcome, MarchError> {
+    let located = Located {
+        system: Relay::new(Suppressor::None),
+        unknown: relay::LINKAGE,
+    };
+    let mut state = relay_state(Suppressor::None);
+    state.mode.push(1.0);
+    read_relay(&located.system, &located, state, method, accuracy)
+}
+
 fn relay_case(
     suppressor: Suppressor,
     method: &'static Method,
     accuracy: f64,
 ) -> Result<Outcome, MarchError> {
     let relay = Relay::new(suppressor);
-    let mut march = March::new(method, relay_state(suppressor));
+    read_relay(&relay, &relay, relay_state(suppressor), method, accuracy)
+}
+
+/// Marches `system`, which is `relay` as it is or in a wrapping, and reads.
+fn read_relay(
+    relay: &Relay,
+    system: &impl System,
+    state: State,
+    method: &'static Method,
+    accuracy: f64,
+) -> Result<Outcome, MarchError> {
+    let mut march = March::new(method, state);
     let mut read = RelayReadings::default();
-    let tolerances = tolerances(&relay, method.local_tolerance(accuracy));
+    let tolerances = tolerances(relay, method.local_tolerance(accuracy));
     march.run(
-        &relay,
+        system,
         whole(60e-3, &tolerances, accuracy),
         &mut |advance| {
             if let Advance::Step(step) = advance {
-                read.step(&relay, step);
+                read.step(relay, step);
             }
             ControlFlow::Continue(())
         },
     )?;
-    let case = match suppressor {
+    let case = match relay.suppressor {
         Suppressor::Diode => "R1",
         Suppressor::None => "R2",
         Suppressor::Snubber => "R3",

@@ -5,6 +5,7 @@
 pub mod buck;
 pub mod cases;
 pub mod closed;
+pub mod kinks;
 pub mod ladder;
 pub mod laws;
 pub mod measure;

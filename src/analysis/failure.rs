@@ -46,10 +46,7 @@ impl Failure {
         let time = engineering(error.time, TIME, 7);
         Failure::Stopped {
             headline: format!("the simulation stopped at {time}{whose}: {}", error.cause),
-            help: remedy(
-                error.cause,
-                "a small capacitance across the element, a longer transition or a looser accuracy may help",
-            ),
+            help: remedy(error.cause, on_the_way(error.cause)),
             span,
             time: error.time,
         }
@@ -71,6 +68,21 @@ fn blame(
         format!(" {preposition} {}", explained.words)
     });
     (words, explained.and_then(|explained| explained.span))
+}
+
+/// What to try where a march stopped.
+fn on_the_way(cause: Trouble) -> &'static str {
+    match cause {
+        Trouble::NotFinite => {
+            "it grows without bound: look for a source that feeds on what it drives (a `gain` round a loop above one), or for a value with a wrong prefix"
+        }
+        Trouble::Singular => {
+            "nothing holds it: ideal sources and gains that cancel each other, or values too many decades apart; a resistance in the loop or from the node to ground holds it"
+        }
+        _ => {
+            "a small capacitance across the element, a longer transition or a looser accuracy may help"
+        }
+    }
 }
 
 /// What to try; a switch that chatters has a remedy of its own.

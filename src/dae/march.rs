@@ -386,11 +386,23 @@ impl<S: System + ?Sized> Run<'_, '_, '_, S> {
         if length > 2.0 * self.shortest() {
             return Ok(());
         }
+        // Where values overflow, every unknown is soon no number: the one that has grown most is to blame.
+        let unknown = match cause {
+            Trouble::NotFinite => self.grown_most().unwrap_or(unknown),
+            _ => unknown,
+        };
         Err(MarchError {
             time: self.state.time,
             unknown: Some(unknown),
             cause,
         })
+    }
+
+    /// The unknown that lies highest above its absolute tolerance.
+    fn grown_most(&self) -> Option<usize> {
+        let sizes = self.state.x.iter().zip(&self.span.tolerances.absolute);
+        let sizes = sizes.map(|(x, tolerance)| x.abs() / tolerance).enumerate();
+        sizes.max_by(|a, b| a.1.total_cmp(&b.1)).map(|most| most.0)
     }
 
     /// Commits the step tried last and shows it.

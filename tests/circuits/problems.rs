@@ -5,8 +5,8 @@ use super::closed::{barely, driven, ring, saturating};
 use super::published::{AMPLIFIER, MODULATOR, amplifier, modulator};
 use super::stamps::{Places, Stamps};
 use coilbreak::dae::{
-    Advance, Evaluation, March, MarchError, Method, Pattern, Point, State, Statistics, System,
-    Tolerances,
+    Advance, Evaluation, March, MarchError, Method, Pattern, Point, State, Statistics, Step,
+    System, Tolerances,
 };
 use std::ops::ControlFlow;
 
@@ -141,8 +141,13 @@ impl Problem {
         matches!(self.truth, Truth::End(_))
     }
 
-    /// Marches at an accuracy of the whole run.
-    pub fn run(&self, method: &'static Method, accuracy: f64) -> Result<Reached, MarchError> {
+    /// Marches at an accuracy of the whole run and shows every step; the values at the end, and the work.
+    pub fn march(
+        &self,
+        method: &'static Method,
+        accuracy: f64,
+        watch: &mut dyn FnMut(&Step<'_>),
+    ) -> Result<(Vec<f64>, Statistics), MarchError> {
         let local = method.local_tolerance(accuracy);
         let absolute = self.swings.iter().map(|swing| local * swing).collect();
         let tolerances = Tolerances::absolute(absolute);
@@ -152,6 +157,21 @@ impl Problem {
             mode: vec![],
         };
         let mut march = March::new(method, state);
+        march.run(
+            &*(self.system)(),
+            whole(self.until, &tolerances, accuracy),
+            &mut |advance| {
+                if let Advance::Step(step) = advance {
+                    watch(step);
+                }
+                ControlFlow::Continue(())
+            },
+        )?;
+        Ok((march.state.x, march.counted))
+    }
+
+    /// Marches and holds every waveform against what is known, at points within the steps too.
+    pub fn run(&self, method: &'static Method, accuracy: f64) -> Result<Reached, MarchError> {
         let mut x = vec![0.0; self.swings.len()];
         let mut worst = (0.0, 0);
         let mut hold = |x: &[f64], truth: &[f64]| {
@@ -162,27 +182,22 @@ impl Problem {
                 }
             }
         };
-        march.run(
-            &*(self.system)(),
-            whole(self.until, &tolerances, accuracy),
-            &mut |advance| {
-                if let (Truth::Everywhere(solution), Advance::Step(step)) = (&self.truth, advance) {
-                    for share in [0.15, 0.4, 0.65, 0.85, 1.0] {
-                        let time = step.from + share * (step.to - step.from);
-                        step.at(time, &mut x);
-                        hold(&x, &solution(time));
-                    }
+        let (end, counted) = self.march(method, accuracy, &mut |step| {
+            if let Truth::Everywhere(solution) = &self.truth {
+                for share in [0.15, 0.4, 0.65, 0.85, 1.0] {
+                    let time = step.from + share * (step.to - step.from);
+                    step.at(time, &mut x);
+                    hold(&x, &solution(time));
                 }
-                ControlFlow::Continue(())
-            },
-        )?;
+            }
+        })?;
         if let Truth::End(truth) = self.truth {
-            hold(&march.state.x, truth);
+            hold(&end, truth);
         }
         Ok(Reached {
             error: worst.0,
             unknown: worst.1,
-            counted: march.counted,
+            counted,
         })
     }
 }

@@ -98,7 +98,11 @@ fn an_interrupted_run_leaves_what_was_simulated_and_says_so() {
         .next()
         .and_then(|t| t.parse().ok())
         .expect("a number");
-    assert_eq!(time, reached);
+    // The reader of the JSON may miss the last digit.
+    assert!(
+        (time - reached).abs() <= f64::EPSILON * reached,
+        "{time} {reached}"
+    );
     assert!(out.path().join("kick.svg").exists() || out.path().join("run.svg").exists());
 }
 

@@ -20,3 +20,17 @@ pub struct Statistics {
     /// Events taken.
     pub events: u64,
 }
+
+impl Statistics {
+    /// Adds the work of another.
+    pub fn add(&mut self, other: &Statistics) {
+        self.accepted += other.accepted;
+        self.rejected += other.rejected;
+        self.unsettled += other.unsettled;
+        self.newton_iterations += other.newton_iterations;
+        self.evaluations += other.evaluations;
+        self.factorizations += other.factorizations;
+        self.solves += other.solves;
+        self.events += other.events;
+    }
+}

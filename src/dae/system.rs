@@ -70,6 +70,9 @@ pub trait System {
     fn next_event(&self, _time: f64, _mode: &[f64]) -> f64 {
         f64::INFINITY
     }
+    /// Takes the memory of instants in the modes back by `by` seconds, a whole number of periods of all that the clock
+    /// does: the modes of the same instant one such time before.
+    fn earlier(&self, _by: f64, _mode: &mut [f64]) {}
     /// Number of guards.
     fn guard_size(&self) -> usize {
         0

@@ -4,5 +4,6 @@ mod events;
 mod hard;
 mod order;
 mod problems;
+mod shooting;
 mod starts;
 mod variations;

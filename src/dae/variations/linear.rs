@@ -2,6 +2,7 @@
 
 use crate::dae::newton::evaluation;
 use crate::dae::pattern::Pattern;
+use crate::dae::start::INSTANT;
 use crate::dae::statistics::Statistics;
 use crate::dae::system::{Evaluation, Point, System};
 use crate::math::{Elimination, Matrix, Singular};
@@ -73,4 +74,15 @@ pub(super) fn multiply(pattern: &Pattern, values: &[f64], v: &[f64], into: &mut 
             into[pattern.rows[slot]] += values[slot] * v;
         }
     }
+}
+
+/// dq/dt at a point, without what a residual of the algebraic equations would add.
+pub(crate) fn charge_slope<S: System + ?Sized>(
+    system: &S,
+    at: Point<'_>,
+    counted: &mut Statistics,
+) -> Result<Vec<f64>, Singular> {
+    let mut linear = Linear::new(system);
+    linear.at(system, at, 1.0 / INSTANT, counted)?;
+    Ok(linear.charge_slope(counted))
 }

@@ -23,6 +23,7 @@ use super::system::{Point, System};
 pub(crate) use events::Taken;
 use explicit::{Differences, Explicit, Moving};
 use linear::Linear;
+pub(crate) use linear::charge_slope;
 pub use shifted::{HeldStep, MovedStep};
 pub(crate) use stages::Kept;
 use stages::Stages;

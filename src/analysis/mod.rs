@@ -2,8 +2,10 @@
 
 pub mod failure;
 pub mod ledger;
+pub mod period;
 pub mod simulate;
 pub mod start;
+pub mod steady;
 pub mod swings;
 pub mod task;
 
@@ -11,5 +13,6 @@ pub use failure::Failure;
 pub use ledger::{Account, Ledger, LedgerKeeper};
 pub use simulate::{Settings, Simulation};
 pub use start::start;
+pub use steady::{Found, Warm};
 pub use swings::{Swings, Wish};
-pub use task::{Analysis, Start, Transient};
+pub use task::{Analysis, Start, SteadyState, Transient};

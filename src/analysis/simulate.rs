@@ -1,7 +1,8 @@
 //! A transient: the pilot run that finds the swings, then the run itself, shown to an observer.
 
 use super::failure::Failure;
-use super::start::{Begun, begin, vary};
+use super::start::{Begun, begin, begin_at, vary};
+use super::steady::{self, Found, Warm};
 use super::swings::{Swings, Wish};
 use super::task::Start;
 use crate::circuit::Circuit;
@@ -10,6 +11,7 @@ use crate::dae::{
     Advance, Ending, March, Method, Moved, Point, Shadows, Span, State, Statistics, Tolerances,
     Variations,
 };
+use crate::diag::Diagnostic;
 use crate::signals::{EventLog, Happening, Owner};
 use std::ops::ControlFlow;
 
@@ -24,10 +26,17 @@ pub struct Settings {
     pub start: Start,
     /// Longest step [s]; infinity for none.
     pub longest_step: f64,
+    /// Period [s] of the periodic state where it begins in one, and whether that is but a guess: the duration is then
+    /// the period that is found.
+    pub period: Option<(f64, bool)>,
 }
 
 /// One thing that the observer of a simulation is shown.
 pub enum Shown<'a> {
+    /// A periodic state is being looked for.
+    Settling,
+    /// It has been found.
+    Settled(&'a Found),
     /// The start.
     Start(Point<'a>),
     /// A step.
@@ -58,6 +67,18 @@ pub struct Simulation<'a> {
     pub settings: Settings,
     /// The method.
     pub method: &'static Method,
+    /// The last periodic state that was found, from which the next one is looked for.
+    pub warm: Option<&'a Warm>,
+}
+
+/// Where a run begins, and what finding that has told.
+struct Beginning {
+    begun: Begun,
+    /// Simulated time [s].
+    duration: f64,
+    /// Tolerances of a single period, tightened where errors pile up by repetition.
+    tight: Option<Tolerances>,
+    spent: Statistics,
 }
 
 /// Tolerances of a march, of which `pile` may pile up.
@@ -88,14 +109,15 @@ impl Simulation<'_> {
         wishes: Vec<Wish>,
         watch: &mut dyn FnMut(f64) -> ControlFlow<()>,
     ) -> Result<(Vec<f64>, Ending), Failure> {
-        let light = self.pilot_by(methods::LIGHTEST, CREEPING, wishes.clone(), watch);
-        match light {
-            Ok((scales, Some(ending))) => Ok((scales, ending)),
-            Ok((_, None)) | Err(_) => {
-                let (scales, ending) = self.pilot_by(self.method, u32::MAX, wishes, watch)?;
-                Ok((scales, ending.unwrap_or(Ending::Stopped)))
+        // The search for a periodic state is worth the better method.
+        if self.settings.period.is_none() {
+            let light = self.pilot_by(methods::LIGHTEST, CREEPING, wishes.clone(), watch);
+            if let Ok((scales, Some(ending))) = light {
+                return Ok((scales, ending));
             }
         }
+        let (scales, ending) = self.pilot_by(self.method, u32::MAX, wishes, watch)?;
+        Ok((scales, ending.unwrap_or(Ending::Stopped)))
     }
 
     /// One attempt: the scales, and how it ended, which is nothing where it took more than `most` steps between events.
@@ -113,10 +135,10 @@ impl Simulation<'_> {
             tolerances: &self.pilot_tolerances(),
             pile: f64::INFINITY,
         };
-        let begun = begin(self.circuit, self.settings.start)?;
-        let (_, ending) = pilot.march(wanted, begun, None, &mut |_, shown, log| {
+        let beginning = self.beginning(None, &mut |_, _, _| watch(0.0))?;
+        let (_, ending) = pilot.march(wanted, beginning, None, &mut |_, shown, log| {
             match shown {
-                Shown::Start(_) => {}
+                Shown::Settling | Shown::Settled(_) | Shown::Start(_) => {}
                 Shown::Event { .. } => steps = 0,
                 Shown::Step(step) => {
                     steps += 1;
@@ -136,7 +158,7 @@ impl Simulation<'_> {
     }
 
     /// Tolerances of the pilot run: relative, above a floor that is small for what it measures.
-    fn pilot_tolerances(&self) -> Tolerances {
+    pub(super) fn pilot_tolerances(&self) -> Tolerances {
         use crate::elements::Measure;
         let floor = |measure: Measure| match measure {
             Measure::Voltage => 1e-3,
@@ -162,8 +184,45 @@ impl Simulation<'_> {
         scales: &[f64],
         watcher: &mut Watcher<'_>,
     ) -> Result<(Statistics, Ending), Failure> {
-        let begun = begin(self.circuit, self.settings.start)?;
-        self.march_scaled(scales, begun, None, watcher)
+        let beginning = self.beginning(Some(scales), watcher)?;
+        self.march_scaled(scales, beginning, None, watcher)
+    }
+
+    /// Tolerances of a step at the accuracy asked.
+    pub(super) fn tolerances(&self, scales: &[f64]) -> Tolerances {
+        let local = self.method.local_tolerance(self.settings.accuracy);
+        Tolerances::absolute(scales.iter().map(|scale| local * scale).collect())
+    }
+
+    /// Where the run begins: at once, or in a periodic state that has to be found first.
+    fn beginning(
+        &self,
+        scales: Option<&[f64]>,
+        watcher: &mut Watcher<'_>,
+    ) -> Result<Beginning, Failure> {
+        let circuit = self.circuit;
+        let duration = self.settings.duration;
+        let Some((period, unknown)) = self.settings.period else {
+            return Ok(Beginning {
+                begun: begin(circuit, self.settings.start)?,
+                duration,
+                tight: None,
+                spent: Statistics::default(),
+            });
+        };
+        let log = EventLog::default();
+        let found = steady::find(self, (period, unknown), scales, &mut || {
+            watcher(circuit, Shown::Settling, &log)
+        })?;
+        if watcher(circuit, Shown::Settled(&found), &log).is_break() {
+            return Err(Failure::Interrupted);
+        }
+        Ok(Beginning {
+            begun: begin_at(circuit, found.state)?,
+            duration: if unknown { found.period } else { duration },
+            tight: found.tolerances.filter(|_| period == duration),
+            spent: found.counted,
+        })
     }
 
     /// The same, and the derivatives by each column's parameter are carried along: steps and events are shown with them.
@@ -174,41 +233,62 @@ impl Simulation<'_> {
         watcher: &mut Watcher<'_>,
     ) -> Result<(Statistics, Ending), Failure> {
         let (circuit, from) = (self.circuit, self.settings.start);
+        if self.settings.period.is_some() {
+            let text = "how a periodic state moves with a parameter is not computed";
+            let refused = Diagnostic::error("no-sensitivity", text)
+                .help("run a `transient` that has settled, and read in a late window");
+            return Err(Failure::Refused(Box::new(refused)));
+        }
         let begun = begin(circuit, from)?;
         let all = columns.iter().copied().map(Some).collect();
         let mut variations = Variations::new(circuit, all, scales.to_vec());
         vary(circuit, from, &begun, columns, &mut variations)?;
-        self.march_scaled(scales, begun, Some(&mut variations), watcher)
+        let beginning = Beginning {
+            begun,
+            duration: self.settings.duration,
+            tight: None,
+            spent: Statistics::default(),
+        };
+        self.march_scaled(scales, beginning, Some(&mut variations), watcher)
     }
 
     fn march_scaled(
         &self,
         scales: &[f64],
-        begun: Begun,
+        mut beginning: Beginning,
         variations: Option<&mut Variations<'_, Circuit>>,
         watcher: &mut Watcher<'_>,
     ) -> Result<(Statistics, Ending), Failure> {
-        let accuracy = self.settings.accuracy;
-        let local = self.method.local_tolerance(accuracy);
-        let fine = Tolerances::absolute(scales.iter().map(|scale| local * scale).collect());
+        // Over one period errors pile up by repetition alone, which the tight tolerances see to.
+        let tight = beginning.tight.take();
+        let pile = match tight {
+            Some(_) => f64::INFINITY,
+            None => Method::pile(self.settings.accuracy),
+        };
+        let fine = tight.unwrap_or_else(|| self.tolerances(scales));
         let wanted = Wanted {
             tolerances: &fine,
-            pile: Method::pile(accuracy),
+            pile,
         };
-        self.march(wanted, begun, variations, watcher)
+        self.march(wanted, beginning, variations, watcher)
     }
 
     fn march(
         &self,
         wanted: Wanted<'_>,
-        begun: Begun,
+        beginning: Beginning,
         variations: Option<&mut Variations<'_, Circuit>>,
         watcher: &mut Watcher<'_>,
     ) -> Result<(Statistics, Ending), Failure> {
         let circuit = self.circuit;
-        let Begun {
-            state, happened, ..
-        } = begun;
+        let Beginning {
+            begun: Begun {
+                state, happened, ..
+            },
+            duration,
+            mut spent,
+            ..
+        } = beginning;
         let mut log = EventLog::default();
         for (k, what) in happened {
             log.note(&owner(circuit, k), what, 0.0);
@@ -220,7 +300,7 @@ impl Simulation<'_> {
         let span = Span {
             pile: wanted.pile,
             longest_step: self.settings.longest_step,
-            ..Span::new(self.settings.duration, wanted.tolerances)
+            ..Span::new(duration, wanted.tolerances)
         };
         let ending = march
             .run_varied(circuit, span, variations, &mut |advance| match advance {
@@ -269,7 +349,8 @@ impl Simulation<'_> {
                 }
             })
             .map_err(|error| Failure::march(circuit, error))?;
-        Ok((march.counted, ending))
+        spent.add(&march.counted);
+        Ok((spent, ending))
     }
 }
 

@@ -41,10 +41,51 @@ pub fn begin(circuit: &Circuit, from: Start) -> Result<Begun, Failure> {
     if from == Start::OperatingPoint {
         refuse_without_rest(circuit)?;
     }
+    settle_watches(circuit, from, &mut state, &tolerances)?;
+    let rested = state.clone();
+    let happened = first_instant(circuit, &mut state, &tolerances)?;
+    Ok(Begun {
+        rested,
+        state,
+        happened,
+    })
+}
+
+/// A consistent uncharged state at `time` as if the clock had always run.
+pub fn running(circuit: &Circuit, time: f64) -> Result<State, Failure> {
+    let mut state = State {
+        time,
+        x: vec![0.0; circuit.size()],
+        mode: circuit.mode_forever(time),
+    };
+    settle_watches(circuit, Start::Zero, &mut state, &fine(circuit))?;
+    Ok(state)
+}
+
+/// A run that begins in a state a whole number of periods before time zero, with what happens at that very instant.
+pub fn begin_at(circuit: &Circuit, mut state: State) -> Result<Begun, Failure> {
+    circuit.earlier(state.time, &mut state.mode);
+    state.time = 0.0;
+    let rested = state.clone();
+    let happened = first_instant(circuit, &mut state, &fine(circuit))?;
+    Ok(Begun {
+        rested,
+        state,
+        happened,
+    })
+}
+
+/// Solves until no watch changes its switch any more.
+fn settle_watches(
+    circuit: &Circuit,
+    from: Start,
+    state: &mut State,
+    tolerances: &Tolerances,
+) -> Result<(), Failure> {
     let mut last = None;
     for _ in 0..MOST_ROUNDS {
-        solve(circuit, from, &mut state, &tolerances)?;
-        last = watches_change(circuit, &mut state);
+        solve(circuit, from, state, tolerances)?;
+        last = watches_change(circuit, state);
         if last.is_none() {
             break;
         }
@@ -59,13 +100,7 @@ pub fn begin(circuit: &Circuit, from: Start) -> Result<Begun, Failure> {
             },
         ));
     }
-    let rested = state.clone();
-    let happened = first_instant(circuit, &mut state, &tolerances)?;
-    Ok(Begun {
-        rested,
-        state,
-        happened,
-    })
+    Ok(())
 }
 
 /// Starts variations where a run begins: at rest the equations themselves tell how the state moves with a parameter, from
@@ -106,7 +141,7 @@ pub fn vary(
     let rested = begun.rested.point();
     match from {
         Start::OperatingPoint => variations.start_at_rest(circuit, rested),
-        Start::Zero => {
+        Start::Zero | Start::SteadyState => {
             let charges = slopes(Circuit::initial_charges).concat();
             variations.start_from_charges(circuit, rested, &charges)
         }
@@ -151,13 +186,21 @@ fn solve(
     match from {
         Start::OperatingPoint => {
             let nodes: Vec<usize> = (0..circuit.node_names.len()).collect();
-            operating_point(circuit, 0.0, &state.mode, &mut state.x, tolerances, &nodes)
+            operating_point(
+                circuit,
+                state.time,
+                &state.mode,
+                &mut state.x,
+                tolerances,
+                &nodes,
+            )
         }
-        Start::Zero => {
+        // A periodic state is looked for from an uncharged one.
+        Start::Zero | Start::SteadyState => {
             let charges = circuit.initial_charges();
             consistent_start(
                 circuit,
-                0.0,
+                state.time,
                 &state.mode,
                 &charges,
                 &mut state.x,
@@ -193,7 +236,7 @@ fn watches_change(circuit: &Circuit, state: &mut State) -> Option<usize> {
     let mut guards = vec![-1.0; circuit.guard_size()];
     circuit.guards(
         Point {
-            time: 0.0,
+            time: state.time,
             x: &state.x,
             mode: &state.mode,
         },
@@ -202,7 +245,7 @@ fn watches_change(circuit: &Circuit, state: &mut State) -> Option<usize> {
     let mut changed = None;
     for (which, guard) in guards.iter().enumerate() {
         let cause = Cause::Guard(which);
-        if *guard >= 0.0 && circuit.transition(cause, 0.0, &mut state.x, &mut state.mode) {
+        if *guard >= 0.0 && circuit.transition(cause, state.time, &mut state.x, &mut state.mode) {
             changed = Some(which);
         }
     }
@@ -211,7 +254,7 @@ fn watches_change(circuit: &Circuit, state: &mut State) -> Option<usize> {
         for entry in &circuit.entries {
             if let (Some(switching), false) = (entry.element.switching(), entry.guards.is_empty()) {
                 let own = &mut state.mode[entry.modes.clone()];
-                let due = switching.next_event(0.0, own);
+                let due = switching.next_event(state.time, own);
                 if due.is_finite() {
                     switching.at_instant(due, own);
                 }

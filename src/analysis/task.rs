@@ -1,6 +1,6 @@
-//! What a netlist asks to be computed: `analysis: {transient: {...}}` or `analysis: operating_point`.
+//! What a netlist asks to be computed: `analysis: {transient: {...}}`, `{steady_state: {...}}` or `operating_point`.
 
-use crate::diag::Diagnostic;
+use crate::diag::Span;
 use crate::netlist::{Data, Fields, Key, Takes, Value};
 use crate::units;
 
@@ -11,6 +11,21 @@ pub enum Analysis {
     OperatingPoint,
     /// Waveforms over time.
     Transient(Transient),
+    /// Waveforms over one period of the periodic state.
+    SteadyState(SteadyState),
+}
+
+/// A periodic steady state's wishes, as parameters [SI].
+#[derive(Clone, Debug)]
+pub struct SteadyState {
+    /// The period, or where an unknown one is looked for.
+    pub period: Value,
+    /// True where the circuit sets its period itself.
+    pub unknown: bool,
+    /// Where the period is written.
+    pub span: Span,
+    /// Error aimed at in every waveform, relative to its largest swing.
+    pub accuracy: Value,
 }
 
 /// A transient's wishes, as parameters [SI].
@@ -22,6 +37,8 @@ pub struct Transient {
     pub accuracy: Value,
     /// Where it begins.
     pub start: Start,
+    /// Where that is written.
+    pub start_span: Span,
     /// Longest step.
     pub longest_step: Option<Value>,
     /// Instant from which waveforms are kept.
@@ -35,10 +52,12 @@ pub enum Start {
     Zero,
     /// At rest, switches as they start.
     OperatingPoint,
+    /// In the periodic state.
+    SteadyState,
 }
 
 /// The analyses by word.
-pub const ANALYSES: &[&str] = &["operating_point", "transient"];
+pub const ANALYSES: &[&str] = &["operating_point", "steady_state", "transient"];
 
 /// The keys of a transient.
 pub const TRANSIENT_KEYS: &[Key] = &[
@@ -51,7 +70,7 @@ pub const TRANSIENT_KEYS: &[Key] = &[
     ),
     Key::default(
         "start",
-        Takes::Word(&["operating_point", "zero"]),
+        Takes::Word(&["operating_point", "steady_state", "zero"]),
         "operating_point",
         "where it begins",
     ),
@@ -61,6 +80,26 @@ pub const TRANSIENT_KEYS: &[Key] = &[
         Takes::Quantity(units::TIME),
         "0 s",
         "instant from which waveforms are kept",
+    ),
+];
+
+/// The keys of a periodic steady state.
+pub const STEADY_STATE_KEYS: &[Key] = &[
+    Key::required(
+        "period",
+        Takes::Quantity(units::TIME),
+        "the period, a multiple of every source's; or `unknown` where the circuit sets its own",
+    ),
+    Key::optional(
+        "near",
+        Takes::Quantity(units::TIME),
+        "where an unknown period is looked for",
+    ),
+    Key::default(
+        "accuracy",
+        Takes::Quantity(units::RATIO),
+        "1e-4",
+        "error aimed at in every waveform, relative to its largest swing",
     ),
 ];
 
@@ -101,18 +140,49 @@ pub fn read(top: &Fields<'_>) -> Option<Analysis> {
         "operating_point" => Some(Analysis::OperatingPoint),
         "transient" => read_transient(&top.inside(&entry, TRANSIENT_KEYS)).map(Analysis::Transient),
         "steady_state" => {
-            top.reader().sink.report(
-                Diagnostic::error("not-yet", "`steady_state` is not solved by this version")
-                    .at(entry.name.span, "not available yet")
-                    .help("run a `transient` until it has settled, and read in a late window"),
-            );
-            None
+            read_steady_state(&top.inside(&entry, STEADY_STATE_KEYS)).map(Analysis::SteadyState)
         }
         _ => {
             top.unknown_word(&entry.name, "analysis", ANALYSES);
             None
         }
     }
+}
+
+fn read_steady_state(fields: &Fields<'_>) -> Option<SteadyState> {
+    let written = fields.node("period").map(|node| &node.data);
+    let unknown = matches!(written, Some(Data::Scalar(text)) if text == "unknown");
+    let period = if unknown {
+        if !fields.has("near") {
+            fields.error(
+                "period",
+                "missing-key",
+                "an unknown period needs `near`: about where it lies",
+                "looked for from where?",
+                Some("near: 1 ms"),
+            );
+        }
+        fields.positive("near")
+    } else {
+        if fields.has("near") {
+            fields.error(
+                "near",
+                "one-of",
+                "`near` goes with an unknown period alone",
+                "the period is given",
+                Some("write `period: unknown`, or leave `near` out"),
+            );
+        }
+        fields.positive("period")
+    };
+    let accuracy = fields.within("accuracy", 1e-10, 0.1);
+    fields.finish();
+    Some(SteadyState {
+        period: period?,
+        unknown,
+        span: fields.span("period"),
+        accuracy: accuracy?,
+    })
 }
 
 fn read_transient(fields: &Fields<'_>) -> Option<Transient> {
@@ -129,11 +199,12 @@ fn read_transient(fields: &Fields<'_>) -> Option<Transient> {
     Some(Transient {
         duration: duration?,
         accuracy: accuracy?,
-        start: if start? == "zero" {
-            Start::Zero
-        } else {
-            Start::OperatingPoint
+        start: match start? {
+            "zero" => Start::Zero,
+            "steady_state" => Start::SteadyState,
+            _ => Start::OperatingPoint,
         },
+        start_span: fields.span("start"),
         longest_step: match longest_step {
             Some(value) => Some(value?),
             None => None,

@@ -184,6 +184,17 @@ impl Circuit {
         mode
     }
 
+    /// The modes at `time` as if the clock had always run.
+    pub fn mode_forever(&self, time: f64) -> Vec<f64> {
+        let mut mode = self.start_mode();
+        for entry in &self.entries {
+            if let Some(switching) = entry.element.switching() {
+                switching.forever(time, &mut mode[entry.modes.clone()]);
+            }
+        }
+        mode
+    }
+
     /// Charges and flux linkages of a zero start, one per row.
     pub fn initial_charges(&self) -> Vec<f64> {
         let mut charges = vec![0.0; self.unknowns.len()];

@@ -65,6 +65,14 @@ impl System for Circuit {
             .fold(f64::INFINITY, f64::min)
     }
 
+    fn earlier(&self, by: f64, mode: &mut [f64]) {
+        for entry in &self.entries {
+            if let Some(switching) = entry.element.switching() {
+                switching.earlier(by, &mut mode[entry.modes.clone()]);
+            }
+        }
+    }
+
     fn guard_size(&self) -> usize {
         self.guard_size
     }

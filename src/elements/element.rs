@@ -119,10 +119,29 @@ pub trait Energy {
     }
 }
 
+/// What the clock does to an element.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum Rhythm {
+    /// Nothing: it follows the circuit alone.
+    None,
+    /// The same again after so many seconds.
+    Every(f64),
+    /// Things at instants of their own, once.
+    Once,
+}
+
 /// Discrete behaviour: modes that change at instants and at zeros of guards. Slices are the element's own.
 pub trait Switching {
     /// The modes at the start (time zero); `x` is not known yet.
     fn start(&self, mode: &mut [f64]);
+    /// What the clock does to it.
+    fn rhythm(&self) -> Rhythm {
+        Rhythm::None
+    }
+    /// Leaves in `mode`, which holds the modes of the start, those of `time` as if the clock had always run.
+    fn forever(&self, _time: f64, _mode: &mut [f64]) {}
+    /// Takes the memory of instants back by `by` seconds, a whole number of periods (forward where it is negative).
+    fn earlier(&self, _by: f64, _mode: &mut [f64]) {}
     /// Puts a switch or contact at rest where a happening leads to; true where it is one.
     fn rest(&self, _after: Happening, _mode: &mut [f64]) -> bool {
         false

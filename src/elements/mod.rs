@@ -29,7 +29,8 @@ pub mod zener;
 
 pub use claims::{Claimed, Claims, Measure, Offer, Wanted};
 pub use element::{
-    Element, Energy, Follower, Happening, Point, Quantity, Switching, Terms, Unknown, Unsound,
+    Element, Energy, Follower, Happening, Point, Quantity, Rhythm, Switching, Terms, Unknown,
+    Unsound,
 };
 pub use kind::{ElementKind, Made, Surroundings, Terminal};
 pub use stamper::Stamper;

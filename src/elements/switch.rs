@@ -5,8 +5,8 @@
 
 use super::claims::Claims;
 use super::element::{
-    Branch, Element, Energy, Follower, Happening, Path, PathKind, Point, Switching, Terms, Unsound,
-    sum,
+    Branch, Element, Energy, Follower, Happening, Path, PathKind, Point, Rhythm, Switching, Terms,
+    Unsound, sum,
 };
 use super::junction::{Breakdown, VOLTS_PER_KELVIN};
 use super::kind::{ElementKind, Made, NODES, Surroundings, pair};
@@ -80,6 +80,8 @@ pub const KIND: ElementKind = ElementKind {
 const STATE: usize = 0;
 const SINCE: usize = 1;
 const LEFT_FROM: usize = 2;
+/// Number of the first period of a square: 0, or minus infinity where it has always run.
+const FIRST: usize = 3;
 
 /// Values of `mode[STATE]`.
 const OPEN: f64 = 0.0;
@@ -264,7 +266,7 @@ impl Element for Switch {
 
     fn claim(&mut self, claims: &mut Claims<'_>) {
         self.branch = Branch::claim(claims, false);
-        claims.modes(3);
+        claims.modes(4);
         claims.guards(usize::from(self.command.watch().is_some()));
     }
 
@@ -343,6 +345,37 @@ impl Switching for Switch {
         mode[STATE] = if self.initially_closed { CLOSED } else { OPEN };
         mode[SINCE] = 0.0;
         mode[LEFT_FROM] = 0.0;
+        mode[FIRST] = 0.0;
+    }
+
+    fn rhythm(&self) -> Rhythm {
+        self.command.rhythm()
+    }
+
+    fn forever(&self, time: f64, mode: &mut [f64]) {
+        let Some((since, closed)) = self.command.last(time) else {
+            return;
+        };
+        mode[FIRST] = f64::NEG_INFINITY;
+        mode[SINCE] = since;
+        let (moving, rest, left) = if closed {
+            (CLOSING, CLOSED, self.open)
+        } else {
+            (OPENING, OPEN, self.closed)
+        };
+        mode[LEFT_FROM] = left;
+        mode[STATE] = if time < since + self.transition {
+            moving
+        } else {
+            rest
+        };
+    }
+
+    fn earlier(&self, by: f64, mode: &mut [f64]) {
+        mode[SINCE] -= by;
+        if self.command.rhythm() == Rhythm::Once && by > 0.0 {
+            self.start(mode);
+        }
     }
 
     fn rest(&self, after: Happening, mode: &mut [f64]) -> bool {
@@ -356,7 +389,7 @@ impl Switching for Switch {
 
     fn next_event(&self, time: f64, mode: &[f64]) -> f64 {
         let arrival = self.arrival(mode);
-        let command = self.command.next(time);
+        let command = self.command.next(time, mode[FIRST]);
         // An arrival that is due is never missed, even where rounding puts it on the instant itself.
         arrival.min(command)
     }
@@ -369,7 +402,7 @@ impl Switching for Switch {
                 OPEN
             };
         }
-        let closed = self.command.at(time)?;
+        let closed = self.command.at(time, mode[FIRST])?;
         self.go(closed, time, mode)
     }
 

@@ -1,6 +1,6 @@
 //! What moves a switch: lists of instants, a square wave, or a watched signal with hysteresis.
 
-use super::element::Unsound;
+use super::element::{Rhythm, Unsound};
 use crate::netlist::{Fields, Key, Takes, Value, Values};
 use crate::signals::{Phrase, read_phrase};
 use crate::units;
@@ -262,8 +262,9 @@ impl Command {
         }
     }
 
-    /// The next instant strictly after `time` at which it commands a change.
-    pub fn next(&self, time: f64) -> f64 {
+    /// The next instant strictly after `time` at which it commands a change; `first` is the number of the first period
+    /// of a square, 0 from the start on.
+    pub fn next(&self, time: f64, first: f64) -> f64 {
         match self {
             Command::Instants { at, .. } => at
                 .iter()
@@ -276,11 +277,11 @@ impl Command {
                 delay,
                 ..
             } => {
-                let period = ((time - delay) * frequency).floor().max(0.0);
+                let period = ((time - delay) * frequency).floor().max(first);
                 // One period either side covers the rounding of the quotient.
                 let near = [period - 1.0, period, period + 1.0, period + 2.0];
                 near.iter()
-                    .filter(|&&k| k >= 0.0)
+                    .filter(|&&k| k >= first)
                     .flat_map(|&k| [delay + k / frequency, delay + (k + duty) / frequency])
                     .filter(|&instant| instant > time)
                     .fold(f64::INFINITY, f64::min)
@@ -289,8 +290,37 @@ impl Command {
         }
     }
 
+    /// What the clock makes of it.
+    pub fn rhythm(&self) -> Rhythm {
+        match self {
+            Command::Instants { .. } => Rhythm::Once,
+            Command::Square { frequency, .. } => Rhythm::Every(1.0 / frequency),
+            Command::Watch(_) | Command::Still => Rhythm::None,
+        }
+    }
+
+    /// The last command of a square at or before `time`, as if it had always run: its instant, and whether it closes.
+    pub fn last(&self, time: f64) -> Option<(f64, bool)> {
+        let Command::Square {
+            frequency,
+            duty,
+            delay,
+            ..
+        } = self
+        else {
+            return None;
+        };
+        let periods = (time - delay) * frequency + 1e-9;
+        let (whole, phase) = (periods.floor(), periods - periods.floor());
+        Some(if phase < *duty {
+            (delay + whole / frequency, true)
+        } else {
+            (delay + (whole + duty) / frequency, false)
+        })
+    }
+
     /// The state commanded at exactly this instant, if any.
-    pub fn at(&self, time: f64) -> Option<bool> {
+    pub fn at(&self, time: f64, first: f64) -> Option<bool> {
         match self {
             Command::Instants { at, .. } => at
                 .iter()
@@ -306,7 +336,7 @@ impl Command {
                 let near = [period - 1.0, period, period + 1.0];
                 let at = |fraction: f64| {
                     near.iter()
-                        .any(|&k| k >= 0.0 && delay + (k + fraction) / frequency == time)
+                        .any(|&k| k >= first && delay + (k + fraction) / frequency == time)
                 };
                 if at(0.0) {
                     Some(true)

@@ -2,6 +2,7 @@
 
 use super::netlist::Netlist;
 use super::outcome::Outcome;
+use crate::analysis::steady;
 use crate::circuit::Circuit;
 use crate::diag::Diagnostic;
 use crate::signals::Trace;
@@ -14,6 +15,9 @@ const PAST_THE_KNEE: f64 = 0.5;
 /// Adds what the outcome gives cause for.
 pub fn add(netlist: &Netlist, outcome: &mut Outcome) {
     let mut cautions = Vec::new();
+    if let Some(found) = &outcome.steady {
+        cautions.extend(steady::cautions(found));
+    }
     unbroken_switches(netlist, outcome, &mut cautions);
     saturated_coils(netlist, outcome, &mut cautions);
     beyond_the_curve(netlist, outcome, &mut cautions);

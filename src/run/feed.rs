@@ -5,7 +5,7 @@ use super::outcome::{Outcome, Work};
 use super::repeated::{Figures, RatingFigure};
 use super::results::{Findings, outcome, rating_result};
 use super::watched::{Signals, stressing};
-use crate::analysis::{Ledger, LedgerKeeper, simulate::Shown};
+use crate::analysis::{Analysis, Found as Periodic, Ledger, LedgerKeeper, simulate::Shown};
 use crate::circuit::Circuit;
 use crate::dae::{Point, Step};
 use crate::limits::{RatingMeter, RatingUse};
@@ -39,6 +39,8 @@ pub struct Feed {
     keeper: Option<LedgerKeeper>,
     last: Last,
     log: EventLog,
+    /// The periodic state that the run begins in.
+    steady: Option<Periodic>,
 }
 
 /// A rating of an element at work.
@@ -122,6 +124,7 @@ impl Feed {
             keeper: None,
             last: Last::default(),
             log: EventLog::default(),
+            steady: None,
         }
     }
 
@@ -136,6 +139,8 @@ impl Feed {
                 self.last.keep(at);
                 self.log = log.clone();
             }
+            Shown::Settling => {}
+            Shown::Settled(found) => self.steady = Some(found.clone()),
             Shown::Step(step) => self.step(circuit, step, log),
             Shown::Event {
                 after, happened, ..
@@ -197,6 +202,11 @@ impl Feed {
         let circuit = &netlist.circuit;
         let ledger = self.close(circuit);
         let ratings = self.ratings.iter();
+        // A period that was unknown is the duration.
+        let duration = match (&netlist.analysis, &self.steady) {
+            (Analysis::SteadyState(_), Some(steady)) => steady.period,
+            _ => duration,
+        };
         let findings = Findings {
             duration,
             reached: self.last.time,
@@ -208,8 +218,13 @@ impl Feed {
             ledger,
             traces: self.recorder.map_or(Vec::new(), Recorder::into_traces),
             events: self.log,
+            steady: self.steady,
         };
-        outcome(netlist, "transient", findings)
+        let analysis = match netlist.analysis {
+            Analysis::SteadyState(_) => "steady_state",
+            Analysis::Transient(_) | Analysis::OperatingPoint => "transient",
+        };
+        outcome(netlist, analysis, findings)
     }
 
     /// The figures alone at the end of the run.

@@ -24,7 +24,7 @@ pub use repeated::{Figures, RatingFigure, again, pilot};
 pub use sensitivity::{Sensitivity, parameter};
 
 use crate::analysis::simulate::Shown;
-use crate::analysis::{Analysis, Failure, Settings, Simulation, Transient, Wish};
+use crate::analysis::{Analysis, Failure, Settings, Simulation, Start, Warm, Wish, period};
 use crate::circuit::{Circuit, Tap};
 use crate::dae::{Ending, Method};
 use crate::elements::Unknown;
@@ -80,9 +80,9 @@ pub fn perform(
     request: &Request,
     watch: &mut Watch<'_>,
 ) -> Result<Outcome, Failure> {
-    match &netlist.analysis {
-        Analysis::OperatingPoint => at_rest(netlist, request),
-        Analysis::Transient(transient) => over_time(netlist, transient, request, watch),
+    match settings(netlist)? {
+        None => at_rest(netlist, request),
+        Some(settings) => over_time(netlist, settings, request, watch),
     }
 }
 
@@ -94,30 +94,59 @@ pub fn method() -> &'static Method {
         .expect("the list of methods is not empty")
 }
 
-fn settings(circuit: &Circuit, transient: &Transient) -> Settings {
+/// The numbers of a run over time; None for a state at rest.
+fn settings(netlist: &Netlist) -> Result<Option<Settings>, Failure> {
+    let circuit = &netlist.circuit;
     let values = circuit.values();
-    Settings {
-        duration: values[transient.duration],
-        accuracy: values[transient.accuracy],
-        start: transient.start,
-        longest_step: transient
-            .longest_step
-            .map_or(f64::INFINITY, |value| values[value]),
+    Ok(match &netlist.analysis {
+        Analysis::OperatingPoint => None,
+        Analysis::Transient(transient) => Some(Settings {
+            duration: values[transient.duration],
+            accuracy: values[transient.accuracy],
+            start: transient.start,
+            longest_step: transient
+                .longest_step
+                .map_or(f64::INFINITY, |value| values[value]),
+            period: if transient.start == Start::SteadyState {
+                let common = period::common_period(circuit, transient.start_span);
+                Some((
+                    common.map_err(|why| Failure::Refused(Box::new(why)))?,
+                    false,
+                ))
+            } else {
+                None
+            },
+        }),
+        Analysis::SteadyState(task) => Some(Settings {
+            duration: values[task.period],
+            accuracy: values[task.accuracy],
+            start: Start::SteadyState,
+            longest_step: f64::INFINITY,
+            period: Some((values[task.period], task.unknown)),
+        }),
+    })
+}
+
+/// Instant [s] from which waveforms are kept.
+fn record_from(netlist: &Netlist) -> f64 {
+    match &netlist.analysis {
+        Analysis::Transient(transient) => netlist.circuit.values()[transient.record_from],
+        Analysis::OperatingPoint | Analysis::SteadyState(_) => 0.0,
     }
 }
 
 fn over_time(
     netlist: &Netlist,
-    transient: &Transient,
+    settings: Settings,
     request: &Request,
     watch: &mut Watch<'_>,
 ) -> Result<Outcome, Failure> {
-    let circuit = &netlist.circuit;
-    let settings = settings(circuit, transient);
+    let warm = Warm::default();
     let simulation = Simulation {
-        circuit,
+        circuit: &netlist.circuit,
         settings,
         method: method(),
+        warm: Some(&warm),
     };
     let duration = settings.duration;
     let (scales, found) = simulation.pilot_watched(wishes(netlist), &mut |time| {
@@ -127,7 +156,7 @@ fn over_time(
         return Err(Failure::Interrupted);
     }
     let keeps = Keeps {
-        waveforms: Some((circuit.values()[transient.record_from], duration)),
+        waveforms: Some((record_from(netlist), duration)),
         accounts: None,
         pieces: if request.sensitivity.is_empty() {
             1

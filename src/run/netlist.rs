@@ -1,7 +1,7 @@
 //! Reads a whole netlist: circuit, analysis, readings, limits and the wishes for sizing, all errors in one go.
 
 use super::obvious;
-use crate::analysis::{Analysis, Start, task};
+use crate::analysis::{Analysis, Start, period, task};
 use crate::circuit::checks::without_rest;
 use crate::circuit::{Built, Circuit, Demand, TOP_KEYS, build};
 use crate::diag::{Diagnostic, Sink, Sources};
@@ -250,6 +250,9 @@ fn read_top(document: &Document, demand: Demand, sink: &Sink) -> Option<Parts> {
             .into_iter()
             .for_each(|diagnostic| sink.report(diagnostic));
     }
+    if demand == Demand::Solvable {
+        check_period(&circuit, &analysis, sink);
+    }
     let defaults = reader.defaults.borrow().clone();
     Some(Parts {
         title: title.unwrap_or_default(),
@@ -263,9 +266,25 @@ fn read_top(document: &Document, demand: Demand, sink: &Sink) -> Option<Parts> {
     })
 }
 
+/// A periodic state needs a period that goes with all that the clock does.
+fn check_period(circuit: &Circuit, analysis: &Analysis, sink: &Sink) {
+    let fault = match analysis {
+        Analysis::SteadyState(task) => period::repeats(circuit).err().or_else(|| {
+            let fit = period::fits(circuit, circuit.values()[task.period], task.unknown);
+            fit.err().map(|why| why.at(task.span, "this period"))
+        }),
+        Analysis::Transient(transient) if transient.start == Start::SteadyState => {
+            period::common_period(circuit, transient.start_span).err()
+        }
+        Analysis::Transient(_) | Analysis::OperatingPoint => None,
+    };
+    fault.into_iter().for_each(|why| sink.report(why));
+}
+
 fn begins_at_rest(analysis: &Analysis) -> bool {
     match analysis {
         Analysis::OperatingPoint => true,
+        Analysis::SteadyState(_) => false,
         Analysis::Transient(transient) => transient.start == Start::OperatingPoint,
     }
 }

@@ -1,7 +1,7 @@
 //! What a run came to.
 
 use super::{CoilReport, Sensitivity};
-use crate::analysis::{Account, Ledger};
+use crate::analysis::{Account, Found, Ledger};
 use crate::dae::{Ending, Statistics};
 use crate::diag::Diagnostic;
 use crate::limits::{RatingUse, Verdict};
@@ -79,7 +79,7 @@ impl RatingResult {
 pub struct Outcome {
     /// The netlist's title.
     pub title: String,
-    /// `transient` or `operating_point`.
+    /// `transient`, `steady_state` or `operating_point`.
     pub analysis: &'static str,
     /// Simulated time asked for [s].
     pub duration: f64,
@@ -109,6 +109,8 @@ pub struct Outcome {
     pub traces: Vec<Trace>,
     /// What happened when.
     pub events: EventLog,
+    /// The periodic state that it begins in, where it begins in one.
+    pub steady: Option<Found>,
 }
 
 impl Outcome {

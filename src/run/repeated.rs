@@ -3,7 +3,7 @@
 
 use super::feed::{Feed, Keeps};
 use super::{Netlist, Work, method, settings, wishes};
-use crate::analysis::{Account, Analysis, Failure, Simulation};
+use crate::analysis::{Account, Failure, Simulation};
 use crate::dae::Ending;
 use crate::limits::RatingUse;
 use crate::readings;
@@ -39,7 +39,7 @@ pub struct RatingFigure {
 /// # Errors
 /// A pilot run that could not be completed.
 pub fn pilot(netlist: &Netlist) -> Result<Vec<f64>, Failure> {
-    match simulation(netlist) {
+    match simulation(netlist)? {
         Some(simulation) => simulation.pilot(wishes(netlist)),
         None => Ok(Vec::new()),
     }
@@ -59,7 +59,7 @@ pub fn again(
     accounts: &[usize],
     watch: &mut dyn FnMut(f64) -> ControlFlow<()>,
 ) -> Result<Figures, Failure> {
-    let simulation = simulation(netlist).expect("only a transient is run again and again");
+    let simulation = simulation(netlist)?.expect("only a run over time is repeated");
     figures(netlist, &simulation, scales, accounts, watch)
 }
 
@@ -86,13 +86,12 @@ pub(super) fn figures(
     Ok(feed.figures(&netlist.circuit, Work { counted, ending }))
 }
 
-fn simulation(netlist: &Netlist) -> Option<Simulation<'_>> {
-    match &netlist.analysis {
-        Analysis::OperatingPoint => None,
-        Analysis::Transient(transient) => Some(Simulation {
-            circuit: &netlist.circuit,
-            settings: settings(&netlist.circuit, transient),
-            method: method(),
-        }),
-    }
+fn simulation(netlist: &Netlist) -> Result<Option<Simulation<'_>>, Failure> {
+    let simulation = |settings| Simulation {
+        circuit: &netlist.circuit,
+        settings,
+        method: method(),
+        warm: None,
+    };
+    Ok(settings(netlist)?.map(simulation))
 }

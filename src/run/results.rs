@@ -5,7 +5,7 @@ use super::coils::coil_reports;
 use super::feed::Metered;
 use super::netlist::Netlist;
 use super::outcome::{LimitResult, Outcome, RatingResult, ReadingResult, Work};
-use crate::analysis::{Account, Ledger};
+use crate::analysis::{Account, Found as Periodic, Ledger};
 use crate::circuit::{Circuit, Tap};
 use crate::dae::Point;
 use crate::limits::{On, Sense};
@@ -31,6 +31,8 @@ pub struct Findings {
     pub traces: Vec<Trace>,
     /// What happened when.
     pub events: EventLog,
+    /// The periodic state that it begins in.
+    pub steady: Option<Periodic>,
 }
 
 /// The outcome of a run by some analysis.
@@ -56,6 +58,7 @@ pub fn outcome(netlist: &Netlist, analysis: &'static str, findings: Findings) ->
         sensitivities: Vec::new(),
         traces: findings.traces,
         events: findings.events,
+        steady: findings.steady,
     };
     cautions::add(netlist, &mut outcome);
     outcome

@@ -9,7 +9,7 @@
 //! derivative, and that is said.
 
 use super::feed::{Feed, Keeps};
-use super::{Netlist, Work, read_document, settings};
+use super::{Netlist, Work, read_document};
 use crate::analysis::{Analysis, Failure, simulate::Shown};
 use crate::circuit::Circuit;
 use crate::dae::variations::{HeldStep, MovedStep};
@@ -144,7 +144,7 @@ impl Neighbours {
             .netlists
             .each_ref()
             .map(|netlist| match &netlist.analysis {
-                Analysis::Transient(transient) => settings(&netlist.circuit, transient).duration,
+                Analysis::Transient(transient) => netlist.circuit.values()[transient.duration],
                 _ => 0.0,
             });
         (more - less) / (2.0 * self.step)
@@ -220,6 +220,7 @@ impl<'a> Watcher<'a> {
     /// Takes what is shown of the run itself.
     pub fn take(&mut self, shown: &Shown<'_>, log: &EventLog) {
         match shown {
+            Shown::Settling | Shown::Settled(_) => {}
             Shown::Start(at) => self.start(*at, log),
             Shown::Step(step) => self.take_step(step),
             Shown::Event {

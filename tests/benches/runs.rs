@@ -50,11 +50,13 @@ fn simulate(netlist: &Netlist, accuracy: f64) -> u64 {
         accuracy,
         start: transient.start,
         longest_step: f64::INFINITY,
+        period: None,
     };
     let simulation = Simulation {
         circuit: &netlist.circuit,
         settings,
         method: method(),
+        warm: None,
     };
     let wishes = netlist
         .readings

@@ -27,6 +27,7 @@ mod saturating_cores;
 mod sensitivities;
 mod shipped_netlists;
 mod sizing;
+mod steady_state;
 mod structure;
 mod table;
 mod wire;

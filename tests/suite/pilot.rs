@@ -29,8 +29,10 @@ fn scales_are_within_a_sixth_of_those_that_a_fine_run_shows() {
                 accuracy: 1e-4,
                 start: transient.start,
                 longest_step: f64::INFINITY,
+                period: None,
             },
             method: method(),
+            warm: None,
         };
         let found = simulation.pilot(wishes(&netlist)).unwrap();
         let mut swings = Swings::new(circuit.unknowns.len(), wishes(&netlist));

@@ -246,7 +246,8 @@ fn of_every_shipped_netlist_are_those_of_differences() {
     for path in netlists_in("netlists") {
         let name = path.file_stem().and_then(|name| name.to_str());
         let text = std::fs::read_to_string(&path).expect("a netlist is text");
-        if !text.contains("transient:") {
+        // How a periodic state moves with a parameter is not computed: asked for, it is refused.
+        if !text.contains("transient:") || text.contains("start: steady_state") {
             continue;
         }
         assert!(

@@ -27,10 +27,10 @@ impl Directions {
         let n = pattern.size;
         let column = |unknown: usize| pattern.starts[unknown]..pattern.starts[unknown + 1];
         let mut weights = vec![0.0_f64; n];
-        for unknown in 0..n {
+        for (unknown, scale) in scales.iter().enumerate() {
             for slot in column(unknown) {
                 let weight = &mut weights[pattern.rows[slot]];
-                *weight = weight.max((slopes[slot] * scales[unknown]).abs());
+                *weight = weight.max((slopes[slot] * scale).abs());
             }
         }
         for weight in &mut weights {
@@ -86,7 +86,8 @@ impl Directions {
     }
 }
 
-/// Columns that are independent of those taken before, the one that sticks out most first (modified Gram-Schmidt).
+/// Columns that are independent of those taken before, the longest first (modified Gram-Schmidt): where two unknowns
+/// move the same charges, the one that swings more stands for them.
 fn independent(charged: &[usize], weights: &[f64], row: &dyn Fn(usize) -> Vec<f64>) -> Vec<usize> {
     let weighed = |unknown: usize| -> DVector<f64> {
         let column = row(unknown);
@@ -102,14 +103,12 @@ fn independent(charged: &[usize], weights: &[f64], row: &dyn Fn(usize) -> Vec<f6
         .collect();
     let mut taken = Vec::new();
     loop {
-        let out = |(_, whole, column): &(usize, f64, DVector<f64>)| column.norm() / whole;
-        let Some(next) = (0..left.len()).max_by(|&a, &b| out(&left[a]).total_cmp(&out(&left[b])))
-        else {
+        left.retain(|(_, whole, column)| column.norm() > NOTHING * whole);
+        let longest =
+            (0..left.len()).max_by(|&a, &b| left[a].2.norm().total_cmp(&left[b].2.norm()));
+        let Some(next) = longest else {
             return taken;
         };
-        if out(&left[next]) < NOTHING {
-            return taken;
-        }
         let (unknown, _, column) = left.swap_remove(next);
         taken.push(unknown);
         let unit = column.normalize();

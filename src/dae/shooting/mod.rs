@@ -8,6 +8,7 @@
 //! memory). Modes carry themselves from period to period; [`System::earlier`] takes their memory of instants back.
 
 mod directions;
+mod period;
 
 use super::march::{Ending, March, Observer, Span, State};
 use super::methods::Method;
@@ -19,8 +20,9 @@ use super::tolerances::Tolerances;
 use super::trouble::{MarchError, Trouble};
 use super::variations::{Variations, charge_slope};
 use directions::Directions;
-use nalgebra::{DMatrix, DVector};
+use nalgebra::DMatrix;
 use num_complex::Complex64;
+use period::{Period, SMALL, multipliers, newton_inverse};
 
 /// Periods marched between attempts of Newton's iteration that did not contract.
 const PATIENCE: usize = 5;
@@ -28,8 +30,8 @@ const PATIENCE: usize = 5;
 const WORSE: f64 = 2.0;
 /// and is halved down to this share at least.
 const SMALLEST_SHARE: f64 = 0.05;
-/// A Newton step this small, in scales, converges quadratically.
-const SMALL: f64 = 0.03;
+/// After a Newton step larger than this, in scales, a period passes by itself: what rings finds its place.
+const LARGE: f64 = 0.5;
 /// Most by which an unknown period changes in one step.
 const STRETCH: f64 = 0.2;
 /// Most directions that are carried along; beyond that whole periods are cheaper.
@@ -76,10 +78,29 @@ pub struct Orbit {
     pub periods: usize,
     /// Periods marched with variations.
     pub varied: usize,
-    /// Unknowns whose errors pile up from period to period, and by how many times.
-    pub piling: Vec<(usize, f64)>,
+    /// Unknowns that can vary, and (1 - M)^-1 between them in their own units, a row for each: how an error that every
+    /// period repeats piles up.
+    pub response: (Vec<usize>, Vec<f64>),
     /// Work of the marches, and of the variations alone.
     pub counted: [Statistics; 2],
+}
+
+impl Orbit {
+    /// How many times an error of each unknown that every period repeats piles up, the largest of all unknowns in their
+    /// scales.
+    pub fn piling(&self, scales: &[f64]) -> Vec<(usize, f64)> {
+        let (unknowns, response) = &self.response;
+        let count = unknowns.len();
+        let times = |column: usize| {
+            (0..count)
+                .map(|row| {
+                    let slope = response[row * count + column].abs();
+                    slope * scales[unknowns[column]] / scales[unknowns[row]]
+                })
+                .fold(0.0, f64::max)
+        };
+        (0..count).map(|k| (unknowns[k], times(k))).collect()
+    }
 }
 
 /// Finds the periodic state near `state`, which is moved to the start of a period there.
@@ -117,29 +138,6 @@ struct Shot<'a, 'o, S: ?Sized> {
     observer: &'a mut Observer<'o>,
 }
 
-/// A period with variations, and the Newton step that follows from it.
-struct Period {
-    directions: Directions,
-    /// Where it ended, turned back by the period.
-    state: State,
-    /// Its length [s].
-    length: f64,
-    /// Charges at its end.
-    charges: Vec<f64>,
-    /// Change of the coordinates over it.
-    residual: DVector<f64>,
-    /// Newton step of the coordinates and of the period [s].
-    step: DVector<f64>,
-    stretch: f64,
-}
-
-impl Period {
-    /// Size of the Newton step, in scales and periods.
-    fn size(&self) -> f64 {
-        self.step.amax().max(self.stretch.abs() / self.length)
-    }
-}
-
 impl<S: System + ?Sized> Shot<'_, '_, S> {
     fn whole(&mut self) -> Result<(), MarchError> {
         for _ in 0..self.cycle.plain {
@@ -153,7 +151,7 @@ impl<S: System + ?Sized> Shot<'_, '_, S> {
                 return Ok(());
             }
             let worse = held.as_ref().filter(|held| {
-                let (now, before) = (period.residual.amax(), held.residual.amax());
+                let (now, before) = (period.change(&held.traces), held.change(&held.traces));
                 before > self.cycle.enough && (now > WORSE * before || !now.is_finite())
             });
             if let Some(before) = worse {
@@ -176,6 +174,9 @@ impl<S: System + ?Sized> Shot<'_, '_, S> {
             if size <= self.cycle.enough || quick {
                 (self.orbit.converged, self.orbit.settled) = (true, true);
                 return Ok(());
+            }
+            if size > LARGE {
+                self.plain()?;
             }
             (held, share) = (Some(period), 1.0);
         }
@@ -272,6 +273,7 @@ impl<S: System + ?Sized> Shot<'_, '_, S> {
         variations
             .start_from_charges(self.system, self.march.state.point(), &directions.charges)
             .map_err(|error| singular(error, time))?;
+        let begun = self.march.state.x.clone();
         let start = self.over(Some(&mut variations))?;
         self.orbit.varied += 1;
         self.system
@@ -300,17 +302,24 @@ impl<S: System + ?Sized> Shot<'_, '_, S> {
         };
         self.orbit.counted[1].add(&variations.counted);
         self.turn_back(start);
-        self.orbit.residual = residual.amax();
+        let drift: Vec<f64> = directions
+            .unknowns
+            .iter()
+            .map(|&k| (self.march.state.x[k] - begun[k]) / self.cycle.scales[k])
+            .collect();
+        self.orbit.residual = drift.iter().fold(0.0, |most, drift| most.max(drift.abs()));
         self.orbit.multipliers = multipliers(&monodromy, self.cycle.free);
         let Some(inverse) = newton_inverse(&monodromy, motion.as_ref()) else {
             return Ok(None);
         };
-        self.orbit.piling = directions
-            .unknowns
-            .iter()
-            .enumerate()
-            .map(|(k, &unknown)| (unknown, inverse.view((0, k), (count, 1)).amax()))
-            .collect();
+        let scale = |k: usize| self.cycle.scales[directions.unknowns[k]];
+        self.orbit.response = (
+            directions.unknowns.clone(),
+            (0..count * count)
+                .map(|k| (k / count, k % count))
+                .map(|(row, column)| inverse[(row, column)] * scale(row) / scale(column))
+                .collect(),
+        );
         let solved = inverse.columns(0, count) * &residual;
         let stretch = if self.cycle.free {
             (solved[count] * self.orbit.period)
@@ -326,6 +335,10 @@ impl<S: System + ?Sized> Shot<'_, '_, S> {
             residual,
             step: solved.rows(0, count).into_owned(),
             stretch,
+            drift,
+            traces: (0..count)
+                .map(|k| (monodromy[(k, k)].abs(), monodromy.column(k).amax()))
+                .collect(),
         }))
     }
 
@@ -333,7 +346,7 @@ impl<S: System + ?Sized> Shot<'_, '_, S> {
     /// such charges.
     fn place(&mut self, period: &Period, share: f64) -> bool {
         let mut charges = period.charges.clone();
-        let moved = (&period.step - &period.residual) * share;
+        let moved = period.moved(share);
         period.directions.add(moved.as_slice(), &mut charges);
         let mut state = period.state.clone();
         let found = consistent_start(
@@ -353,45 +366,4 @@ impl<S: System + ?Sized> Shot<'_, '_, S> {
         };
         sound
     }
-}
-
-/// Inverse of 1 - M, with `motion` (dz per period) bordered by the phase: the last unknown is dT/T.
-fn newton_inverse(monodromy: &DMatrix<f64>, motion: Option<&DVector<f64>>) -> Option<DMatrix<f64>> {
-    let count = monodromy.nrows();
-    let size = count + usize::from(motion.is_some());
-    let mut matrix = DMatrix::identity(size, size);
-    for row in 0..count {
-        for column in 0..count {
-            matrix[(row, column)] -= monodromy[(row, column)];
-        }
-        if let Some(motion) = motion {
-            matrix[(row, count)] = -motion[row];
-            matrix[(count, row)] = motion[row];
-        }
-    }
-    if motion.is_some() {
-        matrix[(count, count)] = 0.0;
-    }
-    matrix
-        .try_inverse()
-        .filter(|inverse| inverse.iter().all(|value| value.is_finite()))
-}
-
-/// Eigenvalues, largest first; for a free period the one nearest to 1 belongs to a shift in time and is left out.
-fn multipliers(monodromy: &DMatrix<f64>, free: bool) -> Vec<Complex64> {
-    if monodromy.is_empty() || monodromy.iter().any(|value| !value.is_finite()) {
-        return Vec::new();
-    }
-    let mut values: Vec<Complex64> = monodromy
-        .complex_eigenvalues()
-        .iter()
-        .map(|value| Complex64::new(value.re, value.im))
-        .collect();
-    if free {
-        let distance = |value: &Complex64| (value - 1.0).norm();
-        values.sort_by(|a, b| distance(a).total_cmp(&distance(b)));
-        values.remove(0);
-    }
-    values.sort_by(|a, b| b.norm().total_cmp(&a.norm()));
-    values
 }

@@ -13,6 +13,7 @@
 mod events;
 mod explicit;
 mod linear;
+mod shadows;
 mod shifted;
 mod stages;
 

@@ -1,7 +1,7 @@
 //! A constant: one segment without end.
 
 use super::Waveform;
-use crate::elements::element::Unsound;
+use crate::elements::element::{Rhythm, Unsound};
 use crate::netlist::{Value, Values};
 
 /// A constant value.
@@ -25,6 +25,10 @@ impl Waveform for Constant {
 
     fn value(&self, _time: f64, _segment: f64) -> f64 {
         self.value
+    }
+
+    fn rhythm(&self) -> Rhythm {
+        Rhythm::None
     }
 
     fn end(&self, _segment: f64) -> f64 {

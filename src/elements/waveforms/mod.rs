@@ -10,7 +10,7 @@ mod square;
 mod steps;
 
 use super::claims::Claims;
-use super::element::{Happening, Point, Switching, Unsound};
+use super::element::{Happening, Point, Rhythm, Switching, Unsound};
 use crate::netlist::{Fields, Key, Values};
 use crate::units::Kind;
 
@@ -39,6 +39,17 @@ pub trait Waveform: Send + Sync {
     fn value(&self, time: f64, segment: f64) -> f64;
     /// Instant at which a segment ends; infinity for the last.
     fn end(&self, segment: f64) -> f64;
+    /// What the clock makes of it.
+    fn rhythm(&self) -> Rhythm;
+    /// The segment at `time` as if the clock had always run, or shortly before it; segments below 0 lie before the
+    /// first.
+    fn forever(&self, _time: f64) -> f64 {
+        0.0
+    }
+    /// The segment that `segment` was `by` seconds before, a whole number of periods.
+    fn earlier(&self, segment: f64, _by: f64) -> f64 {
+        segment
+    }
 }
 
 /// The waveform of one source, with its clock.
@@ -127,6 +138,23 @@ impl Switching for Wave {
     fn start(&self, mode: &mut [f64]) {
         mode[0] = 0.0;
         self.pass(0.0, mode);
+    }
+
+    fn rhythm(&self) -> Rhythm {
+        self.waveform.rhythm()
+    }
+
+    fn forever(&self, time: f64, mode: &mut [f64]) {
+        mode[0] = self.waveform.forever(time);
+        self.pass(time, mode);
+    }
+
+    fn earlier(&self, by: f64, mode: &mut [f64]) {
+        match self.waveform.rhythm() {
+            // What happens once, happens in time from 0 on.
+            Rhythm::Once if by > 0.0 => mode[0] = 0.0,
+            _ => mode[0] = self.waveform.earlier(mode[0], by),
+        }
     }
 
     fn next_event(&self, _time: f64, mode: &[f64]) -> f64 {

@@ -1,7 +1,7 @@
 //! Points: `points: [[t, v], ...]`, straight between; the end values hold outside.
 
 use super::{Waveform, WaveformKind};
-use crate::elements::element::Unsound;
+use crate::elements::element::{Rhythm, Unsound};
 use crate::netlist::{Fields, Key, Takes, Value, Values};
 use crate::units::{self, Kind};
 
@@ -65,6 +65,10 @@ impl Waveform for Points {
             (None, Some(b)) => b.1,
             (None, None) => self.at.last().map_or(0.0, |last| last.1),
         }
+    }
+
+    fn rhythm(&self) -> Rhythm {
+        Rhythm::Once
     }
 
     fn end(&self, segment: f64) -> f64 {

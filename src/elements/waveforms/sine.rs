@@ -1,7 +1,7 @@
 //! Sine: offset + amplitude sin(2 pi f (t - delay) + phase); before `delay` it rests at its starting value.
 
 use super::{Waveform, WaveformKind};
-use crate::elements::element::Unsound;
+use crate::elements::element::{Rhythm, Unsound};
 use crate::netlist::{Fields, Key, Takes, Value, Values};
 use crate::units::{self, Kind};
 use std::f64::consts::{SQRT_2, TAU};
@@ -114,6 +114,14 @@ impl Waveform for Sine {
             time - self.delay
         };
         self.offset + self.amplitude * (TAU * self.frequency * running + self.phase).sin()
+    }
+
+    fn rhythm(&self) -> Rhythm {
+        Rhythm::Every(1.0 / self.frequency)
+    }
+
+    fn forever(&self, _time: f64) -> f64 {
+        1.0
     }
 
     fn end(&self, segment: f64) -> f64 {

@@ -2,7 +2,7 @@
 //! each edge straight over `edge`.
 
 use super::{Waveform, WaveformKind};
-use crate::elements::element::Unsound;
+use crate::elements::element::{Rhythm, Unsound};
 use crate::netlist::{Fields, Key, Takes, Value, Values};
 use crate::units::{self, Kind};
 
@@ -124,7 +124,10 @@ impl Waveform for Square {
         if segment == 0.0 {
             return self.low;
         }
-        let (period, phase) = (((segment - 1.0) / 4.0).floor(), (segment - 1.0) % 4.0);
+        let (period, phase) = (
+            ((segment - 1.0) / 4.0).floor(),
+            (segment - 1.0).rem_euclid(4.0),
+        );
         let swing = self.high - self.low;
         match phase as u8 {
             0 => self.low + swing * (time - self.start(period, 0.0)) / self.edge,
@@ -134,11 +137,32 @@ impl Waveform for Square {
         }
     }
 
+    fn rhythm(&self) -> Rhythm {
+        Rhythm::Every(1.0 / self.frequency)
+    }
+
+    fn forever(&self, time: f64) -> f64 {
+        // An edge that rounding puts a little later has passed.
+        let near = time + 1e-9 / self.frequency;
+        let mut segment = 4.0 * ((near - self.delay) * self.frequency).floor() + 1.0;
+        while self.end(segment) <= near {
+            segment += 1.0;
+        }
+        segment
+    }
+
+    fn earlier(&self, segment: f64, by: f64) -> f64 {
+        segment - 4.0 * (by * self.frequency).round()
+    }
+
     fn end(&self, segment: f64) -> f64 {
         if segment == 0.0 {
             return self.delay;
         }
-        let (period, phase) = (((segment - 1.0) / 4.0).floor(), (segment - 1.0) % 4.0);
+        let (period, phase) = (
+            ((segment - 1.0) / 4.0).floor(),
+            (segment - 1.0).rem_euclid(4.0),
+        );
         match phase as u8 {
             0 => self.start(period, 0.0) + self.edge,
             1 => self.start(period, 1.0),

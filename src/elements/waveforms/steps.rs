@@ -1,7 +1,7 @@
 //! Steps: `at: [[t, v], ...]`, each reached by a straight edge that starts at its instant and lasts `edge`.
 
 use super::{Waveform, WaveformKind};
-use crate::elements::element::Unsound;
+use crate::elements::element::{Rhythm, Unsound};
 use crate::netlist::{Fields, Key, Takes, Value, Values};
 use crate::units::{self, Kind};
 
@@ -83,6 +83,10 @@ impl Waveform for Steps {
             }
             _ => now.1,
         }
+    }
+
+    fn rhythm(&self) -> Rhythm {
+        Rhythm::Once
     }
 
     fn end(&self, segment: f64) -> f64 {

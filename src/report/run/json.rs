@@ -24,10 +24,29 @@ pub fn run(outcome: &Outcome) -> Value {
         .value("ratings", ratings(outcome))
         .value("ledger", ledger(outcome))
         .value("coils", coils(&outcome.coils))
-        .value("steady_state", Value::Null)
+        .value("steady_state", steady_state(outcome))
         .value("cautions", cautions(&outcome.cautions))
         .value("defaults", defaults(outcome))
         .value("sensitivities", sensitivities(outcome))
+        .into()
+}
+
+/// The periodic state; null where the run does not begin in one.
+fn steady_state(outcome: &Outcome) -> Value {
+    let Some(found) = &outcome.steady else {
+        return Value::Null;
+    };
+    let work = found.counted.factorizations + found.counted.solves;
+    Object::new()
+        .number("period", found.period)
+        .number("residual", found.residual)
+        .optional("multiplier", found.multiplier)
+        .value("periods", found.periods)
+        .value("work", work)
+        .value(
+            "work_of_variations",
+            found.varied.factorizations + found.varied.solves,
+        )
         .into()
 }
 

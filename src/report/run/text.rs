@@ -1,5 +1,6 @@
 //! A run on the terminal: the answer first, then tables; digits no finer than they are worth.
 
+use crate::analysis::Found;
 use crate::report::engineering::{duration, engineering, engineering_or_dash, margin, percent};
 use crate::report::tables::{Align, Cell, Screen, Table, Tone};
 use crate::run::{CoilReport, LimitResult, Outcome};
@@ -20,6 +21,9 @@ pub fn run(outcome: &Outcome, screen: Screen) -> String {
         );
     }
     let _ = writeln!(text, "{}", answer(outcome));
+    if let Some(found) = &outcome.steady {
+        let _ = writeln!(text, "{}", periodic(found));
+    }
     section(&mut text, "Limits", &limits(outcome), screen);
     section(&mut text, "Readings", &readings(outcome), screen);
     section(&mut text, "Sensitivities", &sensitivities(outcome), screen);
@@ -35,6 +39,18 @@ pub fn run(outcome: &Outcome, screen: Screen) -> String {
     section(&mut text, "Coils", &coils(&outcome.coils), screen);
     let _ = writeln!(text, "\n{CAUTION}");
     text
+}
+
+/// The periodic state in a line.
+fn periodic(found: &Found) -> String {
+    let period = duration(found.period);
+    let slowest = found.multiplier.map_or(String::new(), |multiplier| {
+        format!("; a deviation is multiplied by {multiplier:.4} per period")
+    });
+    format!(
+        "Periodic state of {period}, found after {} periods{slowest}.",
+        found.periods
+    )
 }
 
 /// The caution under every result.

@@ -105,11 +105,13 @@ pub fn run(name: &str, input: &Input) -> Run {
         accuracy: 1e-4,
         start: transient.start,
         longest_step: f64::INFINITY,
+        period: None,
     };
     let simulation = Simulation {
         circuit,
         settings,
         method: method(),
+        warm: None,
     };
     let (size, slots) = (circuit.size(), circuit.pattern().len());
     let scales = simulation

@@ -31,10 +31,7 @@ impl Failure {
         let (whose, span) = blame(circuit, error.unknown, error.cause, "for");
         Failure::Stopped {
             headline: format!("no starting state was found{whose}: {}", error.cause),
-            help: remedy(
-                error.cause,
-                "try `start: zero` in the transient, or look at the element named",
-            ),
+            help: remedy(error.cause, &without_start(circuit, error.unknown)),
             span,
             time: 0.0,
         }
@@ -51,6 +48,19 @@ impl Failure {
             time: error.time,
         }
     }
+}
+
+/// What to look at where no start was found: the elements that meet at the node, or the one whose unknown it is.
+fn without_start(circuit: &Circuit, unknown: Option<usize>) -> String {
+    let meeting = unknown.map_or(Vec::new(), |unknown| circuit.meeting_at(unknown));
+    if meeting.is_empty() {
+        return "try `start: zero` in the transient, or look at the element named".into();
+    }
+    format!(
+        "at this node meet {}: a current may have no way (a diode that blocks it), or gains may contradict each other; \
+         a large resistor beside what blocks, or `start: zero` in the transient, may help",
+        meeting.join(", ")
+    )
 }
 
 /// What is to blame, in words behind a preposition, and where it stands.
@@ -90,6 +100,9 @@ fn remedy(cause: Trouble, otherwise: &str) -> String {
     match cause {
         Trouble::Chattering { .. } => {
             "the signal that it watches jumps when it switches: widen the thresholds, or let a capacitance slow the signal"
+        }
+        Trouble::Endless => {
+            "something rings or switches very often for this duration: shorten `duration`, damp what rings, or raise `most_steps`"
         }
         _ => otherwise,
     }

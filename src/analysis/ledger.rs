@@ -5,10 +5,10 @@
 //! polynomial through them: of Radau's three points exact up to degree four, which is the method's own order. Between
 //! these points the polynomial of a junction's voltage is off by little and the junction's current by any factor.
 //! imbalance = sum over all but sources of |absorbed - dissipated - stored| over half the sum over all of the integrals
-//! of |p|.
+//! of |p|. What an impulse moves within an instant (a source that jumps across a capacitor) counts with both.
 
 use crate::circuit::Circuit;
-use crate::dae::{Point, Step};
+use crate::dae::{Impulse, Point, Step};
 
 /// Abscissae in [0, 1] and weights of the four-point Gauss-Legendre rule (Abramowitz and Stegun, table 25.4).
 const GAUSS: [(f64, f64); 4] = [
@@ -27,7 +27,8 @@ pub struct Account {
     pub dissipated: f64,
     /// Final less initial value of its state function.
     pub stored: f64,
-    /// Integral of the magnitude of the power into its terminals.
+    /// Integral of the magnitude of the power into its terminals, or of its loss where that is more: an inductor that
+    /// runs down in its own resistance turns its energy over though no terminal sees it.
     pub turnover: f64,
     /// True for sources, which stand outside the balance.
     pub is_source: bool,
@@ -60,6 +61,10 @@ pub struct LedgerKeeper {
     points: Vec<f64>,
     rule: Vec<(f64, f64)>,
 }
+
+/// Below this [J] an energy is nothing: Boltzmann's constant times a tenth of a kelvin, far less than the thermal motion
+/// in any part. What rounding leaves in a circuit at rest is no imbalance.
+const NOTHING: f64 = 1.4e-24;
 
 /// Most collocation points that serve without the step's start.
 const ENOUGH: usize = 3;
@@ -130,11 +135,20 @@ impl LedgerKeeper {
                 mode: step.mode,
             };
             for (&k, account) in self.entries.iter().zip(&mut self.accounts) {
-                let power = circuit.power(k, at);
+                let (power, loss) = (circuit.power(k, at), circuit.loss(k, at));
                 account.absorbed += weight * length * power;
-                account.turnover += weight * length * power.abs();
-                account.dissipated += weight * length * circuit.loss(k, at);
+                account.turnover += weight * length * power.abs().max(loss);
+                account.dissipated += weight * length * loss;
             }
+        }
+    }
+
+    /// Adds what an impulse moves: energy that is absorbed at once.
+    pub fn impulse(&mut self, circuit: &Circuit, impulse: &Impulse, time: f64) {
+        for (&k, account) in self.entries.iter().zip(&mut self.accounts) {
+            let energy = circuit.impulse(k, impulse, time);
+            account.absorbed += energy;
+            account.turnover += energy.abs();
         }
     }
 
@@ -151,11 +165,7 @@ impl LedgerKeeper {
             .filter(|account| !account.is_source)
             .map(Account::gap)
             .sum();
-        let imbalance = if turnover > 0.0 {
-            gaps / (0.5 * turnover)
-        } else {
-            0.0
-        };
+        let imbalance = gaps / (0.5 * turnover).max(NOTHING);
         Ledger {
             accounts: self.accounts,
             imbalance,

@@ -15,4 +15,4 @@ pub use simulate::{Settings, Simulation};
 pub use start::start;
 pub use steady::{Found, Warm};
 pub use swings::{Swings, Wish};
-pub use task::{Analysis, Start, SteadyState, Transient};
+pub use task::{Analysis, MOST_STEPS, Start, SteadyState, Transient};

@@ -1,15 +1,15 @@
 //! A transient: the pilot run that finds the swings, then the run itself, shown to an observer.
 
 use super::failure::Failure;
-use super::start::{Begun, begin, begin_at, vary};
+use super::start::{Begun, begin, begin_at, set_out, vary};
 use super::steady::{self, Found, Warm};
 use super::swings::{Swings, Wish};
 use super::task::Start;
 use crate::circuit::Circuit;
 use crate::dae::methods;
 use crate::dae::{
-    Advance, Ending, March, Method, Moved, Point, Shadows, Span, State, Statistics, Tolerances,
-    Variations,
+    Advance, Ending, Impulse, March, Method, Moved, Point, Shadows, Span, State, Statistics,
+    Tolerances, Variations,
 };
 use crate::diag::Diagnostic;
 use crate::signals::{EventLog, Happening, Owner};
@@ -29,6 +29,8 @@ pub struct Settings {
     /// Period [s] of the periodic state where it begins in one, and whether that is but a guess: the duration is then
     /// the period that is found.
     pub period: Option<(f64, bool)>,
+    /// Steps that may be tried.
+    pub most_steps: u64,
 }
 
 /// One thing that the observer of a simulation is shown.
@@ -53,6 +55,8 @@ pub enum Shown<'a> {
         happened: &'a [(usize, Happening)],
         /// Derivatives at it, where variations are carried along.
         varied: Option<Moved<'a>>,
+        /// Charges and flux linkages that moved at once.
+        impulses: &'a [Impulse],
     },
 }
 
@@ -289,6 +293,7 @@ impl Simulation<'_> {
             mut spent,
             ..
         } = beginning;
+        let state = set_out(circuit, self.settings.start, state);
         let mut log = EventLog::default();
         for (k, what) in happened {
             log.note(&owner(circuit, k), what, 0.0);
@@ -300,6 +305,7 @@ impl Simulation<'_> {
         let span = Span {
             pile: wanted.pile,
             longest_step: self.settings.longest_step,
+            most_steps: self.settings.most_steps,
             ..Span::new(duration, wanted.tolerances)
         };
         let ending = march
@@ -314,6 +320,7 @@ impl Simulation<'_> {
                     mode_before,
                     mode_after,
                     varied,
+                    impulses,
                 } => {
                     let (mut x, mut mode) = (x_before.to_vec(), mode_before.to_vec());
                     let mut happened = Vec::new();
@@ -343,6 +350,7 @@ impl Simulation<'_> {
                             after,
                             happened: &happened,
                             varied: *varied,
+                            impulses,
                         },
                         &log,
                     )

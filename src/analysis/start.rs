@@ -157,6 +157,23 @@ pub fn vary(
     Ok(())
 }
 
+/// The state with which a march sets out: with the currents that flow from the first instant on (a source that moves
+/// from there drives a current through a capacitor across it, which at rest carries none).
+pub fn set_out(circuit: &Circuit, from: Start, mut state: State) -> State {
+    if from == Start::OperatingPoint {
+        let mut out = Evaluation::default();
+        circuit.evaluate(state.point(), false, &mut out);
+        let mut x = state.x.clone();
+        let (time, fine) = (state.time, fine(circuit));
+        let found = consistent_start(circuit, time, &state.mode, &out.q, &mut x, &fine);
+        // Rest is a sound start as well; the first step finds what is missing.
+        if found.is_ok() {
+            state.x = x;
+        }
+    }
+    state
+}
+
 /// The state at rest with given modes; no event is taken.
 pub fn at_rest(circuit: &Circuit, mode: Vec<f64>) -> Result<State, Failure> {
     let mut state = State {

@@ -6,6 +6,7 @@
 
 use crate::circuit::Circuit;
 use crate::dae::Step;
+use crate::elements::Measure;
 use crate::signals::{EventLog, Window};
 
 /// A window in which some unknowns are read.
@@ -24,6 +25,15 @@ const LEAST_READ: f64 = 1e-4;
 const LEAST_OTHER: f64 = 1e-3;
 /// Smallest share of the largest swing of its own measure that any unknown is scaled to.
 const LEAST_OF_MEASURE: f64 = 1e-4;
+
+/// Smallest scale of all, in the measure's own unit: below a nanovolt and some thousand electrons a second nothing
+/// is to be told from the rounding of a circuit that rests.
+fn least_of_all(measure: Measure) -> f64 {
+    match measure {
+        Measure::Current | Measure::FluxLinkage | Measure::Charge => 1e-15,
+        _ => 1e-9,
+    }
+}
 
 /// Lowest and highest value of each unknown, over the whole run and within each wish's window.
 #[derive(Clone, Debug)]
@@ -54,6 +64,16 @@ impl Range {
         for ((low, high), &value) in self.low.iter_mut().zip(&mut self.high).zip(x) {
             *low = low.min(value);
             *high = high.max(value);
+        }
+    }
+
+    /// The largest magnitude and the swing, whichever is more; 0 where nothing was seen.
+    fn largest(&self, unknown: usize) -> f64 {
+        let (low, high) = (self.low[unknown], self.high[unknown]);
+        if low <= high {
+            (high - low).max(high.abs()).max(low.abs())
+        } else {
+            0.0
         }
     }
 
@@ -105,8 +125,7 @@ impl Swings {
         let mut scales: Vec<f64> = (0..size).map(|unknown| self.scale(unknown)).collect();
         let mut largest_of = Vec::new();
         for (unknown, claimed) in circuit.unknowns.iter().enumerate() {
-            let high = self.whole.high[unknown].abs();
-            let here = self.whole.swing(unknown).max(high);
+            let here = self.whole.largest(unknown);
             match largest_of
                 .iter_mut()
                 .find(|(measure, _)| *measure == claimed.measure)
@@ -119,12 +138,7 @@ impl Swings {
             let measure = circuit.unknowns[unknown].measure;
             let found = largest_of.iter().find(|(other, _)| *other == measure);
             let largest = found.map_or(0.0, |(_, largest)| *largest);
-            // A circuit in which a whole measure rests at zero still needs a positive tolerance.
-            let floor = if largest > 0.0 && largest.is_finite() {
-                LEAST_OF_MEASURE * largest
-            } else {
-                1e-9
-            };
+            let floor = f64::max(LEAST_OF_MEASURE * largest, least_of_all(measure));
             if self.whole.swing(unknown) < floor {
                 *scale = floor;
             }

@@ -43,6 +43,8 @@ pub struct Transient {
     pub longest_step: Option<Value>,
     /// Instant from which waveforms are kept.
     pub record_from: Value,
+    /// Steps that may be tried before the run is given up.
+    pub most_steps: usize,
 }
 
 /// Where a transient begins.
@@ -58,6 +60,9 @@ pub enum Start {
 
 /// The analyses by word.
 pub const ANALYSES: &[&str] = &["operating_point", "steady_state", "transient"];
+
+/// Steps that may be tried where the netlist does not say.
+pub const MOST_STEPS: u64 = 100_000_000;
 
 /// The keys of a transient.
 pub const TRANSIENT_KEYS: &[Key] = &[
@@ -80,6 +85,12 @@ pub const TRANSIENT_KEYS: &[Key] = &[
         Takes::Quantity(units::TIME),
         "0 s",
         "instant from which waveforms are kept",
+    ),
+    Key::default(
+        "most_steps",
+        Takes::Count,
+        "100000000",
+        "steps after which the run is given up",
     ),
 ];
 
@@ -195,6 +206,7 @@ fn read_transient(fields: &Fields<'_>) -> Option<Transient> {
         None
     };
     let record_from = fields.non_negative("record_from");
+    let most_steps = fields.count("most_steps");
     fields.finish();
     Some(Transient {
         duration: duration?,
@@ -210,5 +222,6 @@ fn read_transient(fields: &Fields<'_>) -> Option<Transient> {
             None => None,
         },
         record_from: record_from?,
+        most_steps: most_steps?,
     })
 }

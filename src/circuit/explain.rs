@@ -3,6 +3,9 @@
 use super::Circuit;
 use crate::diag::Span;
 
+/// Most elements named in one message.
+const MOST_NAMED: usize = 6;
+
 /// An unknown in words.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct Explained {
@@ -23,6 +26,16 @@ impl Circuit {
             words: format!("the switching of `{}`", entry.name),
             span: Some(entry.span),
         })
+    }
+
+    /// The elements that meet at a node, quoted, where the unknown is a node's potential; the first few of many.
+    pub fn meeting_at(&self, unknown: usize) -> Vec<String> {
+        let Some(name) = self.node_names.get(unknown) else {
+            return Vec::new();
+        };
+        let touching = |entry: &&super::Entry| entry.terminals.iter().any(|t| t.node.text == *name);
+        let entries = self.entries.iter().filter(touching).take(MOST_NAMED);
+        entries.map(|entry| format!("`{}`", entry.name)).collect()
     }
 
     /// What an unknown is.

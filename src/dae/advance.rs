@@ -34,7 +34,28 @@ pub enum Advance<'a> {
         mode_after: &'a [f64],
         /// Derivatives at it, where variations are carried along.
         varied: Option<Moved<'a>>,
+        /// What happened within the instant, one entry for each transition that changed something.
+        impulses: &'a [Impulse],
     },
+}
+
+/// An instant within which charges and flux linkages may have moved at once: what moves them is an impulse.
+///
+/// It is seen as a short time, `length`, during which an impulse of current or voltage stands as a large value.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Impulse {
+    /// Unknowns before it.
+    pub before: Vec<f64>,
+    /// Unknowns during it.
+    pub during: Vec<f64>,
+    /// Unknowns after it.
+    pub after: Vec<f64>,
+    /// Modes before it.
+    pub mode_before: Vec<f64>,
+    /// Modes during and after it.
+    pub mode: Vec<f64>,
+    /// Its length [s].
+    pub length: f64,
 }
 
 /// A step that was kept, with the method's own polynomial through it.

@@ -1,12 +1,13 @@
 //! What happens at an event: transitions at one instant, charges kept, the rest solved anew.
 
-use super::advance::Advance;
+use super::advance::{Advance, Impulse};
 use super::crossing::Watch;
+use super::instant::{Instant, Meeting};
 use super::march::State;
 use super::newton::{Newton, evaluation};
-use super::start::{Meeting, instant};
 use super::statistics::Statistics;
 use super::system::{Cause, Evaluation, Point, System};
+use super::tolerances::Tolerances;
 use super::trouble::{MarchError, Trouble};
 use super::variations::{Moved, Taken, Variations};
 use crate::math::Elimination;
@@ -18,6 +19,7 @@ const MOST_IN_HASTE: usize = 100;
 
 /// What goes along with the solution through an event.
 pub(crate) struct Company<'r, 's, S: ?Sized> {
+    pub tolerances: &'r Tolerances,
     /// Reciprocal tolerances.
     pub weights: &'r [f64],
     pub watch: &'r mut Watch,
@@ -34,6 +36,8 @@ pub(crate) struct Events {
     charge: Vec<f64>,
     newton: Newton,
     out: Evaluation,
+    instant: Instant,
+    impulses: Vec<Impulse>,
     /// Guards' events in a row, and the unknowns after the last one.
     row: usize,
     x_after: Vec<f64>,
@@ -50,6 +54,8 @@ impl Events {
             charge: vec![0.0; size],
             newton: Newton::new(system, elimination),
             out: evaluation(size, system.pattern().len()),
+            instant: Instant::new(size),
+            impulses: Vec::new(),
             row: 0,
             x_after: vec![f64::INFINITY; size],
         }
@@ -65,6 +71,7 @@ impl Events {
             mode_before: &self.mode_before,
             mode_after: &state.mode,
             varied,
+            impulses: &self.impulses,
         }
     }
 
@@ -78,11 +85,13 @@ impl Events {
         counted: &mut Statistics,
     ) -> Result<bool, MarchError> {
         let Company {
+            tolerances,
             weights,
             watch,
             mut variations,
         } = company;
         self.causes.clear();
+        self.impulses.clear();
         self.time = state.time;
         self.x_before.copy_from_slice(&state.x);
         self.mode_before.copy_from_slice(&state.mode);
@@ -97,7 +106,7 @@ impl Events {
                 system,
                 cause,
                 state,
-                weights,
+                tolerances,
                 variations.as_deref_mut(),
                 counted,
             )?;
@@ -126,7 +135,7 @@ impl Events {
         system: &S,
         cause: Cause,
         state: &mut State,
-        weights: &[f64],
+        tolerances: &Tolerances,
         variations: Option<&mut Variations<'_, S>>,
         counted: &mut Statistics,
     ) -> Result<bool, MarchError> {
@@ -139,6 +148,7 @@ impl Events {
         system.evaluate(before, false, &mut self.out);
         counted.evaluations += 1;
         self.charge.copy_from_slice(&self.out.q);
+        let x_held = state.x.clone();
         let mut x = std::mem::take(&mut state.x);
         let mode_held = state.mode.clone();
         let mut changed = self.transition(system, cause, &mut x, state, counted);
@@ -182,24 +192,33 @@ impl Events {
             x: &[],
             mode: &state.mode,
         };
-        instant(
-            system,
-            &mut self.newton,
-            at,
-            weights,
-            &mut self.charge,
-            &mut state.x,
-            counted,
-        )
-        .map_err(|failure| MarchError {
-            time: state.time,
-            unknown: Some(failure.unknown),
-            cause: failure.cause,
-        })?;
+        self.instant
+            .pass(
+                system,
+                &mut self.newton,
+                at,
+                tolerances,
+                &mut self.charge,
+                &mut state.x,
+                counted,
+            )
+            .map_err(|failure| MarchError {
+                time: state.time,
+                unknown: Some(failure.unknown),
+                cause: failure.cause,
+            })?;
         if let (Some(variations), Some(held), Some(jumped)) = (variations, &held, &jumped) {
-            let meeting = Some(&self.newton.meeting);
+            let meeting = Some(&self.instant.meeting);
             vary(system, variations, cause, held, jumped, state, meeting)?;
         }
+        self.impulses.push(Impulse {
+            before: x_held,
+            during: self.instant.meeting.x.clone(),
+            after: state.x.clone(),
+            mode_before: mode_held,
+            mode: state.mode.clone(),
+            length: 1.0 / self.instant.meeting.rates[0],
+        });
         Ok(true)
     }
 

@@ -9,7 +9,7 @@ use super::control::Control;
 use super::crossing::{Crossing, Watch};
 use super::event::{Company, Events};
 use super::experience::Experience;
-use super::methods::{Attempt, Method, Stepper, Trial};
+use super::methods::{Attempt, Family, Method, Stepper, Trial};
 use super::pile::Pile;
 use super::statistics::Statistics;
 use super::system::{Cause, Point, System};
@@ -18,6 +18,15 @@ use super::trouble::{MarchError, Trouble};
 use super::variations::{Kept, Variations};
 use crate::math::Elimination;
 use std::ops::ControlFlow;
+
+/// Most steps in a row, each as short as the clock can tell, that may be kept for a jump.
+const MOST_JUMPS: u32 = 100;
+
+/// Shortest step [s]: below it no lumped circuit has a time constant.
+const SHORTEST: f64 = 1e-16;
+
+/// Largest jump, in tolerances: what reaches beyond is no swing of the circuit.
+const LARGEST_JUMP: f64 = 1e5;
 
 /// Where the solution stands.
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -55,6 +64,8 @@ pub struct Span<'a> {
     pub longest_step: f64,
     /// Length [s] tried first; none lets the march choose.
     pub first_step: Option<f64>,
+    /// Steps that may be tried before the march gives up.
+    pub most_steps: u64,
 }
 
 impl<'a> Span<'a> {
@@ -66,6 +77,7 @@ impl<'a> Span<'a> {
             pile: f64::INFINITY,
             longest_step: f64::INFINITY,
             first_step: None,
+            most_steps: u64::MAX,
         }
     }
 }
@@ -176,7 +188,11 @@ impl March {
             variations,
             observer,
             length: 0.0,
+            last_step: 0,
+            jumped: 0,
+            busiest: None,
         };
+        run.last_step = run.tried().saturating_add(span.most_steps);
         run.whole()
     }
 }
@@ -192,6 +208,12 @@ struct Run<'a, 'o, 's, S: ?Sized> {
     observer: &'a mut Observer<'o>,
     /// Length of the next step [s].
     length: f64,
+    /// The march gives up when so many steps have been tried.
+    last_step: u64,
+    /// Steps in a row that were kept as jumps.
+    jumped: u32,
+    /// The unknown that set the length of the step kept last.
+    busiest: Option<usize>,
 }
 
 /// What ended a step.
@@ -270,11 +292,23 @@ impl<S: System + ?Sized> Run<'_, '_, '_, S> {
 
     /// Shortest step [s] that still moves the clock by some units in the last place.
     fn shortest(&self) -> f64 {
-        (32.0 * f64::EPSILON * self.state.time.abs()).max(1e-18)
+        (32.0 * f64::EPSILON * self.state.time.abs()).max(SHORTEST)
+    }
+
+    /// Steps tried since the march was made.
+    fn tried(&self) -> u64 {
+        self.counted.accepted + self.counted.rejected
     }
 
     /// Takes one step that ends at `stop` at the latest.
     fn step(&mut self, stop: f64) -> Result<(End, ControlFlow<()>), MarchError> {
+        if self.tried() >= self.last_step {
+            return Err(MarchError {
+                time: self.state.time,
+                unknown: self.busiest,
+                cause: Trouble::Endless,
+            });
+        }
         let mut aim = f64::INFINITY;
         let mut located = 0;
         loop {
@@ -294,7 +328,8 @@ impl<S: System + ?Sized> Run<'_, '_, '_, S> {
                 .stepper
                 .attempt(self.system, trial, self.counted)
             {
-                Attempt::Solved { error, .. } if error <= 1.0 => {
+                Attempt::Solved { error, unknown } if error <= 1.0 || self.jumps(length, error) => {
+                    self.busiest = Some(unknown);
                     let end = match self.crossing(to, located) {
                         Crossing::None => None,
                         Crossing::Here(guard) => Some(End::Guard(guard)),
@@ -310,6 +345,9 @@ impl<S: System + ?Sized> Run<'_, '_, '_, S> {
                     } else {
                         End::Own
                     });
+                    if error <= 1.0 {
+                        self.jumped = 0;
+                    }
                     self.follow_order();
                     let factor = self.scratch.control.next(length, error);
                     // A step cut short by an event says little about the steps after it, unless it would shrink.
@@ -339,6 +377,20 @@ impl<S: System + ?Sized> Run<'_, '_, '_, S> {
     fn follow_order(&mut self) {
         let method = self.scratch.stepper.method(self.method);
         self.scratch.control.follow(method.estimated);
+    }
+
+    /// True where a step that is not accurate enough is kept all the same: what moves within the clock's own resolution
+    /// cannot be followed and is taken for a jump. The stages are solved, so charges and flux linkages are kept. A method
+    /// whose estimate does not tell rounding from error gives up instead.
+    fn jumps(&mut self, length: f64, error: f64) -> bool {
+        let may = error <= LARGEST_JUMP
+            && self.jumped < MOST_JUMPS
+            && !matches!(self.method.family, Family::Diagonal(_));
+        if error <= 1.0 || length > 2.0 * self.shortest() || !may {
+            return false;
+        }
+        self.jumped += 1;
+        true
     }
 
     /// End of the step to be tried, and whether it is the stop.
@@ -459,6 +511,7 @@ impl<S: System + ?Sized> Run<'_, '_, '_, S> {
     fn take(&mut self, cause: Cause) -> Result<ControlFlow<()>, MarchError> {
         let scratch = &mut *self.scratch;
         let company = Company {
+            tolerances: self.span.tolerances,
             weights: &scratch.weights,
             watch: &mut scratch.watch,
             variations: self.variations.as_deref_mut(),

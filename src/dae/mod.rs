@@ -10,6 +10,7 @@ mod crossing;
 pub mod dense;
 mod event;
 mod experience;
+mod instant;
 pub mod march;
 pub mod methods;
 mod newton;
@@ -23,7 +24,7 @@ pub mod tolerances;
 pub mod trouble;
 pub mod variations;
 
-pub use advance::{Advance, Step};
+pub use advance::{Advance, Impulse, Step};
 pub use dense::Dense;
 pub use march::{Ending, March, Observer, Span, State};
 pub use methods::{METHODS, Method};

@@ -5,10 +5,9 @@
 //! largest entry in tolerances; from the ratio of two steps follows how far the solution still is.
 
 use super::pattern::Pattern;
-use super::start::Meeting;
 use super::statistics::Statistics;
 use super::system::{Evaluation, Point, System};
-use super::tolerances::{lags, largest, rounding};
+use super::tolerances::{SIGNS, lags, largest, rounding};
 use super::trouble::Trouble;
 use crate::math::{Elimination, Matrix};
 
@@ -53,8 +52,6 @@ pub(crate) struct Failure {
 pub(crate) struct Newton {
     pub matrix: Matrix<f64>,
     pub out: Evaluation,
-    /// Left by the last instant that was solved.
-    pub meeting: Meeting,
     step: Vec<f64>,
     step_before: Vec<f64>,
     rest: Vec<f64>,
@@ -69,7 +66,6 @@ impl Newton {
         Newton {
             matrix: Matrix::new(size, &pattern.starts, &pattern.rows, elimination),
             out: evaluation(size, pattern.len()),
-            meeting: Meeting::default(),
             step: vec![0.0; size],
             step_before: vec![0.0; size],
             rest: Vec::with_capacity(size),
@@ -107,24 +103,47 @@ impl Newton {
 
     /// By how many tolerances x may move when the charges' last digits do, through the last factors.
     pub fn rounding(&mut self, charge: &[f64], rate: f64, weights: &[f64]) -> f64 {
-        for (row, (step, charge)) in self.step.iter_mut().zip(charge).enumerate() {
-            *step = rounding(row, rate * charge);
+        let mut most = 0.0_f64;
+        for signs in SIGNS {
+            for (row, (step, charge)) in self.step.iter_mut().zip(charge).enumerate() {
+                *step = rounding(row, rate * charge, signs);
+            }
+            self.matrix.solve(&mut self.step);
+            most = most.max(largest(&self.step, weights).0);
         }
-        self.matrix.solve(&mut self.step);
-        largest(&self.step, weights).0
+        most
     }
 
     /// The size below which a Newton step is rounding and nothing else.
     #[cold]
-    fn noise(&mut self, equation: &Equation<'_>, x: &[f64], weights: &[f64]) -> f64 {
-        for (row, step) in self.step.iter_mut().enumerate() {
-            let terms = (equation.rate * self.out.q[row]).abs()
-                + self.out.f[row].abs()
-                + equation.rest[row].abs();
-            *step = rounding(row, terms);
+    fn noise(
+        &mut self,
+        pattern: &Pattern,
+        equation: &Equation<'_>,
+        x: &[f64],
+        weights: &[f64],
+    ) -> f64 {
+        let out = &self.out;
+        let mut terms: Vec<f64> = (0..x.len())
+            .map(|row| {
+                (equation.rate * out.q[row]).abs() + out.f[row].abs() + equation.rest[row].abs()
+            })
+            .collect();
+        let rate = equation.rate.abs();
+        pattern.add_magnitudes(
+            |slot| rate * out.dq[slot].abs() + out.df[slot].abs(),
+            x,
+            &mut terms,
+        );
+        let mut most = 8.0 * f64::EPSILON * largest(x, weights).0;
+        for signs in SIGNS {
+            for (row, (step, terms)) in self.step.iter_mut().zip(&terms).enumerate() {
+                *step = rounding(row, *terms, signs);
+            }
+            self.matrix.solve(&mut self.step);
+            most = most.max(largest(&self.step, weights).0);
         }
-        self.matrix.solve(&mut self.step);
-        largest(&self.step, weights).0 + 8.0 * f64::EPSILON * largest(x, weights).0
+        most
     }
 
     /// Solves from the guess in `x`; leaves the solution there. `out` then holds the last evaluation, one step before.
@@ -188,7 +207,7 @@ impl Newton {
                 return Ok(());
             }
             self.step_before.copy_from_slice(&self.step);
-            if rate > 0.5 && size <= self.noise(equation, x, weights) {
+            if rate > 0.5 && size <= self.noise(system.pattern(), equation, x, weights) {
                 return Ok(());
             }
             // Slow or growing with old slopes: take new ones at the present point.

@@ -12,6 +12,17 @@ pub struct Pattern {
 }
 
 impl Pattern {
+    /// Adds to each row the magnitudes of what it sums up at `x`: |slope| times |x|, position by position.
+    ///
+    /// In a row whose terms cancel (a current law) the sum tells nothing of its rounding; these do.
+    pub(crate) fn add_magnitudes(&self, slope: impl Fn(usize) -> f64, x: &[f64], rows: &mut [f64]) {
+        for (column, value) in x.iter().enumerate() {
+            for slot in self.starts[column]..self.starts[column + 1] {
+                rows[self.rows[slot]] += (slope(slot) * value).abs();
+            }
+        }
+    }
+
     /// Collects positions in any order, repeats allowed; every diagonal position is added.
     pub fn from_positions(size: usize, positions: &[(usize, usize)]) -> Self {
         let mut sorted: Vec<(usize, usize)> = positions

@@ -1,5 +1,6 @@
 //! Where a solution begins: the operating point, and the consistent values that go with given charges.
 
+use super::instant::Instant;
 use super::newton::{Equation, Failure, Newton, Rules};
 use super::statistics::Statistics;
 use super::system::{Point, System};
@@ -7,21 +8,6 @@ use super::tolerances::Tolerances;
 use super::trouble::{StartError, Trouble};
 use crate::math::Elimination;
 
-/// Length [s] of the implicit Euler step that stands for an instant. A thousandth of a picosecond is short against
-/// every time constant of a lumped circuit.
-pub(super) const INSTANT: f64 = 1e-15;
-/// The instant is lengthened up to so many seconds where the rounding of charges would show in x: the current that
-/// holds a farad at a source's voltage is uncertain by the charge's last digit over the instant.
-pub(super) const LONGEST_INSTANT: f64 = 1e-7;
-/// Rounding may show by this share of a tolerance.
-pub(super) const ROUNDING: f64 = 0.05;
-
-/// Rules for the instant's equation.
-const INSTANT_RULES: Rules = Rules {
-    close: 1e-2,
-    longest: 60,
-    fresh: true,
-};
 /// Rules for the operating point: many limited steps may be needed to bring junctions into conduction.
 const REST_RULES: Rules = Rules {
     close: 1e-2,
@@ -83,82 +69,25 @@ pub fn consistent_start<S: System + ?Sized>(
     x: &mut [f64],
     tolerances: &Tolerances,
 ) -> Result<Statistics, StartError> {
-    let mut weights = vec![0.0; x.len()];
-    tolerances.weigh(x, &mut weights);
     let mut newton = Newton::new(system, Elimination::Automatic);
     let mut counted = Statistics::default();
     let mut rest = charge.to_vec();
-    let point = Point { time, x: &[], mode };
-    instant(
-        system,
-        &mut newton,
-        point,
-        &weights,
-        &mut rest,
-        x,
-        &mut counted,
-    )
-    .map_err(|failure| StartError {
-        unknown: Some(failure.unknown),
-        cause: failure.cause,
-    })?;
+    let mut instant = Instant::new(x.len());
+    instant
+        .pass(
+            system,
+            &mut newton,
+            Point { time, x: &[], mode },
+            tolerances,
+            &mut rest,
+            x,
+            &mut counted,
+        )
+        .map_err(|failure| StartError {
+            unknown: Some(failure.unknown),
+            cause: failure.cause,
+        })?;
     Ok(counted)
-}
-
-/// How charges met in an instant: what a derivative of it needs.
-#[derive(Clone, Debug, Default)]
-pub(crate) struct Meeting {
-    /// Reciprocal lengths [1/s] of its two steps.
-    pub rates: [f64; 2],
-    /// Unknowns after the first step.
-    pub x: Vec<f64>,
-}
-
-/// The work of [`consistent_start`] with memory from outside: `charge` is overwritten; `at.x` is not looked at; how the
-/// charges met is left in `newton.meeting`.
-pub(crate) fn instant<S: System + ?Sized>(
-    system: &S,
-    newton: &mut Newton,
-    at: Point<'_>,
-    weights: &[f64],
-    charge: &mut [f64],
-    x: &mut [f64],
-    counted: &mut Statistics,
-) -> Result<(), Failure> {
-    let mut length = INSTANT;
-    newton.forget();
-    for round in 0..2 {
-        loop {
-            let rate = 1.0 / length;
-            let rest = newton.rest(charge, -rate);
-            let equation = Equation {
-                time: at.time,
-                mode: at.mode,
-                rate,
-                rest: &rest,
-                shunt: 0.0,
-                shunted: &[],
-                share: None,
-            };
-            newton.solve(system, &equation, INSTANT_RULES, weights, x, counted)?;
-            newton.keep_rest(rest);
-            if length >= LONGEST_INSTANT || newton.rounding(charge, rate, weights) <= ROUNDING {
-                break;
-            }
-            length *= 10.0;
-        }
-        system.evaluate(Point { x, ..at }, false, &mut newton.out);
-        counted.evaluations += 1;
-        charge.copy_from_slice(&newton.out.q);
-        let meeting = &mut newton.meeting;
-        meeting.rates[round] = 1.0 / length;
-        if round == 0 {
-            meeting.x.clear();
-            meeting.x.extend_from_slice(x);
-        }
-    }
-    newton.forget();
-    Ok(())
 }
 
 /// Ways to an operating point where Newton's iteration alone does not lead there.

@@ -74,12 +74,11 @@ pub(crate) fn lags(step: &[f64], before: &[f64], weights: &[f64], close: f64) ->
     })
 }
 
-/// What rounding may do to a row whose terms are of this size; the sign alternates from row to row.
+/// Patterns of signs with which rounding is tried: what cancels in one (two rows of one branch) adds up in the other.
+pub(crate) const SIGNS: [[f64; 2]; 2] = [[1.0, -1.0], [1.0, 1.0]];
+
+/// What rounding may do to a row whose terms are of this size.
 #[inline]
-pub(crate) fn rounding(row: usize, terms: f64) -> f64 {
-    if row.is_multiple_of(2) {
-        4.0 * f64::EPSILON * terms
-    } else {
-        -4.0 * f64::EPSILON * terms
-    }
+pub(crate) fn rounding(row: usize, terms: f64, signs: [f64; 2]) -> f64 {
+    4.0 * f64::EPSILON * terms * signs[row % 2]
 }

@@ -18,6 +18,8 @@ pub enum Trouble {
         /// Number of the guard, or none where the clock's events do not end.
         guard: Option<usize>,
     },
+    /// The steps allowed were not enough.
+    Endless,
 }
 
 impl fmt::Display for Trouble {
@@ -28,6 +30,7 @@ impl fmt::Display for Trouble {
             Trouble::Singular => "the equations do not determine this unknown",
             Trouble::NotFinite => "a value is infinite or not a number",
             Trouble::Chattering { .. } => "events follow one another without time going on",
+            Trouble::Endless => "the steps allowed are used up",
         })
     }
 }

@@ -240,14 +240,15 @@ impl Element for Diode {
         let (t, t0) = (values[self.keys.ambient], values[self.keys.reference]);
         let n = values[self.keys.ideality_factor];
         let is = values[self.keys.saturation_current];
-        self.law = Conduction {
-            saturation_current: saturation_at(is, n, values[self.keys.band_gap], t, t0),
-            slope_voltage: n * VOLTS_PER_KELVIN * t,
-            breakdown: match &self.keys.breakdown {
-                Some(keys) => Some(keys.derive(values, t, t0)?),
-                None => None,
-            },
+        let breakdown = match &self.keys.breakdown {
+            Some(keys) => Some(keys.derive(values, t, t0)?),
+            None => None,
         };
+        self.law = Conduction::new(
+            saturation_at(is, n, values[self.keys.band_gap], t, t0),
+            n * VOLTS_PER_KELVIN * t,
+            breakdown,
+        );
         (self.depletion, self.transit) = self.keys.charge.derive(values);
         self.resistance = values[self.keys.series_resistance];
         Ok(())

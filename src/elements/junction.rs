@@ -13,18 +13,24 @@ use crate::units;
 /// Boltzmann's constant over the elementary charge [V/K], both exact in the SI.
 pub const VOLTS_PER_KELVIN: f64 = 1.380649e-23 / 1.602176634e-19;
 
-/// Exponents beyond this are continued by their tangent: no real current is near e^100 times Is, and exp would overflow.
-const STEEPEST: f64 = 100.0;
+/// The exponential is continued by its tangent above this current [A]: none is so large, exp would overflow, and beside
+/// so steep a slope all else at the node would vanish in its rounding.
+const LARGEST: f64 = 1e9;
 
-/// exp(u) and its slope, continued by the tangent above `STEEPEST`.
+/// The least slope [S] that a blocking law shows to Newton's iteration: the true one, e^-1000 of something, is no number.
+/// Its current stays as the law says; but a node that nothing else holds needs some slope to be found at all, enough to
+/// show beside the conductance of a closed switch there.
+pub const LEAST_SLOPE: f64 = 1e-12;
+
+/// exp(u) and its slope, continued by the tangent above `steepest`.
 #[inline]
-fn exponential(u: f64) -> (f64, f64) {
-    if u <= STEEPEST {
+fn exponential(u: f64, steepest: f64) -> (f64, f64) {
+    if u <= steepest {
         let e = u.exp();
         (e, e)
     } else {
-        let e = STEEPEST.exp();
-        (e * (1.0 + u - STEEPEST), e)
+        let e = steepest.exp();
+        (e * (1.0 + u - steepest), e)
     }
 }
 
@@ -48,6 +54,8 @@ pub struct Conduction {
     pub slope_voltage: f64,
     /// Breakdown, where there is one.
     pub breakdown: Option<Breakdown>,
+    /// Exponent above which the forward law is continued by its tangent.
+    steepest: f64,
 }
 
 /// A breakdown in numbers.
@@ -94,6 +102,16 @@ impl Breakdown {
 }
 
 impl Conduction {
+    /// A junction of this saturation current [A] and n k T/q [V].
+    pub fn new(saturation_current: f64, slope_voltage: f64, breakdown: Option<Breakdown>) -> Self {
+        Conduction {
+            saturation_current,
+            slope_voltage,
+            breakdown,
+            steepest: (LARGEST / saturation_current).max(1.0).ln(),
+        }
+    }
+
     /// Current [A] and slope [S] at a junction voltage [V].
     #[inline]
     pub fn current(&self, v: f64) -> (f64, f64) {
@@ -106,7 +124,7 @@ impl Conduction {
             current -= reverse;
             slope += steep;
         }
-        (current, slope)
+        (current, slope.max(LEAST_SLOPE))
     }
 
     /// The forward law alone.
@@ -120,7 +138,7 @@ impl Conduction {
                 self.saturation_current * (e + 1.0) / self.slope_voltage,
             );
         }
-        let (e, slope) = exponential(u);
+        let (e, slope) = exponential(u, self.steepest);
         (
             self.saturation_current * (e - 1.0),
             self.saturation_current * slope / self.slope_voltage,
@@ -393,15 +411,12 @@ mod tests {
     #[test]
     fn slopes_are_derivatives_over_the_whole_range() {
         let s = VOLTS_PER_KELVIN * 300.0;
-        let law = Conduction {
-            saturation_current: 1e-9,
-            slope_voltage: 1.8 * s,
-            breakdown: Some(Breakdown {
-                knee: 24.0,
-                resistance: 2.0,
-                softness: s,
-            }),
+        let knee = Breakdown {
+            knee: 24.0,
+            resistance: 2.0,
+            softness: s,
         };
+        let law = Conduction::new(1e-9, 1.8 * s, Some(knee));
         for v in [
             -1000.0_f64,
             -25.0,
@@ -418,7 +433,7 @@ mod tests {
             let h = 1e-6 * (1.0 + v.abs());
             let slope = (law.current(v + h).0 - law.current(v - h).0) / (2.0 * h);
             assert_relative_eq!(
-                slope,
+                slope.max(LEAST_SLOPE),
                 law.current(v).1,
                 max_relative = 2e-3,
                 epsilon = 1e-14

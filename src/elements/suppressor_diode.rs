@@ -4,7 +4,7 @@
 use super::claims::Claims;
 use super::diode::{Diode, JunctionKeys};
 use super::element::{Branch, Element, Energy, Path, PathKind, Point, Unsound};
-use super::junction::{Breakdown, BreakdownKeys, CHARGE_KEYS, ChargeKeys, Slope};
+use super::junction::{Breakdown, BreakdownKeys, CHARGE_KEYS, ChargeKeys, LEAST_SLOPE, Slope};
 use super::kind::{ElementKind, Made, NODES, Surroundings, pair, reference_temperature};
 use super::stamper::Stamper;
 use crate::netlist::{Fields, Key, Takes, Value, Values};
@@ -192,7 +192,7 @@ impl BothWays {
     fn current(&self, v: f64) -> (f64, f64) {
         let (up, up_slope) = self.breakdown.current(v);
         let (down, down_slope) = self.breakdown.current(-v);
-        (up - down, up_slope + down_slope)
+        (up - down, (up_slope + down_slope).max(LEAST_SLOPE))
     }
 }
 

@@ -143,8 +143,17 @@ impl Feed {
             Shown::Settled(found) => self.steady = Some(found.clone()),
             Shown::Step(step) => self.step(circuit, step, log),
             Shown::Event {
-                after, happened, ..
+                after,
+                happened,
+                impulses,
+                ..
             } => {
+                for impulse in impulses {
+                    self.signals.impulse(circuit, impulse, after.time);
+                    if let Some(keeper) = &mut self.keeper {
+                        keeper.impulse(circuit, impulse, after.time);
+                    }
+                }
                 for (entry, what) in happened {
                     self.happened(circuit, *entry, *what, after.time);
                 }

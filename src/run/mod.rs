@@ -24,7 +24,9 @@ pub use repeated::{Figures, RatingFigure, again, pilot};
 pub use sensitivity::{Sensitivity, parameter};
 
 use crate::analysis::simulate::Shown;
-use crate::analysis::{Analysis, Failure, Settings, Simulation, Start, Warm, Wish, period};
+use crate::analysis::{
+    Analysis, Failure, MOST_STEPS, Settings, Simulation, Start, Warm, Wish, period,
+};
 use crate::circuit::{Circuit, Tap};
 use crate::dae::{Ending, Method};
 use crate::elements::Unknown;
@@ -107,6 +109,7 @@ fn settings(netlist: &Netlist) -> Result<Option<Settings>, Failure> {
             longest_step: transient
                 .longest_step
                 .map_or(f64::INFINITY, |value| values[value]),
+            most_steps: transient.most_steps as u64,
             period: if transient.start == Start::SteadyState {
                 let common = period::common_period(circuit, transient.start_span);
                 Some((
@@ -122,6 +125,7 @@ fn settings(netlist: &Netlist) -> Result<Option<Settings>, Failure> {
             accuracy: values[task.accuracy],
             start: Start::SteadyState,
             longest_step: f64::INFINITY,
+            most_steps: MOST_STEPS,
             period: Some((values[task.period], task.unknown)),
         }),
     })

@@ -227,6 +227,7 @@ impl<'a> Watcher<'a> {
                 after,
                 happened,
                 varied,
+                impulses,
                 ..
             } => {
                 let shifts =
@@ -251,6 +252,8 @@ impl<'a> Watcher<'a> {
                             after,
                             happened,
                             varied: None,
+                            // An impulse's own derivative is not carried along.
+                            impulses,
                         };
                         feed.take(circuit, event, log);
                     }

@@ -2,7 +2,7 @@
 
 use crate::analysis::ledger::rule;
 use crate::circuit::{Circuit, Entry, Tap};
-use crate::dae::{Point, Step};
+use crate::dae::{Impulse, Point, Step};
 use crate::signals::{Owner, Phrase, Piece, Quantity, RatingKind, Watched};
 use crate::units::Kind;
 
@@ -139,6 +139,15 @@ impl Signals {
                 }
             }
             signal.energy = values[3];
+        }
+    }
+
+    /// Takes an impulse: it moves energy within an instant.
+    pub fn impulse(&mut self, circuit: &Circuit, impulse: &Impulse, time: f64) {
+        for signal in &mut self.list {
+            if let Tap::Energy(k) = signal.tap {
+                signal.energy += circuit.impulse(k, impulse, time);
+            }
         }
     }
 

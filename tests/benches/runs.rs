@@ -51,6 +51,7 @@ fn simulate(netlist: &Netlist, accuracy: f64) -> u64 {
         start: transient.start,
         longest_step: f64::INFINITY,
         period: None,
+        most_steps: u64::MAX,
     };
     let simulation = Simulation {
         circuit: &netlist.circuit,

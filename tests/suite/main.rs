@@ -19,6 +19,9 @@ mod numerical_error;
 mod peers;
 mod pilot;
 mod plots;
+#[path = "../random/mod.rs"]
+mod random;
+mod random_circuits;
 mod readme;
 mod record;
 mod release;

@@ -30,6 +30,7 @@ fn scales_are_within_a_sixth_of_those_that_a_fine_run_shows() {
                 start: transient.start,
                 longest_step: f64::INFINITY,
                 period: None,
+                most_steps: u64::MAX,
             },
             method: method(),
             warm: None,

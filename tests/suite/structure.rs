@@ -41,6 +41,10 @@ fn odd_circuits_end_as_they_say() {
             let told = &json["diagnostics"][0];
             assert_eq!(told["word"], word, "{}: {json}", path.display());
             assert!(told["line"].is_u64(), "{}: {json}", path.display());
+        } else {
+            let imbalance = json["ledger"]["imbalance"].as_f64();
+            let imbalance = imbalance.expect("every result has a ledger");
+            assert!(imbalance < 1e-2, "{}: {imbalance:e}", path.display());
         }
     }
 }

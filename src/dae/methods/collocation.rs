@@ -68,6 +68,9 @@ pub(crate) struct Collocation<const S: usize> {
     pub(super) tried: f64,
     /// True until a step is kept after a restart or a rejection: the estimate is then filtered once more.
     pub(super) careful: bool,
+    /// True until a step is kept after a restart: what stands at the start is then as exact as charges are, and what
+    /// has not settled there is to be followed.
+    pub(super) anew: bool,
     /// Attempts since a step was kept.
     pub(super) failures: u32,
 }
@@ -117,6 +120,7 @@ impl<const S: usize> Collocation<S> {
             origin: 0.0,
             tried: 0.0,
             careful: true,
+            anew: true,
             failures: 0,
             pattern,
         }
@@ -129,6 +133,7 @@ impl<const S: usize> Collocation<S> {
         self.contraction = 1.0;
         self.laid = 0.0;
         self.careful = true;
+        self.anew = true;
         self.failures = 0;
         self.tried = 0.0;
         self.hard = 0;
@@ -376,6 +381,7 @@ impl<const S: usize> Collocation<S> {
             self.next_ready = false;
         }
         self.careful = false;
+        self.anew = false;
         self.failures = 0;
         self.tried = 0.0;
         self.hard = self.hard.saturating_sub(1);

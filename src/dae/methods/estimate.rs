@@ -7,14 +7,14 @@
 
 use super::super::statistics::Statistics;
 use super::super::system::{Point, System};
-use super::super::tolerances::{largest, rounding};
+use super::super::tolerances::{SIGNS, largest, rounding};
 use super::super::trouble::Trouble;
 use super::Trial;
 use super::collocation::{Collocation, Failure, sound};
 use super::radau_iia::Between;
 
-/// After so many failed attempts the rounding of charges is suspected.
-const ODD: u32 = 4;
+/// Error of a step that nothing but rounding lets appear inaccurate.
+const ROUNDED: f64 = 0.1;
 
 impl<const S: usize> Collocation<S> {
     pub(super) fn weigh_error<Y: System + ?Sized>(
@@ -40,9 +40,9 @@ impl<const S: usize> Collocation<S> {
             }
         }
         let (mut error, unknown) = most;
-        if error > 1.0 && self.failures >= ODD && error <= self.error_noise(trial) {
-            // Shorter steps would only magnify the rounding of charges.
-            error = 1.0;
+        if error > 1.0 && self.failures > 0 && error <= self.error_noise(trial) {
+            // Shorter steps would only magnify the rounding of charges; longer ones tell more.
+            error = ROUNDED;
         }
         if error.is_finite() {
             Ok((error, unknown))
@@ -58,11 +58,25 @@ impl<const S: usize> Collocation<S> {
     #[cold]
     fn error_noise(&mut self, trial: Trial<'_>) -> f64 {
         let rate = self.table.at_start.iter().map(|w| w.abs()).sum::<f64>() / trial.length;
-        for (row, error) in self.error.iter_mut().enumerate() {
-            *error = rounding(row, rate * self.base.q[row].abs() + self.base.f[row].abs());
+        let base = &self.base;
+        let mut terms: Vec<f64> = (0..base.q.len())
+            .map(|row| rate * base.q[row].abs() + base.f[row].abs())
+            .collect();
+        let (dq, df) = (&self.split.dq, &self.split.df);
+        self.pattern.add_magnitudes(
+            |slot| rate * dq[slot].abs() + df[slot].abs(),
+            trial.from.x,
+            &mut terms,
+        );
+        let mut most = 0.0_f64;
+        for signs in SIGNS {
+            for (row, (error, terms)) in self.error.iter_mut().zip(&terms).enumerate() {
+                *error = rounding(row, *terms, signs);
+            }
+            self.split.solve_real(&mut self.error);
+            most = most.max(largest(&self.error, trial.weights).0);
         }
-        self.split.solve_real(&mut self.error);
-        largest(&self.error, trial.weights).0
+        most
     }
 
     /// The defect through the real factors: an error in tolerances, and the unknown that sets it.
@@ -83,8 +97,12 @@ impl<const S: usize> Collocation<S> {
         if !self.careful || !first.0.is_finite() {
             return first;
         }
-        // What has not settled at the start (a fast part after an event, an unknown of index 2 whose value there is
-        // less exact than the charges) enlarges the estimate: take it out and filter once more.
+        if self.anew && self.charges_moved(trial.weights) > 1.0 {
+            // A fast part after an event: it is to be followed.
+            return first;
+        }
+        // What has not settled at the start (an unknown of index 2 whose value there is less exact than the charges)
+        // enlarges the estimate: take it out and filter once more.
         for (settled, error) in self.settled.iter_mut().zip(&self.error) {
             *settled += error;
         }
@@ -105,6 +123,18 @@ impl<const S: usize> Collocation<S> {
         counted.solves += 1;
         let again = largest(&self.error, trial.weights);
         if again.0 < first.0 { again } else { first }
+    }
+
+    /// Size in tolerances of the present error in unknowns that charges depend on.
+    fn charges_moved(&self, weights: &[f64]) -> f64 {
+        let mut most = 0.0_f64;
+        for (column, (error, weight)) in self.error.iter().zip(weights).enumerate() {
+            let mut slots = self.pattern.starts[column]..self.pattern.starts[column + 1];
+            if slots.any(|slot| self.split.dq[slot] != 0.0) {
+                most = most.max((error * weight).abs());
+            }
+        }
+        most
     }
 
     /// The defect of the polynomial in a gap between stages. Where slopes change much it is seen through those found

@@ -6,7 +6,7 @@
 use super::super::dense::Dense;
 use super::super::statistics::Statistics;
 use super::super::system::{Point, System};
-use super::super::tolerances::{lags, largest, rounding};
+use super::super::tolerances::{SIGNS, lags, largest, rounding};
 use super::super::trouble::Trouble;
 use super::Trial;
 use super::collocation::{Collocation, Failure, sound};
@@ -211,27 +211,42 @@ impl<const S: usize> Collocation<S> {
             .table
             .inverse
             .map(|row| row.map(|w| w.abs() / trial.length));
-        for row in 0..n {
-            for (i, rates) in rates.iter().enumerate() {
+        let mut terms = vec![0.0; S * n];
+        for ((i, rates), terms) in rates
+            .iter()
+            .enumerate()
+            .zip(terms.chunks_exact_mut(n.max(1)))
+        {
+            for (row, terms) in terms.iter_mut().enumerate() {
                 let charges: f64 = (0..S).map(|j| rates[j] * self.outs[j].q[row].abs()).sum();
-                let right = rounding(row, charges + self.outs[i].f[row].abs());
-                if own {
-                    self.coupled.right_mut()[S * row + i] = right;
-                } else {
-                    self.steps[i * n + row] = right;
-                }
+                *terms = charges + self.outs[i].f[row].abs();
             }
+            let (dq, df) = (&self.split.dq, &self.split.df);
+            let rate: f64 = rates.iter().sum();
+            self.pattern.add_magnitudes(
+                |slot| rate * dq[slot].abs() + df[slot].abs(),
+                &self.stages[(i + 1) * n..(i + 2) * n],
+                terms,
+            );
         }
         let mut most = 8.0 * f64::EPSILON * largest(self.end(), trial.weights).0;
-        if own {
-            self.coupled.solve();
-            for (k, step) in self.coupled.right_mut().iter().enumerate() {
-                most = most.max((step * trial.weights[k / S]).abs());
-            }
-        } else {
-            self.split.solve(self.table, &mut self.steps);
-            for steps in self.steps.chunks_exact(n.max(1)) {
-                most = most.max(largest(steps, trial.weights).0);
+        for signs in SIGNS {
+            if own {
+                for (k, right) in self.coupled.right_mut().iter_mut().enumerate() {
+                    *right = rounding(k / S, terms[k % S * n + k / S], signs);
+                }
+                self.coupled.solve();
+                for (k, step) in self.coupled.right_mut().iter().enumerate() {
+                    most = most.max((step * trial.weights[k / S]).abs());
+                }
+            } else {
+                for (k, step) in self.steps.iter_mut().enumerate() {
+                    *step = rounding(k % n, terms[k], signs);
+                }
+                self.split.solve(self.table, &mut self.steps);
+                for steps in self.steps.chunks_exact(n.max(1)) {
+                    most = most.max(largest(steps, trial.weights).0);
+                }
             }
         }
         self.steps.fill(0.0);

@@ -9,9 +9,9 @@ use super::Variations;
 use super::explicit::Explicit;
 use super::linear::multiply;
 use super::shadows::OF_SCALE;
-use crate::dae::start::{INSTANT, LONGEST_INSTANT, Meeting, ROUNDING};
+use crate::dae::instant::{INSTANT, LONGEST_INSTANT, Meeting, ROUNDING};
 use crate::dae::system::{Cause, Point, System};
-use crate::dae::tolerances::rounding;
+use crate::dae::tolerances::{SIGNS, rounding};
 use crate::math::Singular;
 
 /// An event that was taken.
@@ -94,7 +94,7 @@ impl<S: System + ?Sized> Variations<'_, S> {
         let mut v: Vec<f64> = charge
             .iter()
             .enumerate()
-            .map(|(row, charge)| rounding(row, rate * charge))
+            .map(|(row, charge)| rounding(row, rate * charge, SIGNS[0]))
             .collect();
         self.linear.solve(&mut v, &mut self.counted);
         let shares = v.iter().zip(&self.scales);

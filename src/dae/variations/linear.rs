@@ -1,8 +1,8 @@
 //! The linear equations of an instant: (rate C + G) v = right, with the slopes of one point.
 
+use crate::dae::instant::INSTANT;
 use crate::dae::newton::evaluation;
 use crate::dae::pattern::Pattern;
-use crate::dae::start::INSTANT;
 use crate::dae::statistics::Statistics;
 use crate::dae::system::{Evaluation, Point, System};
 use crate::math::{Elimination, Matrix, Singular};

@@ -18,7 +18,7 @@ mod shifted;
 mod stages;
 
 use super::dense::Dense;
-use super::start::INSTANT;
+use super::instant::INSTANT;
 use super::statistics::Statistics;
 use super::system::{Point, System};
 pub(crate) use events::Taken;

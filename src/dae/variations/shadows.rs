@@ -2,7 +2,7 @@
 
 use super::Variations;
 use super::events::{Motion, Taken};
-use crate::dae::start::INSTANT;
+use crate::dae::instant::INSTANT;
 use crate::dae::system::{Cause, Point, System};
 
 /// Share of a step by which instants may be shifted in finite differences of events.

@@ -106,6 +106,7 @@ pub fn run(name: &str, input: &Input) -> Run {
         start: transient.start,
         longest_step: f64::INFINITY,
         period: None,
+        most_steps: u64::MAX,
     };
     let simulation = Simulation {
         circuit,

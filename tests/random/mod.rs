@@ -1,0 +1,5 @@
+//! Random circuits: made from a seed, written as netlists, read and run by the tool, and judged.
+
+pub mod circuit;
+pub mod dice;
+pub mod judge;

@@ -12,9 +12,7 @@ const COUNT: u64 = 100;
 fn random_circuits_give_a_result_whose_ledger_closes_or_a_named_error() {
     let (mut sound, mut good) = (0, 0);
     for number in 0..COUNT {
-        // Fewer steps than by hand, for the time that it takes.
-        let text =
-            circuit::netlist(SEED, number).replace("most_steps: 200000", "most_steps: 20000");
+        let text = circuit::netlist(SEED, number);
         let end = match netlist(&text) {
             Err(words) => End::Refused(words),
             Ok(netlist) => judge(&netlist).0,

@@ -120,7 +120,8 @@ fn an_interrupted_run_says_so_first() {
 #[cfg(unix)]
 #[test]
 fn an_interrupted_sizing_ends_with_a_message() {
-    let netlist = std::fs::read_to_string("netlists/valve_on_cable.yaml").expect("a shipped netlist");
+    let netlist =
+        std::fs::read_to_string("netlists/valve_on_cable.yaml").expect("a shipped netlist");
     let start = std::time::Duration::from_millis(700);
     for json in [false, true] {
         let arguments: &[&str] = if json { &["size", "--json"] } else { &["size"] };

@@ -2,7 +2,7 @@
 //!
 //! One period maps the charges at its start to those at its end; a state that it maps onto itself is periodic. The
 //! map's derivative, the monodromy matrix M, comes from variations carried along the period. With r = z1 - z0 in
-//! coordinates z of the charges that can vary ([`directions`]), (1 - M) dz = r; where the period is unknown too,
+//! coordinates z of the charges that can vary (`directions`), (1 - M) dz = r; where the period is unknown too,
 //! (1 - M) dz - z' dT = r with the phase held, z'.dz = 0. The eigenvalues of M are the multipliers: by these factors
 //! small deviations grow from period to period. T. J. Aprille and T. N. Trick, *Proc. IEEE* 60 (1972) 108 (from
 //! memory). Modes carry themselves from period to period; [`System::earlier`] takes their memory of instants back.

@@ -2,12 +2,12 @@
 //!
 //! A column is dx/dp at fixed time, for one direction p of the starting state or one parameter of the system. It is
 //! the derivative of the discrete solution itself at fixed step lengths: each kept step's equations are
-//! differentiated at its own stages ([`stages`]), each event's transition, charges and instant likewise ([`events`]).
+//! differentiated at its own stages (`stages`), each event's transition, charges and instant likewise (`events`).
 //! H. G. Bock, *Recent advances in parameter identification for ODE* (1983), called it internal differentiation (from
 //! memory).
 //!
 //! Slopes along a parameter come from two shadows: the same system with the parameter a little larger and a little
-//! smaller ([`explicit`]). Where modes hold continuous memory (the instant at which a switch set out), its derivative
+//! smaller (`explicit`). Where modes hold continuous memory (the instant at which a switch set out), its derivative
 //! is carried as well.
 
 mod events;

@@ -8,8 +8,8 @@ use super::task::Start;
 use crate::circuit::Circuit;
 use crate::dae::methods;
 use crate::dae::{
-    Advance, Ending, Impulse, March, Method, Moved, Point, Shadows, Span, State, Statistics,
-    Tolerances, Variations,
+    Advance, Ending, Impulse, March, Method, Moved, Point, Shadows, Span, Statistics, Tolerances,
+    Variations,
 };
 use crate::diag::Diagnostic;
 use crate::signals::{EventLog, Happening, Owner};
@@ -31,6 +31,20 @@ pub struct Settings {
     pub period: Option<(f64, bool)>,
     /// Steps that may be tried.
     pub most_steps: u64,
+}
+
+impl Settings {
+    /// A run without further wishes: of this duration [s], with steps of any length and as many as it takes.
+    pub fn new(duration: f64, accuracy: f64, start: Start) -> Self {
+        Settings {
+            duration,
+            accuracy,
+            start,
+            longest_step: f64::INFINITY,
+            period: None,
+            most_steps: u64::MAX,
+        }
+    }
 }
 
 /// One thing that the observer of a simulation is shown.
@@ -298,7 +312,7 @@ impl Simulation<'_> {
         for (k, what) in happened {
             log.note(&owner(circuit, k), what, 0.0);
         }
-        if watcher(circuit, Shown::Start(point(&state)), &log).is_break() {
+        if watcher(circuit, Shown::Start(state.point()), &log).is_break() {
             return Ok((Statistics::default(), Ending::Stopped));
         }
         let mut march = March::new(self.method, state);
@@ -359,14 +373,6 @@ impl Simulation<'_> {
             .map_err(|error| Failure::march(circuit, error))?;
         spent.add(&march.counted);
         Ok((spent, ending))
-    }
-}
-
-fn point(state: &State) -> Point<'_> {
-    Point {
-        time: state.time,
-        x: &state.x,
-        mode: &state.mode,
     }
 }
 

@@ -251,14 +251,7 @@ fn fine(circuit: &Circuit) -> Tolerances {
 /// Lets every watch whose threshold is passed already change its switch at once; the last guard of one that did.
 fn watches_change(circuit: &Circuit, state: &mut State) -> Option<usize> {
     let mut guards = vec![-1.0; circuit.guard_size()];
-    circuit.guards(
-        Point {
-            time: state.time,
-            x: &state.x,
-            mode: &state.mode,
-        },
-        &mut guards,
-    );
+    circuit.guards(state.point(), &mut guards);
     let mut changed = None;
     for (which, guard) in guards.iter().enumerate() {
         let cause = Cause::Guard(which);

@@ -8,6 +8,7 @@ use super::failure::Failure;
 use super::period::fits;
 use super::simulate::Simulation;
 use super::start::running;
+use super::swings::Range;
 use crate::dae::{Advance, Cycle, Orbit, State, Statistics, Tolerances, shoot};
 use crate::diag::Diagnostic;
 use std::cell::RefCell;
@@ -17,6 +18,8 @@ use std::ops::ControlFlow;
 const PLAIN: usize = 2;
 /// Deviation of the rough state, in swings.
 const ROUGH: f64 = 1e-2;
+/// Smallest share of its magnitude that an unknown of the rough state is scaled to.
+const SHARE: f64 = 1e-2;
 /// Newton steps at most, for the rough state and for the fine one.
 const STEPS: [usize; 2] = [25, 12];
 /// Periods of plain marching where Newton's iteration does not lead there.
@@ -192,7 +195,8 @@ impl Search<'_> {
         let circuit = self.simulation.circuit;
         let mut state = running(circuit, self.start)?;
         let loose = self.simulation.pilot_tolerances();
-        let mut range = Range::default();
+        // Of the period marched last.
+        let mut range = Range::new(state.x.len());
         let ones = vec![1.0; state.x.len()];
         let first = Cycle {
             period,
@@ -206,7 +210,14 @@ impl Search<'_> {
         };
         let method = self.simulation.method;
         let begun = shoot(circuit, method, &mut state, &first, &mut |advance| {
-            range.take(advance);
+            match advance {
+                Advance::Start { x, .. } => {
+                    range = Range::new(x.len());
+                    range.take(x);
+                }
+                Advance::Step(step) => range.take(step.x1),
+                Advance::Event { .. } => {}
+            }
             watch()
         })
         .map_err(|error| Failure::march(circuit, error))?;
@@ -215,7 +226,10 @@ impl Search<'_> {
         if begun.stopped {
             return Err(Failure::Interrupted);
         }
-        let scales = range.scales(&loose.absolute);
+        let floors = loose.absolute.iter().enumerate();
+        let scales: Vec<f64> = floors
+            .map(|(k, floor)| range.swing(k).max(SHARE * range.largest(k)).max(*floor))
+            .collect();
         let cycle = Cycle {
             free: self.unknown,
             scales: &scales,
@@ -226,40 +240,6 @@ impl Search<'_> {
         };
         let orbit = self.shoot(&mut state, &cycle, watch)?;
         Ok((state, orbit))
-    }
-}
-
-/// Lowest and highest value of each unknown over the period marched last.
-#[derive(Default)]
-struct Range {
-    low: Vec<f64>,
-    high: Vec<f64>,
-}
-
-impl Range {
-    fn take(&mut self, advance: &Advance<'_>) {
-        match advance {
-            Advance::Start { x, .. } => (self.low, self.high) = (x.to_vec(), x.to_vec()),
-            Advance::Step(step) => {
-                let pairs = self.low.iter_mut().zip(&mut self.high);
-                for ((low, high), x) in pairs.zip(step.x1) {
-                    (*low, *high) = (low.min(*x), high.max(*x));
-                }
-            }
-            Advance::Event { .. } => {}
-        }
-    }
-
-    /// Swings, with a share of the magnitude and a floor below them.
-    fn scales(&self, floors: &[f64]) -> Vec<f64> {
-        let pairs = self.low.iter().zip(&self.high).zip(floors);
-        pairs
-            .map(|((low, high), floor)| {
-                (high - low)
-                    .max(1e-2 * low.abs().max(high.abs()))
-                    .max(*floor)
-            })
-            .collect()
     }
 }
 

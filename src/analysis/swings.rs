@@ -46,21 +46,22 @@ pub struct Swings {
     middle: Vec<f64>,
 }
 
+/// Lowest and highest value of each unknown.
 #[derive(Clone, Debug)]
-struct Range {
+pub(super) struct Range {
     low: Vec<f64>,
     high: Vec<f64>,
 }
 
 impl Range {
-    fn new(size: usize) -> Self {
+    pub fn new(size: usize) -> Self {
         Range {
             low: vec![f64::INFINITY; size],
             high: vec![f64::NEG_INFINITY; size],
         }
     }
 
-    fn take(&mut self, x: &[f64]) {
+    pub fn take(&mut self, x: &[f64]) {
         for ((low, high), &value) in self.low.iter_mut().zip(&mut self.high).zip(x) {
             *low = low.min(value);
             *high = high.max(value);
@@ -68,7 +69,7 @@ impl Range {
     }
 
     /// The largest magnitude and the swing, whichever is more; 0 where nothing was seen.
-    fn largest(&self, unknown: usize) -> f64 {
+    pub fn largest(&self, unknown: usize) -> f64 {
         let (low, high) = (self.low[unknown], self.high[unknown]);
         if low <= high {
             (high - low).max(high.abs()).max(low.abs())
@@ -77,7 +78,7 @@ impl Range {
         }
     }
 
-    fn swing(&self, unknown: usize) -> f64 {
+    pub fn swing(&self, unknown: usize) -> f64 {
         (self.high[unknown] - self.low[unknown]).max(0.0)
     }
 }

@@ -115,11 +115,7 @@ impl Events {
             } else {
                 None
             };
-            let at = Point {
-                time: state.time,
-                x: &state.x,
-                mode: &state.mode,
-            };
+            let at = state.point();
             next = watch.renew(system, at, fired).map(Cause::Guard);
             if self.causes.len() > MOST_AT_ONCE {
                 return Err(self.chattering(state.time, cause));
@@ -140,11 +136,7 @@ impl Events {
         counted: &mut Statistics,
     ) -> Result<bool, MarchError> {
         let held = variations.as_ref().map(|_| state.clone());
-        let before = Point {
-            time: state.time,
-            x: &state.x,
-            mode: &state.mode,
-        };
+        let before = state.point();
         system.evaluate(before, false, &mut self.out);
         counted.evaluations += 1;
         self.charge.copy_from_slice(&self.out.q);

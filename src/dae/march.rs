@@ -273,11 +273,7 @@ impl<S: System + ?Sized> Run<'_, '_, '_, S> {
         self.scratch.stepper.restart();
         self.scratch.control.restart();
         self.length = self.span.first_step.unwrap_or_else(|| self.first_length());
-        let at = Point {
-            time: self.state.time,
-            x: &self.state.x,
-            mode: &self.state.mode,
-        };
+        let at = self.state.point();
         match self.scratch.watch.begin(self.system, at) {
             Some(guard) => self.take(Cause::Guard(guard)),
             None => Ok(ControlFlow::Continue(())),
@@ -314,11 +310,7 @@ impl<S: System + ?Sized> Run<'_, '_, '_, S> {
         loop {
             let (to, at_stop) = self.goal(stop.min(aim));
             let trial = Trial {
-                from: Point {
-                    time: self.state.time,
-                    x: &self.state.x,
-                    mode: &self.state.mode,
-                },
+                from: self.state.point(),
                 length: to - self.state.time,
                 weights: &self.scratch.weights,
             };

@@ -173,7 +173,7 @@ impl Places {
             [a, b, ..] => a.of(&state.x) - b.of(&state.x),
             _ => 0.0,
         };
-        let at = point(&closed);
+        let at = closed.point();
         let own = Point {
             mode: &closed.mode[coil.modes.clone()],
             ..at
@@ -197,14 +197,6 @@ impl Places {
             switching.rest(after, &mut mode[entry.modes.clone()]);
         }
         at_rest(circuit, mode)
-    }
-}
-
-fn point(state: &State) -> Point<'_> {
-    Point {
-        time: state.time,
-        x: &state.x,
-        mode: &state.mode,
     }
 }
 

@@ -45,14 +45,7 @@ fn simulate(netlist: &Netlist, accuracy: f64) -> u64 {
         panic!("the benchmark's netlist is a transient")
     };
     let values = netlist.circuit.values();
-    let settings = Settings {
-        duration: values[transient.duration],
-        accuracy,
-        start: transient.start,
-        longest_step: f64::INFINITY,
-        period: None,
-        most_steps: u64::MAX,
-    };
+    let settings = Settings::new(values[transient.duration], accuracy, transient.start);
     let simulation = Simulation {
         circuit: &netlist.circuit,
         settings,

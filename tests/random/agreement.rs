@@ -78,13 +78,10 @@ fn potentials(
         return Ok(Vec::new());
     };
     let circuit = &netlist.circuit;
+    let duration = circuit.values()[transient.duration];
     let settings = Settings {
-        duration: circuit.values()[transient.duration],
-        accuracy,
-        start: transient.start,
-        longest_step: f64::INFINITY,
-        period: None,
         most_steps: 20 * transient.most_steps as u64,
+        ..Settings::new(duration, accuracy, transient.start)
     };
     let simulation = Simulation {
         circuit,

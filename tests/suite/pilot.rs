@@ -24,14 +24,7 @@ fn scales_are_within_a_sixth_of_those_that_a_fine_run_shows() {
         let circuit = &netlist.circuit;
         let simulation = Simulation {
             circuit,
-            settings: Settings {
-                duration: circuit.values()[transient.duration],
-                accuracy: 1e-4,
-                start: transient.start,
-                longest_step: f64::INFINITY,
-                period: None,
-                most_steps: u64::MAX,
-            },
+            settings: Settings::new(circuit.values()[transient.duration], 1e-4, transient.start),
             method: method(),
             warm: None,
         };

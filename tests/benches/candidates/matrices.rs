@@ -100,14 +100,8 @@ pub fn run(name: &str, input: &Input) -> Run {
         panic!("a transient")
     };
     let circuit = &netlist.circuit;
-    let settings = Settings {
-        duration: circuit.values()[transient.duration],
-        accuracy: 1e-4,
-        start: transient.start,
-        longest_step: f64::INFINITY,
-        period: None,
-        most_steps: u64::MAX,
-    };
+    let duration = circuit.values()[transient.duration];
+    let settings = Settings::new(duration, 1e-4, transient.start);
     let simulation = Simulation {
         circuit,
         settings,

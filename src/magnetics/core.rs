@@ -2,7 +2,7 @@
 
 use super::geometry::{Fault, Geometry, Remark};
 use super::linkage::{CurvePoint, Linkage};
-use super::materials::{Linear, Magnetized, Material};
+use super::materials::{Filling, Linear, Losses, Magnetized};
 use super::path::Path;
 use super::shapes::Shape;
 use super::winding::WindingPlan;
@@ -15,7 +15,7 @@ pub struct Core {
     /// Where it stands: `cores.k1_core`.
     pub path: String,
     pub(super) shape: Box<dyn Shape>,
-    pub(super) material: Option<Arc<dyn Material>>,
+    pub(super) material: Option<Arc<Filling>>,
 }
 
 /// A core with one winding, with numbers.
@@ -59,7 +59,7 @@ impl Core {
     ) -> Result<(Path, Geometry), Fault> {
         let mut geometry = sound(self.shape.derive(values, winding)?)?;
         let magnetized = match &self.material {
-            Some(material) => material.derive(values, temperature)?,
+            Some(filling) => filling.magnetization.derive(values, temperature)?,
             None => Magnetized {
                 curve: Arc::new(Linear::AIR),
                 remarks: Vec::new(),
@@ -67,6 +67,17 @@ impl Core {
         };
         geometry.remarks.extend(magnetized.remarks);
         Ok((Path::new(&geometry, magnetized.curve), geometry))
+    }
+
+    /// What its material loses; nothing is known of a core without one.
+    ///
+    /// # Errors
+    /// A value that a study set out of its range.
+    pub fn losses(&self, values: &Values) -> Result<Losses, Fault> {
+        match &self.material {
+            Some(filling) => filling.losses.derive(values),
+            None => Ok(Losses::default()),
+        }
     }
 
     /// The core with one winding on it, core and copper at a `temperature` [K].

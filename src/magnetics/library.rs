@@ -2,7 +2,7 @@
 
 use super::core::Core;
 use super::geometry::Fault;
-use super::materials::{self, Material};
+use super::materials::{self, Filling};
 use super::shapes::{self, SHAPES, ShapeKind};
 use crate::diag::Diagnostic;
 use crate::netlist::{Data, Fields, Key, Named, Node, Reader, Takes, is_name, nearest};
@@ -37,7 +37,7 @@ pub const CORE_KEYS: &[Key] = &[
 pub struct Library<'a> {
     reader: &'a Reader<'a>,
     /// None for one that was refused: naming it is no second error.
-    materials: BTreeMap<String, Option<Arc<dyn Material>>>,
+    materials: BTreeMap<String, Option<Arc<Filling>>>,
     cores: BTreeMap<String, Option<Arc<Core>>>,
 }
 
@@ -117,7 +117,7 @@ impl<'a> Library<'a> {
 
     /// The material of a core; the outer None where it is wrong.
     #[allow(clippy::option_option)]
-    fn material(&self, fields: &Fields<'a>, kind: &ShapeKind) -> Option<Option<Arc<dyn Material>>> {
+    fn material(&self, fields: &Fields<'a>, kind: &ShapeKind) -> Option<Option<Arc<Filling>>> {
         if !fields.has("material") {
             return Some(None);
         }

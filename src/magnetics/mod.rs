@@ -26,6 +26,7 @@ pub use core::{Core, Wound};
 pub use geometry::{Fault, Geometry, Remark};
 pub use library::{KEYS, Library};
 pub use linkage::{CurvePoint, Linkage};
+pub use materials::{Losses, Steinmetz};
 pub use path::Path;
 pub use winding::WindingPlan;
 pub use wire::{WIRE_KEYS, Wire, WireSpec};

@@ -121,7 +121,8 @@ coil: {core: {shape: solenoid, mean_diameter: 10 mm, length: 20 mm}, turns: 100}
 fn values_that_a_study_sets_out_of_range_are_refused_and_do_not_stall() {
     let text = "
 materials:
-  iron: {initial_permeability: 3000, saturation: 1.5 T}
+  iron: {initial_permeability: 3000, saturation: 1.5 T, resistivity: 0.1 µΩ m,
+         steinmetz: {factor: 3 W/m³, frequency_exponent: 1.3, flux_exponent: 2}}
 cores:
   leg: {shape: effective, length: 60 mm, area: 50 mm², gap: 1 mm, material: iron}
   ring: {shape: toroid, outer_diameter: 20 mm, inner_diameter: 10 mm, height: 5 mm, gap: 1 mm, material: iron}
@@ -155,6 +156,13 @@ coil: {core: leg, turns: 30, wire: {diameter: 0.4 mm}}
                     }
                 }
             }
+        }
+        for figure in ["resistivity", "steinmetz.factor", "steinmetz.flux_exponent"] {
+            let mut values = nominal.clone();
+            let path = format!("materials.iron.{figure}");
+            values.set(reader.parameters.borrow().find(&path).expect("read"), -1.0);
+            let core = library.named("leg").expect("it was read");
+            assert!(core.losses(&nominal).is_ok() && core.losses(&values).is_err());
         }
         for wrong in [-1.0, 0.0, 1.0] {
             let mut values = nominal.clone();
@@ -244,6 +252,68 @@ materials:
   l: {initial_permeabilty: 100}
   # error[wrong-type]: keys here are initial_permeability, saturation ...
   m: 3
+",
+    );
+}
+
+#[test]
+fn losses_are_read_into_the_core() {
+    let text = "
+materials:
+  ferrite: {initial_permeability: 2300, saturation: 0.45 T, resistivity: 5 Ω m,
+            steinmetz: {factor: 1.2 W/m³, frequency_exponent: 1.45, flux_exponent: 2.6}}
+cores:
+  ring: {shape: toroid, outer_diameter: 20 mm, inner_diameter: 10 mm, height: 5 mm, material: ferrite}
+coil: {core: ring, turns: 10}
+";
+    read(text, |core, _, values| {
+        let losses = core.losses(&values).expect("it was just read");
+        assert_eq!(losses.resistivity, Some(5.0));
+        let steinmetz = losses.steinmetz.expect("it is written");
+        assert_eq!(
+            (
+                steinmetz.factor,
+                steinmetz.frequency_exponent,
+                steinmetz.flux_exponent
+            ),
+            (1.2, 1.45, 2.6)
+        );
+    });
+    read(
+        "
+coil: {core: {shape: solenoid, mean_diameter: 10 mm, length: 20 mm}, turns: 100}
+",
+        |core, _, values| {
+            assert_eq!(core.losses(&values), Ok(Losses::default()));
+        },
+    );
+}
+
+#[test]
+fn losses_out_of_range_or_half_written_are_refused() {
+    faulty(
+        "
+materials:
+  # error[out-of-range]: resistivity must be above zero
+  a: {initial_permeability: 100, resistivity: 0 Ω m}
+  # error[wrong-dimension]: resistivity takes Ω m
+  b: {initial_permeability: 100, resistivity: 5 Ω}
+  # error[missing-key]: needs `factor`
+  c: {initial_permeability: 100, steinmetz: {frequency_exponent: 1.4, flux_exponent: 2.5}}
+  # error[out-of-range]: factor must be above zero
+  d: {initial_permeability: 100, steinmetz: {factor: 0 W/m³, frequency_exponent: 1.4, flux_exponent: 2.5}}
+  # error[missing-unit]: factor takes W/m³
+  e: {initial_permeability: 100, steinmetz: {factor: 3, frequency_exponent: 1.4, flux_exponent: 2.5}}
+  # error[out-of-range]: frequency_exponent must be between 1 and 3
+  f: {initial_permeability: 100, steinmetz: {factor: 1 W/m³, frequency_exponent: 0.4, flux_exponent: 2.5}}
+  # error[out-of-range]: flux_exponent must be between 1 and 4
+  g: {initial_permeability: 100, steinmetz: {factor: 1 W/m³, frequency_exponent: 1.4, flux_exponent: 25}}
+  # error[wrong-type]: steinmetz takes a mapping
+  h: {initial_permeability: 100, steinmetz: 3}
+  # error[unknown-key]: did you mean `flux_exponent`
+  i: {initial_permeability: 100, steinmetz: {factor: 1 W/m³, frequency_exponent: 1.4, flux_exponant: 2}}
+  # error[missing-key]: needs one of curve, saturation, initial_permeability
+  j: {resistivity: 5 Ω m}
 ",
     );
 }
@@ -430,6 +500,11 @@ fn every_table_is_complete_and_without_repeats() {
         );
         tables.push((kind.word.into(), kind.keys.iter().collect()));
     }
+    tables.push(("losses".into(), materials::losses::KEYS.iter().collect()));
+    tables.push((
+        "steinmetz".into(),
+        materials::losses::STEINMETZ.iter().collect(),
+    ));
     tables.push(("wire".into(), WIRE_KEYS.iter().collect()));
     for (word, keys) in tables {
         let mut names: Vec<&str> = keys.iter().map(|key| key.name).collect();

@@ -191,6 +191,13 @@ pub const SQUARE_LAW: Kind = Kind::new(
     AMPERE.times(VOLT, -2),
     "mA/V², A/V²",
 );
+/// Loss per volume [W/m³].
+pub const LOSS_DENSITY: Kind = Kind::new(
+    "a loss per volume",
+    "W/m³",
+    WATT.times(METRE, -3),
+    "W/m³, kW/m³, mW/cm³",
+);
 /// Resistance per metre [Ω/m].
 pub const RESISTANCE_PER_METRE: Kind = Kind::new(
     "a resistance per metre",
@@ -253,6 +260,7 @@ pub const ALL: &[Kind] = &[
     VOLTAGE_PER_KELVIN,
     RESISTIVITY,
     SQUARE_LAW,
+    LOSS_DENSITY,
     RESISTANCE_PER_METRE,
     INDUCTANCE_PER_METRE,
     CAPACITANCE_PER_METRE,

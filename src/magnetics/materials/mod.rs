@@ -4,6 +4,7 @@
 
 pub mod curve;
 pub mod linear;
+pub mod losses;
 pub mod magnetization;
 mod saturation;
 pub mod smooth;
@@ -13,6 +14,7 @@ mod laws;
 
 pub use curve::{Table, TableFault};
 pub use linear::Linear;
+pub use losses::{Losses, Steinmetz};
 pub use magnetization::Magnetization;
 pub use smooth::Smooth;
 
@@ -60,14 +62,25 @@ pub struct Magnetized {
     pub remarks: Vec<Remark>,
 }
 
+/// What fills a core: a magnetization, and what the material loses.
+#[derive(Debug)]
+pub struct Filling {
+    /// B over H.
+    pub magnetization: Box<dyn Material>,
+    /// Losses as written.
+    pub losses: losses::Written,
+}
+
 /// Reads one entry of `materials`.
-pub fn read<'a>(entry: &NamedNode<'a>, reader: &'a Reader<'a>) -> Option<Arc<dyn Material>> {
+pub fn read<'a>(entry: &NamedNode<'a>, reader: &'a Reader<'a>) -> Option<Arc<Filling>> {
     // The table with all of the common keys goes first: a message names its keys as examples.
     let mut fields = Fields::new(entry.node, entry.path.clone(), smooth::KIND.keys, reader);
     for kind in MATERIALS {
         fields = fields.also(kind.keys);
     }
+    fields = fields.also(losses::KEYS);
     fields.finish();
+    let losses = losses::Written::read(&fields);
     let told: Vec<&MaterialKind> = MATERIALS
         .iter()
         .filter(|kind| fields.has(kind.told_by))
@@ -90,7 +103,11 @@ pub fn read<'a>(entry: &NamedNode<'a>, reader: &'a Reader<'a>) -> Option<Arc<dyn
         );
         return None;
     }
-    (kind.read)(&fields).map(Arc::from)
+    let magnetization = (kind.read)(&fields)?;
+    Some(Arc::new(Filling {
+        magnetization,
+        losses: losses?,
+    }))
 }
 
 /// A written key that belongs to another kind of material.
@@ -103,7 +120,8 @@ fn strays(fields: &Fields<'_>, kind: &MaterialKind) -> Option<&'static str> {
 }
 
 fn untold(fields: &Fields<'_>) {
-    let all: Vec<&[Key]> = MATERIALS.iter().map(|kind| kind.keys).collect();
+    let mut all: Vec<&[Key]> = MATERIALS.iter().map(|kind| kind.keys).collect();
+    all.push(losses::KEYS);
     if told_already(fields, &all) {
         return;
     }

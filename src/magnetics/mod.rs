@@ -16,6 +16,7 @@ pub mod fringing;
 pub mod geometry;
 pub mod library;
 pub mod linkage;
+pub mod losses;
 pub mod materials;
 pub mod path;
 pub mod shapes;

@@ -2,8 +2,9 @@
 //!
 //! Linear algebra: [`Matrix`] takes values on a fixed sparsity pattern, factors them and solves; it chooses
 //! between the [`dense`] and the [`sparse`] elimination. Both serve real and complex numbers.
-//! Fields of circles and curves of materials: [`elliptic`], [`quadrature`], [`curves`], [`root`].
+//! Fields of circles, curves of materials, eddy currents: [`elliptic`], [`quadrature`], [`curves`], [`root`], [`bessel`].
 
+pub mod bessel;
 pub mod curves;
 pub mod dense;
 pub mod elliptic;

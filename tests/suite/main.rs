@@ -33,4 +33,5 @@ mod sizing;
 mod steady_state;
 mod structure;
 mod table;
+mod winding_losses;
 mod wire;

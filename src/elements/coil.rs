@@ -7,8 +7,8 @@ use super::element::{
 };
 use super::kind::{ElementKind, Made, NODES, Surroundings, pair, reference_temperature};
 use super::stamper::Stamper;
-use crate::magnetics::wire::copper_ratio;
-use crate::magnetics::{Core, Fault, Linkage, WIRE_KEYS, WindingPlan, WireSpec, Wound};
+use super::winding::{RESISTANCE, TEMPERATURE_COEFFICIENT, TURNS, WIRE, Winding, unsound};
+use crate::magnetics::{Core, Linkage, Wound};
 use crate::netlist::{Fields, Key, Takes, Value, Values};
 use crate::units;
 use std::sync::Arc;
@@ -20,17 +20,9 @@ pub const KIND: ElementKind = ElementKind {
     keys: &[
         NODES,
         Key::required("core", Takes::Name("core"), "the core that it is wound on"),
-        Key::required("turns", Takes::Count, "number of turns"),
-        Key::optional(
-            "wire",
-            Takes::Map(WIRE_KEYS),
-            "the wire; its resistance follows from the mean turn",
-        ),
-        Key::optional(
-            "resistance",
-            Takes::Quantity(units::RESISTANCE),
-            "winding resistance at the reference temperature, instead of a wire",
-        ),
+        TURNS,
+        WIRE,
+        RESISTANCE,
         Key::required(
             "self_capacitance",
             Takes::Quantity(units::CAPACITANCE),
@@ -42,31 +34,16 @@ pub const KIND: ElementKind = ElementKind {
             "0 A",
             "winding current at a zero start",
         ),
-        Key::optional(
-            "temperature_coefficient",
-            Takes::Quantity(units::TEMPERATURE_COEFFICIENT),
-            "of the winding resistance; copper without",
-        ),
+        TEMPERATURE_COEFFICIENT,
     ],
     read,
 };
 
-/// What sets the winding resistance.
-enum Winding {
-    /// A resistance at the reference temperature, and its temperature coefficient; copper without one.
-    Given(Value, Option<Value>),
-    /// The wire and the mean turn.
-    Wire(WireSpec),
-}
-
 struct Coil {
     core: Arc<Core>,
-    turns: usize,
     winding: Winding,
     capacitance_key: Value,
     initial_key: Value,
-    ambient: Value,
-    reference: Value,
     made: Option<Wound>,
     resistance: f64,
     capacitance: f64,
@@ -81,18 +58,15 @@ fn read(fields: &Fields<'_>, around: &Surroundings<'_>) -> Option<Made> {
     let terminals = pair(fields);
     let reference = reference_temperature(fields, around);
     let core = around.library.core(fields, "core");
-    let turns = fields.count("turns");
-    let winding = read_winding(fields);
+    let winding =
+        reference.and_then(|reference| Winding::read(fields, around, reference, "a coil"));
     let capacitance = fields.non_negative("self_capacitance");
     let initial = fields.value("initial_current");
     let element = Coil {
         core: core?,
-        turns: turns?,
         winding: winding?,
         capacitance_key: capacitance?,
         initial_key: initial?,
-        ambient: around.ambient,
-        reference: reference?,
         made: None,
         resistance: 0.0,
         capacitance: 0.0,
@@ -102,40 +76,6 @@ fn read(fields: &Fields<'_>, around: &Surroundings<'_>) -> Option<Made> {
         winding_current: None,
     };
     Some(Made::new(terminals?, element))
-}
-
-/// Either `wire` or `resistance`.
-fn read_winding(fields: &Fields<'_>) -> Option<Winding> {
-    match (fields.has("wire"), fields.has("resistance")) {
-        (false, true) => {
-            let coefficient = if fields.has("temperature_coefficient") {
-                Some(fields.value("temperature_coefficient")?)
-            } else {
-                None
-            };
-            Some(Winding::Given(fields.positive("resistance")?, coefficient))
-        }
-        (true, false) => WireSpec::read(&fields.map("wire")?).map(Winding::Wire),
-        _ => {
-            fields.error_here(
-                "one-of",
-                "a coil takes either `wire` or `resistance`".into(),
-                "write one of the two",
-                "`resistance: 400 Ω` if it was measured, `wire: {gauge: 38 AWG}` to have it computed",
-            );
-            None
-        }
-    }
-}
-
-/// A fault of the magnetics as the element's.
-fn unsound(fault: &Fault) -> Unsound {
-    Unsound {
-        word: fault.word,
-        key: "core",
-        headline: fault.text.clone(),
-        help: fault.help.to_owned(),
-    }
 }
 
 impl Coil {
@@ -155,29 +95,15 @@ impl Coil {
 
 impl Element for Coil {
     fn derive(&mut self, values: &Values) -> Result<(), Unsound> {
-        let (t, t0) = (values[self.ambient], values[self.reference]);
-        let wire = match &self.winding {
-            Winding::Wire(spec) => Some(spec.derive(values)),
-            Winding::Given(..) => None,
-        };
-        let plan = WindingPlan {
-            turns: self.turns,
-            wire,
-        };
         let wound = self
             .core
-            .wound(values, &plan, t)
+            .wound(
+                values,
+                &self.winding.plan(values),
+                self.winding.temperature(values),
+            )
             .map_err(|fault| unsound(&fault))?;
-        self.resistance = match &self.winding {
-            Winding::Given(value, None) => values[*value] * copper_ratio(t, t0),
-            Winding::Given(value, Some(coefficient)) => values[*value] * (1.0 + values[*coefficient] * (t - t0)),
-            Winding::Wire(_) => wound.resistance.ok_or_else(|| Unsound {
-                word: "no-mean-turn",
-                key: "wire",
-                headline: "the mean turn of this core is not known, so neither is the resistance of its wire".into(),
-                help: "write `mean_turn: 45 mm` in the core, or the winding's `resistance` instead of its wire".into(),
-            })?,
-        };
+        self.resistance = self.winding.resistance(values, wound.resistance)?;
         self.made = Some(wound);
         self.capacitance = values[self.capacitance_key];
         self.initial = values[self.initial_key];

@@ -25,6 +25,7 @@ pub mod switch_command;
 pub mod unknown;
 pub mod voltage_source;
 pub mod waveforms;
+pub mod winding;
 pub mod zener;
 
 pub use claims::{Claimed, Claims, Measure, Offer, Wanted};

@@ -6,8 +6,12 @@ use super::element::{
     Branch, Element, Energy, Path, PathKind, Point, Quantity, Unknown, Unsound, WindingFigures,
 };
 use super::kind::{ElementKind, Made, NODES, Surroundings, pair, reference_temperature};
+use super::skin::Skin;
 use super::stamper::Stamper;
-use super::winding::{RESISTANCE, TEMPERATURE_COEFFICIENT, TURNS, WIRE, Winding, unsound};
+use super::winding::{
+    LAYER_BREADTH, LAYERS, RESISTANCE, SKIN_AND_PROXIMITY, TEMPERATURE_COEFFICIENT, TURNS, WIRE,
+    Winding, unsound,
+};
 use crate::magnetics::{Core, Linkage, Wound};
 use crate::netlist::{Fields, Key, Takes, Value, Values};
 use crate::units;
@@ -35,6 +39,9 @@ pub const KIND: ElementKind = ElementKind {
             "winding current at a zero start",
         ),
         TEMPERATURE_COEFFICIENT,
+        SKIN_AND_PROXIMITY,
+        LAYERS,
+        LAYER_BREADTH,
     ],
     read,
 };
@@ -46,6 +53,7 @@ struct Coil {
     initial_key: Value,
     made: Option<Wound>,
     resistance: f64,
+    skin: Skin,
     capacitance: f64,
     initial: f64,
     branch: Branch,
@@ -60,6 +68,7 @@ fn read(fields: &Fields<'_>, around: &Surroundings<'_>) -> Option<Made> {
     let core = around.library.core(fields, "core");
     let winding =
         reference.and_then(|reference| Winding::read(fields, around, reference, "a coil"));
+    let winding = winding.and_then(|winding| winding.with_lay(fields));
     let capacitance = fields.non_negative("self_capacitance");
     let initial = fields.value("initial_current");
     let element = Coil {
@@ -69,6 +78,7 @@ fn read(fields: &Fields<'_>, around: &Surroundings<'_>) -> Option<Made> {
         initial_key: initial?,
         made: None,
         resistance: 0.0,
+        skin: Skin::default(),
         capacitance: 0.0,
         initial: 0.0,
         branch: Branch::default(),
@@ -95,7 +105,7 @@ impl Coil {
 
 impl Element for Coil {
     fn derive(&mut self, values: &Values) -> Result<(), Unsound> {
-        let wound = self
+        let mut wound = self
             .core
             .wound(
                 values,
@@ -104,6 +114,14 @@ impl Element for Coil {
             )
             .map_err(|fault| unsound(&fault))?;
         self.resistance = self.winding.resistance(values, wound.resistance)?;
+        let arranged = self.winding.arranged(values, &wound.geometry)?;
+        let impedance = arranged.as_ref().map(|arranged| arranged.impedance);
+        self.skin.derive(impedance, self.resistance);
+        if let Some((arranged, ladder)) = arranged.zip(self.skin.ladder()) {
+            wound
+                .count_inside(arranged, ladder, self.resistance)
+                .map_err(|fault| unsound(&fault))?;
+        }
         self.made = Some(wound);
         self.capacitance = values[self.capacitance_key];
         self.initial = values[self.initial_key];
@@ -114,6 +132,7 @@ impl Element for Coil {
         let hidden = claims.probed && self.capacitance > 0.0;
         self.branch = Branch::claim(claims, hidden);
         self.linkage = claims.unknown("flux linkage", Measure::FluxLinkage);
+        self.skin.claim(claims);
         let wanted = Wanted::Of(Quantity::WindingCurrent, 0);
         self.winding_current = claims
             .wants(wanted)
@@ -134,6 +153,8 @@ impl Element for Coil {
         into.df(self.linkage, self.linkage, self.resistance * slope);
         into.df(self.linkage, a, -1.0);
         into.df(self.linkage, b, 1.0);
+        let slopes = std::iter::once((self.linkage, slope));
+        self.skin.stamp(at.x, current, slopes, self.linkage, into);
         match self.branch.current {
             None => {
                 into.f(a, current);
@@ -177,6 +198,7 @@ impl Element for Coil {
 
     fn initial_charge(&self, q: &mut dyn FnMut(Unknown, f64)) {
         q(self.linkage, self.law().linkage_at(self.initial));
+        self.skin.initial_charge(self.initial, q);
     }
 
     fn paths(&self) -> Vec<Path> {
@@ -215,11 +237,13 @@ impl Energy for Coil {
     }
 
     fn loss(&self, at: Point<'_>) -> f64 {
-        self.resistance * self.current(at.x).0.powi(2)
+        let current = self.current(at.x).0;
+        self.resistance * current.powi(2) + self.skin.loss(at.x, current)
     }
 
     fn stored(&self, at: Point<'_>) -> f64 {
         self.law().energy(self.linkage.of(at.x))
+            + self.skin.stored(at.x)
             + 0.5 * self.capacitance * self.branch.voltage(at.x).powi(2)
     }
 }

@@ -18,6 +18,7 @@ pub mod inductor;
 pub mod junction;
 pub mod kind;
 pub mod resistor;
+pub mod skin;
 pub mod stamper;
 pub mod suppressor_diode;
 pub mod switch;

@@ -4,8 +4,9 @@
 
 use super::element::Unsound;
 use super::kind::Surroundings;
+use crate::magnetics::losses::{Arranged, Lay, SKIN_WORDS, SkinLaw};
 use crate::magnetics::wire::copper_ratio;
-use crate::magnetics::{Fault, WIRE_KEYS, WindingPlan, WireSpec};
+use crate::magnetics::{Fault, Geometry, WIRE_KEYS, WindingPlan, WireSpec};
 use crate::netlist::{Fields, Key, Takes, Value, Values};
 use crate::units;
 
@@ -30,6 +31,26 @@ pub const TEMPERATURE_COEFFICIENT: Key = Key::optional(
     "of the winding resistance; copper without",
 );
 
+/// The keys of skin and proximity effect, for kinds that call [`Winding::with_lay`].
+pub const SKIN_AND_PROXIMITY: Key = Key::default(
+    "skin_and_proximity",
+    Takes::Word(&SKIN_WORDS),
+    "none",
+    "the law by which currents crowd in the wire at high frequency, as a ladder in the equations",
+);
+/// The key `layers`.
+pub const LAYERS: Key = Key::optional(
+    "layers",
+    Takes::Count,
+    "number of layers, for skin and proximity effect; as many as the window needs unless said",
+);
+/// The key `layer_breadth`.
+pub const LAYER_BREADTH: Key = Key::optional(
+    "layer_breadth",
+    Takes::Quantity(units::LENGTH),
+    "length of a layer along the leg, for skin and proximity effect; the core's unless said",
+);
+
 /// What sets the winding resistance.
 enum Copper {
     /// A resistance at the reference temperature, and its temperature coefficient; copper without one.
@@ -44,6 +65,14 @@ pub struct Winding {
     copper: Copper,
     ambient: Value,
     reference: Value,
+    lay: Option<LayKeys>,
+}
+
+/// How it lies, as written.
+struct LayKeys {
+    law: SkinLaw,
+    layers: Option<usize>,
+    breadth: Option<Value>,
 }
 
 impl Winding {
@@ -62,7 +91,73 @@ impl Winding {
             copper: copper?,
             ambient: around.ambient,
             reference,
+            lay: None,
         })
+    }
+
+    /// The same with [`SKIN_AND_PROXIMITY`], [`LAYERS`] and [`LAYER_BREADTH`] of the mapping read too.
+    pub fn with_lay(mut self, fields: &Fields<'_>) -> Option<Self> {
+        let wire = matches!(self.copper, Copper::Wire(_));
+        // Where no wire is told there is nothing for the effects to be in, and no default to tell of.
+        if !wire && !fields.has("skin_and_proximity") {
+            unused(fields, "without a wire and `skin_and_proximity`")?;
+            return Some(self);
+        }
+        let law = SkinLaw::of(fields.word("skin_and_proximity")?);
+        let Some(law) = law else {
+            unused(fields, "without `skin_and_proximity`")?;
+            return Some(self);
+        };
+        if !wire {
+            fields.error(
+                "skin_and_proximity",
+                "missing-wire",
+                "skin and proximity effect need the winding's `wire`",
+                "without a wire",
+                Some("`wire: {diameter: 0.2 mm}` in place of `resistance`"),
+            );
+            return None;
+        }
+        let layers = match fields.has("layers") {
+            true => Some(fields.count("layers")?),
+            false => None,
+        };
+        let breadth = match fields.has("layer_breadth") {
+            true => Some(fields.positive("layer_breadth")?),
+            false => None,
+        };
+        self.lay = Some(LayKeys {
+            law,
+            layers,
+            breadth,
+        });
+        Some(self)
+    }
+
+    /// The impedance of its copper in a core's window, and what is to be known of it; None where skin and proximity
+    /// effect are not counted.
+    ///
+    /// # Errors
+    /// A lay that cannot be.
+    pub fn arranged(
+        &self,
+        values: &Values,
+        geometry: &Geometry,
+    ) -> Result<Option<Arranged>, Unsound> {
+        let Some(keys) = &self.lay else {
+            return Ok(None);
+        };
+        let lay = Lay {
+            law: keys.law,
+            layers: keys.layers,
+            breadth: keys.breadth.map(|breadth| values[breadth]),
+        };
+        lay.arrange(&self.plan(values), geometry, self.temperature(values))
+            .map(Some)
+            .map_err(|fault| Unsound {
+                key: fault.key,
+                ..unsound(&fault)
+            })
     }
 
     /// Number of turns.
@@ -130,6 +225,24 @@ fn read_copper(fields: &Fields<'_>, noun: &str) -> Option<Copper> {
             None
         }
     }
+}
+
+/// Refuses keys that only skin and proximity effect use.
+fn unused(fields: &Fields<'_>, label: &str) -> Option<()> {
+    let stray = ["layers", "layer_breadth"]
+        .into_iter()
+        .find(|key| fields.has(key));
+    let Some(stray) = stray else {
+        return Some(());
+    };
+    fields.error(
+        stray,
+        "unused-key",
+        format!("`{stray}` is for skin and proximity effect, which this winding does not count"),
+        label,
+        Some("`skin_and_proximity: dowell` (or `ferreira`) counts it; without it the key is not needed"),
+    );
+    None
 }
 
 /// A fault of the magnetics as the element's.

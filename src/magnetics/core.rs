@@ -2,6 +2,7 @@
 
 use super::geometry::{Fault, Geometry, Remark};
 use super::linkage::{CurvePoint, Linkage};
+use super::losses::{Arranged, Impedance, Ladder};
 use super::materials::{Filling, Linear, Losses, Magnetized};
 use super::path::Path;
 use super::shapes::Shape;
@@ -27,8 +28,21 @@ pub struct Wound {
     pub linkage: Linkage,
     /// Winding resistance [Ω] from wire and mean turn; None where either is not known.
     pub resistance: Option<f64>,
+    /// Skin and proximity effect of its copper, where they are counted.
+    pub inside: Option<Inside>,
     /// What somebody should know, geometry's remarks included.
     pub remarks: Vec<Remark>,
+}
+
+/// Skin and proximity effect of a winding.
+#[derive(Clone, Debug)]
+pub struct Inside {
+    /// The law: impedance over the resistance to direct current.
+    pub impedance: Impedance,
+    /// What the equations have in its place.
+    pub ladder: Ladder,
+    /// Inductance of the field inside the conductors at direct current [H], beside that of the core's flux.
+    pub inductance: f64,
 }
 
 /// The figures of one coil over its current, for tables and JSON. SI units.
@@ -99,6 +113,7 @@ impl Core {
             geometry,
             linkage: Linkage::new(path, winding.turns as f64),
             resistance,
+            inside: None,
             remarks,
         })
     }
@@ -121,25 +136,74 @@ fn sound(geometry: Geometry) -> Result<Geometry, Fault> {
 }
 
 impl Wound {
+    /// Counts skin and proximity effect of its copper, whose `resistance` [Ω] to direct current is known.
+    ///
+    /// The flux of a core does not pass through the copper: what the ladder holds comes on top of it. The inductance of a
+    /// coil in air is that of its whole field, so what the ladder holds of it is taken out of the flux.
+    ///
+    /// # Errors
+    /// A coil in air so short and thick that the field of long layers would hold more than half of its inductance.
+    pub fn count_inside(
+        &mut self,
+        arranged: Arranged,
+        ladder: &Ladder,
+        resistance: f64,
+    ) -> Result<(), Fault> {
+        let inductance = resistance * ladder.time();
+        if self.geometry.iron == 0.0 {
+            let turns = self.linkage.turns();
+            let left = self.linkage.path().less(inductance / (turns * turns));
+            let left = left.filter(|_| inductance < 0.5 * self.linkage.inductance_at_zero());
+            self.linkage = Linkage::new(
+                left.ok_or(Fault {
+                    word: "short-coil",
+                    key: "skin_and_proximity",
+                    text: "this coil in air is too short and thick for the laws of long layers"
+                        .into(),
+                    help: "skin_and_proximity: none",
+                })?,
+                turns,
+            );
+        }
+        self.remarks.extend(arranged.remarks);
+        self.inside = Some(Inside {
+            impedance: arranged.impedance,
+            ladder: ladder.clone(),
+            inductance,
+        });
+        Ok(())
+    }
+
     /// The figures over current; `operating_current` [A] where one is known. The curve has `points` points and
     /// reaches beyond the operating current and the knee.
     pub fn figures(&self, operating_current: Option<f64>, points: usize) -> Figures {
         let knee = self.linkage.current_at_70_percent();
         let linkage = operating_current.map(|current| self.linkage.linkage_at(current));
         // Half as far again as what matters; a coil of which nothing is known is shown up to an ampere.
+        // The field inside the copper comes on top of the core's flux.
+        let inner = self.inside.as_ref().map_or(0.0, |inside| inside.inductance);
         let reach = 1.5
             * knee
                 .into_iter()
                 .chain(operating_current.map(f64::abs))
                 .fold(0.0, f64::max);
         Figures {
-            inductance_at_zero: self.linkage.inductance_at_zero(),
+            inductance_at_zero: self.linkage.inductance_at_zero() + inner,
             current_at_70_percent: knee,
-            stored_energy: linkage.map(|linkage| self.linkage.energy(linkage)),
+            stored_energy: linkage.zip(operating_current).map(|(linkage, current)| {
+                self.linkage.energy(linkage) + 0.5 * inner * current * current
+            }),
             peak_flux_density: linkage.map(|linkage| self.linkage.peak_flux_density(linkage).abs()),
             curve: self
                 .linkage
-                .curve(if reach > 0.0 { reach } else { 1.0 }, points),
+                .curve(if reach > 0.0 { reach } else { 1.0 }, points)
+                .into_iter()
+                .map(|point| CurvePoint {
+                    flux_linkage: point.flux_linkage + inner * point.current,
+                    inductance: point.inductance + inner,
+                    ..point
+                })
+                .collect(),
         }
     }
 }

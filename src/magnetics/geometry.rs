@@ -27,6 +27,8 @@ pub struct Geometry {
     pub mean_turn: Option<f64>,
     /// The space for windings, where the shape tells it.
     pub window: Option<Window>,
+    /// Length of a layer of winding, along the leg [m], where the shape tells it.
+    pub layer_breadth: Option<f64>,
     /// What somebody should know.
     pub remarks: Vec<Remark>,
 }
@@ -94,6 +96,7 @@ impl Geometry {
             fringing: None,
             mean_turn: None,
             window: None,
+            layer_breadth: None,
             remarks: Vec::new(),
         }
     }

@@ -31,6 +31,16 @@ impl Path {
         }
     }
 
+    /// The path without a `permeance` [H] that is counted elsewhere; None where it has no more than that. For paths
+    /// that are all air.
+    pub fn less(&self, permeance: f64) -> Option<Self> {
+        let left = self.area / self.air - permeance;
+        (self.iron == 0.0 && left > 0.0).then(|| Path {
+            air: self.area / left,
+            ..self.clone()
+        })
+    }
+
     /// Effective area [m²].
     pub fn area(&self) -> f64 {
         self.area

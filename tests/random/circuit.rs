@@ -327,11 +327,12 @@ impl Maker {
         let area = self.dice.over_decades(1.0, 1e3);
         writeln!(
             self.cores,
-            "  {name}_core: {{shape: effective, length: {length}, area: {area:.3} mm²{gap}, material: {material}}}"
+            "  {name}_core: {{shape: effective, length: {length}, area: {area:.3} mm²{gap}, mean_turn: 40 mm, material: {material}}}"
         )
         .expect("a text grows");
         let turns = self.dice.over_decades(1.0, 1e4).round().max(1.0);
         let resistance = self.quantity(1e-3, 1e3, "Ω");
+        let copper = self.copper(turns, &resistance);
         let capacitance = if self.dice.chance(0.3) {
             "0 F".to_owned()
         } else {
@@ -342,8 +343,30 @@ impl Maker {
             maker.written(value, "A")
         });
         format!(
-            "{nodes}, core: {name}_core, turns: {turns}, resistance: {resistance}, self_capacitance: {capacitance}{initial}"
+            "{nodes}, core: {name}_core, turns: {turns}, {copper}, self_capacitance: {capacitance}{initial}"
         )
+    }
+
+    /// A resistance, or now and then a wire with its skin and proximity effect.
+    fn copper(&mut self, turns: f64, resistance: &str) -> String {
+        if !self.dice.chance(0.2) {
+            return format!("resistance: {resistance}");
+        }
+        let diameter = self.dice.over_decades(0.03, 2.0);
+        let wire = match self.dice.below(3) {
+            0 => format!(
+                "{{litz: {{strands: 20, strand_diameter: {:.4} mm}}}}",
+                diameter / 5.0
+            ),
+            _ => format!("{{diameter: {diameter:.4} mm}}"),
+        };
+        let layers = (1.0 + self.dice.below(6) as f64).min(turns);
+        let law = self.dice.one_of(&["dowell", "ferreira", "none"]);
+        let layers = match law {
+            "none" => String::new(),
+            _ => format!(", layers: {layers}"),
+        };
+        format!("wire: {wire}, skin_and_proximity: {law}{layers}")
     }
 
     fn coupled(&mut self, name: &str, a: &str, b: &str) {

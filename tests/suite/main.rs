@@ -25,6 +25,7 @@ mod random_circuits;
 mod readme;
 mod record;
 mod release;
+mod ringing_windings;
 mod rings;
 mod saturating_cores;
 mod sensitivities;

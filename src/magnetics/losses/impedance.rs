@@ -168,6 +168,11 @@ impl Impedance {
         }
     }
 
+    /// True where both differ in the time of diffusion alone.
+    pub(super) fn is_like(self, other: Impedance) -> bool {
+        self.form == other.form && self.proximity == other.proximity
+    }
+
     /// Diffusion time τ [s].
     pub fn time(self) -> f64 {
         self.time

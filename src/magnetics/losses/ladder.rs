@@ -40,32 +40,59 @@ pub struct Section {
 }
 
 /// The sections in series with the resistance to direct current, from the slowest to the quickest.
-#[derive(Clone, Debug, Default, PartialEq)]
+#[derive(Clone, Debug, PartialEq)]
 pub struct Ladder {
     /// The sections.
     pub sections: Vec<Section>,
-    /// Highest frequency [Hz] of the fit.
-    pub up_to: f64,
+    /// What it follows.
+    pub of: Impedance,
 }
 
 impl Ladder {
     /// The ladder of fewest sections that keeps resistance and inductance [`WITHIN`] up to [`REACH`] times the corner.
     pub fn of(impedance: Impedance) -> Self {
         let fit = Fit::new(impedance);
-        let mut best = Ladder::default();
-        for count in 1..=MOST_SECTIONS {
+        let mut count = 1;
+        loop {
             let found = fit.solve(count);
-            best = found.ladder(impedance);
-            if found.worst() <= WITHIN {
-                break;
+            if found.worst() <= WITHIN || count == MOST_SECTIONS {
+                return found.ladder(impedance);
             }
+            count += 1;
         }
-        best
     }
 
-    /// The ladder of so many sections (1 or more): for a conductor whose values moved a little.
-    pub fn of_count(impedance: Impedance, count: usize) -> Self {
-        Fit::new(impedance).solve(count).ladder(impedance)
+    /// The ladder of an impedance that moved, with as many sections as before, so that a circuit keeps its unknowns.
+    #[must_use]
+    pub fn moved(&self, impedance: Impedance) -> Self {
+        if !impedance.is_like(self.of) {
+            return Fit::new(impedance)
+                .solve(self.sections.len())
+                .ladder(impedance);
+        }
+        // Only the time of diffusion moved: with the temperature, for one.
+        let slower = impedance.time() / self.of.time();
+        let sections = self.sections.iter();
+        Ladder {
+            sections: sections
+                .map(|section| Section {
+                    time: slower * section.time,
+                    ..*section
+                })
+                .collect(),
+            of: impedance,
+        }
+    }
+
+    /// Highest frequency [Hz] that it follows.
+    pub fn up_to(&self) -> f64 {
+        REACH * self.of.corner()
+    }
+
+    /// Inductance at direct current over resistance to direct current [s].
+    pub fn time(&self) -> f64 {
+        let sections = self.sections.iter();
+        sections.map(|section| section.share * section.time).sum()
     }
 
     /// Z/R at a `frequency` [Hz].
@@ -239,7 +266,7 @@ impl Found<'_> {
         sections.sort_by(|one, other| other.time.total_cmp(&one.time));
         Ladder {
             sections,
-            up_to: REACH * impedance.corner(),
+            of: impedance,
         }
     }
 }
@@ -306,9 +333,11 @@ mod tests {
     #[test]
     fn a_small_change_of_the_conductor_moves_the_ladder_a_little() {
         // Derivatives by the pitch are differences of two ladders.
+        let layers = |pitch: f64| Layers { count: 3.0, pitch };
+        let start = Ladder::of(Impedance::rounds(0.5e-3, layers(0.6e-3), COPPER));
         let of = |pitch: f64| {
-            let layers = Layers { count: 3.0, pitch };
-            Ladder::of_count(Impedance::rounds(0.5e-3, layers, COPPER), 4)
+            let layers = layers(pitch);
+            start.moved(Impedance::rounds(0.5e-3, layers, COPPER))
         };
         let moved = |by: f64| {
             let (less, more) = (of(0.6e-3 * (1.0 - by)), of(0.6e-3 * (1.0 + by)));
@@ -318,6 +347,23 @@ mod tests {
         };
         for (coarse, fine) in moved(1e-3).iter().zip(moved(1e-5)) {
             assert!((coarse - fine).abs() < 1e-3, "{coarse} {fine}");
+        }
+    }
+
+    #[test]
+    fn a_warmer_conductor_has_the_same_ladder_in_another_time() {
+        let layers = Layers {
+            count: 3.0,
+            pitch: 0.6e-3,
+        };
+        let of = |resistivity: f64| Impedance::rounds(0.5e-3, layers, resistivity);
+        let (moved, fitted) = (
+            Ladder::of(of(COPPER)).moved(of(1.3 * COPPER)),
+            Ladder::of(of(1.3 * COPPER)),
+        );
+        for (one, other) in moved.sections.iter().zip(&fitted.sections) {
+            assert!((one.share / other.share - 1.0).abs() < 1e-9);
+            assert!((one.time / other.time - 1.0).abs() < 1e-9);
         }
     }
 }

@@ -273,6 +273,7 @@ fn thick(section: Section, winding: Option<&WindingPlan>) -> Result<Geometry, Fa
 fn in_air(diameter: f64, length: f64, permeance: f64) -> Geometry {
     let mut geometry = Geometry::in_air(length, FRAC_PI_4 * diameter * diameter, permeance);
     geometry.mean_turn = Some(PI * diameter);
+    geometry.layer_breadth = Some(length);
     geometry
 }
 

@@ -127,6 +127,7 @@ impl Shape for Toroid {
             practical_fill: PRACTICAL_FILL,
         };
         geometry.window = Some(window);
+        geometry.layer_breadth = Some(PI * inner);
         geometry
             .remarks
             .extend(winding.and_then(|winding| winding.crowding(window)));

@@ -34,6 +34,19 @@ pub struct Wire {
     pub outer: f64,
     /// Room that one turn takes in a window [m²]: a square over the insulated wire, or a foil's section.
     pub cell: f64,
+    /// What its field sees of it.
+    pub conductors: Conductors,
+}
+
+/// The conductors of a turn. SI units.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum Conductors {
+    /// One round wire of a bare diameter [m].
+    Round(f64),
+    /// Insulated strands, so many of a bare diameter [m], twisted so that all carry the same current.
+    Strands(f64, f64),
+    /// A sheet of a thickness and a width [m].
+    Sheet(f64, f64),
 }
 
 impl Wire {
@@ -45,6 +58,7 @@ impl Wire {
             bare_diameter: Some(diameter),
             outer,
             cell: outer * outer,
+            conductors: Conductors::Round(diameter),
         }
     }
 
@@ -60,6 +74,7 @@ impl Wire {
             bare_diameter: Some(outer),
             outer,
             cell: outer * outer,
+            conductors: Conductors::Strands(strands as f64, strand_diameter),
         }
     }
 
@@ -70,6 +85,7 @@ impl Wire {
             bare_diameter: None,
             outer: thickness,
             cell: thickness * width,
+            conductors: Conductors::Sheet(thickness, width),
         }
     }
 

@@ -143,6 +143,7 @@ impl Swings {
             if self.whole.swing(unknown) < floor {
                 *scale = floor;
             }
+            *scale = scale.min(circuit.unknowns[unknown].reach);
         }
         scales
     }

@@ -25,6 +25,7 @@ impl Circuit {
                 element: None,
                 what: "potential",
                 measure: Measure::Voltage,
+                reach: f64::INFINITY,
             })
             .collect();
         let mut offered: Vec<Offer> = Vec::new();

@@ -130,6 +130,10 @@ impl Circuit {
     /// The impulsive part of a current meets the mean of the voltages before and after, that of a voltage the mean of
     /// the currents: what a linear change of both within the instant gives, exact for linear charges and flux linkages.
     pub fn impulse(&self, entry: usize, impulse: &Impulse, time: f64) -> f64 {
+        let energy = self.entries[entry].element.energy();
+        if let Some(energy) = energy.impulse(&impulse.before, &impulse.after) {
+            return energy;
+        }
         let nodes = &self.entries[entry].nodes;
         let points = [
             (&impulse.before, &impulse.mode_before),

@@ -93,7 +93,7 @@ impl Instant {
 
         let moves = self.moves(system, newton, at, x, counted);
         length = length.max(256.0 * f64::EPSILON * at.time.abs());
-        self.after(
+        while let Err(failure) = self.after(
             system,
             newton,
             (at, length, moves),
@@ -101,7 +101,14 @@ impl Instant {
             charge,
             x,
             counted,
-        )?;
+        ) {
+            if length >= LONGEST_INSTANT {
+                return Err(failure);
+            }
+            length *= 10.0;
+            x.copy_from_slice(&self.meeting.x);
+        }
+        self.meeting.rates[1] = 1.0 / length;
         while length < LONGEST_INSTANT {
             tolerances.weigh(x, &mut self.weights);
             let shows = newton.rounding(charge, 1.0 / length, &self.weights);

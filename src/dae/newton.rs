@@ -7,7 +7,7 @@
 use super::pattern::Pattern;
 use super::statistics::Statistics;
 use super::system::{Evaluation, Point, System};
-use super::tolerances::{SIGNS, lags, largest, rounding};
+use super::tolerances::{SIGNS, drowns, lags, largest, rounding};
 use super::trouble::Trouble;
 use crate::math::{Elimination, Matrix};
 
@@ -114,15 +114,16 @@ impl Newton {
         most
     }
 
-    /// The size below which a Newton step is rounding and nothing else.
+    /// True where the last Newton step is rounding and nothing else in every unknown that it moves by more than `close`.
     #[cold]
-    fn noise(
+    fn is_noise(
         &mut self,
         pattern: &Pattern,
         equation: &Equation<'_>,
         x: &[f64],
         weights: &[f64],
-    ) -> f64 {
+        close: f64,
+    ) -> bool {
         let out = &self.out;
         let mut terms: Vec<f64> = (0..x.len())
             .map(|row| {
@@ -135,15 +136,19 @@ impl Newton {
             x,
             &mut terms,
         );
-        let mut most = 8.0 * f64::EPSILON * largest(x, weights).0;
+        self.step_before.copy_from_slice(&self.step);
+        let mut noise: Vec<f64> = x.iter().map(|x| 8.0 * f64::EPSILON * x.abs()).collect();
         for signs in SIGNS {
             for (row, (step, terms)) in self.step.iter_mut().zip(&terms).enumerate() {
                 *step = rounding(row, *terms, signs);
             }
             self.matrix.solve(&mut self.step);
-            most = most.max(largest(&self.step, weights).0);
+            for (noise, step) in noise.iter_mut().zip(&self.step) {
+                *noise = noise.max(step.abs());
+            }
         }
-        most
+        self.step.copy_from_slice(&self.step_before);
+        drowns(&self.step, &noise, weights, close)
     }
 
     /// Solves from the guess in `x`; leaves the solution there. `out` then holds the last evaluation, one step before.
@@ -207,7 +212,7 @@ impl Newton {
                 return Ok(());
             }
             self.step_before.copy_from_slice(&self.step);
-            if rate > 0.5 && size <= self.noise(system.pattern(), equation, x, weights) {
+            if rate > 0.5 && self.is_noise(system.pattern(), equation, x, weights, rules.close) {
                 return Ok(());
             }
             // Slow or growing with old slopes: take new ones at the present point.

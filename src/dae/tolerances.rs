@@ -74,11 +74,45 @@ pub(crate) fn lags(step: &[f64], before: &[f64], weights: &[f64], close: f64) ->
     })
 }
 
-/// Patterns of signs with which rounding is tried: what cancels in one (two rows of one branch) adds up in the other.
-pub(crate) const SIGNS: [[f64; 2]; 2] = [[1.0, -1.0], [1.0, 1.0]];
+/// True where every entry of a Newton step that is above `close` tolerances is below what rounding does to it, `noise`.
+///
+/// Every entry of its own: beside a current of megamperes, whose last digit moves, a voltage may still have far to go.
+pub(crate) fn drowns(step: &[f64], noise: &[f64], weights: &[f64], close: f64) -> bool {
+    let mut entries = step.iter().zip(noise).zip(weights);
+    entries.all(|((step, noise), weight)| step.abs() <= noise.max(close / weight))
+}
+
+/// Patterns of signs with which rounding is tried: what cancels in one (two rows of one branch, two windings on one
+/// core) adds up in another. Any two of eight rows in a row differ in sign in some of them (Walsh's functions).
+pub(crate) const SIGNS: [[f64; 8]; 4] = [
+    [1.0, -1.0, 1.0, -1.0, 1.0, -1.0, 1.0, -1.0],
+    [1.0, 1.0, 1.0, 1.0, 1.0, 1.0, 1.0, 1.0],
+    [1.0, 1.0, -1.0, -1.0, 1.0, 1.0, -1.0, -1.0],
+    [1.0, 1.0, 1.0, 1.0, -1.0, -1.0, -1.0, -1.0],
+];
 
 /// What rounding may do to a row whose terms are of this size.
 #[inline]
-pub(crate) fn rounding(row: usize, terms: f64, signs: [f64; 2]) -> f64 {
-    4.0 * f64::EPSILON * terms * signs[row % 2]
+pub(crate) fn rounding(row: usize, terms: f64, signs: [f64; 8]) -> f64 {
+    4.0 * f64::EPSILON * terms * signs[row % 8]
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_step_drowns_only_where_each_of_its_entries_does() {
+        let (noise, weights) = ([1e-3, 1e-15], [1e10, 1e7]);
+        assert!(drowns(&[6e-4, 1e-10], &noise, &weights, 1e-2));
+        assert!(!drowns(&[6e-4, 0.05], &noise, &weights, 1e-2));
+    }
+
+    #[test]
+    fn any_two_of_eight_rows_differ_in_sign_in_some_pattern_and_agree_in_another() {
+        for (a, b) in (0..8).flat_map(|a| (0..a).map(move |b| (a, b))) {
+            assert!(SIGNS.iter().any(|signs| signs[a] != signs[b]), "{a} {b}");
+            assert!(SIGNS.iter().any(|signs| signs[a] == signs[b]), "{a} {b}");
+        }
+    }
 }

@@ -35,6 +35,8 @@ pub struct Claimed {
     pub what: &'static str,
     /// Its unit's kind.
     pub measure: Measure,
+    /// Largest swing that its tolerance may be relative to, in its own unit: a law of it bends within far less.
+    pub reach: f64,
 }
 
 /// The ledger of numbers while one element claims its own.
@@ -93,8 +95,18 @@ impl Claims<'_> {
             element: Some(self.element),
             what,
             measure,
+            reach: f64::INFINITY,
         });
         number
+    }
+
+    /// The tolerances of these unknowns are relative to no more than `reach` of their own unit.
+    pub fn reach(&mut self, unknowns: [Unknown; 2], reach: f64) {
+        for unknown in unknowns {
+            if let Some(claimed) = self.unknowns.get_mut(unknown.0 as usize) {
+                claimed.reach = claimed.reach.min(reach);
+            }
+        }
     }
 
     /// Reserves `count` mode values; the element sees them as its own slice.

@@ -3,8 +3,8 @@
 use super::claims::{Claims, Measure, Wanted};
 use super::element::{Element, Energy, Path, PathKind, Point, Unknown, Unsound};
 use super::junction::{
-    BreakdownKeys, CHARGE_KEYS, ChargeKeys, Conduction, Depletion, Slope, VOLTS_PER_KELVIN,
-    saturation_at,
+    BreakdownKeys, CHARGE_KEYS, ChargeKeys, Conduction, Depletion, REACH, Slope, VOLTS_PER_KELVIN,
+    charging, saturation_at,
 };
 use super::kind::{ElementKind, Made, Surroundings, named, reference_temperature};
 use super::stamper::Stamper;
@@ -259,6 +259,7 @@ impl Element for Diode {
         (self.anode, self.cathode) = (claims.terminal(anode), claims.terminal(cathode));
         self.inner =
             (self.resistance > 0.0).then(|| claims.unknown("junction potential", Measure::Voltage));
+        claims.reach([self.top(), self.cathode], REACH);
         let followed = claims.wants(Wanted::Current(0)) || claims.wants(Wanted::Current(1));
         let hidden = claims.probed && self.inner.is_none() && self.stores();
         self.current = (followed || hidden).then(|| claims.unknown("current", Measure::Current));
@@ -343,6 +344,15 @@ impl Element for Diode {
 }
 
 impl Energy for Diode {
+    fn impulse(&self, before: &[f64], after: &[f64]) -> Option<f64> {
+        if self.inner.is_some() || !self.stores() {
+            return None;
+        }
+        let [from, to] = [before, after].map(|x| self.junction_voltage(x));
+        let width = self.law.slope_voltage;
+        Some(charging(from, to, width, |v| self.charge(v).0))
+    }
+
     fn currents(&self, at: Point<'_>, out: &mut [f64]) {
         let current = match (self.current, self.inner) {
             (Some(i), _) => i.of(at.x),

@@ -113,6 +113,11 @@ pub trait Energy {
     fn loss(&self, at: Point<'_>) -> f64;
     /// Energy in its state function [J].
     fn stored(&self, at: Point<'_>) -> f64;
+    /// Energy [J] that enters when unknowns move at once from `before` to `after`, where the charge or the flux linkage
+    /// that moves is not linear: the integral of its own law along the way. None where it is linear or does not move.
+    fn impulse(&self, _before: &[f64], _after: &[f64]) -> Option<f64> {
+        None
+    }
     /// True for sources, which stand outside the balance.
     fn is_source(&self) -> bool {
         false

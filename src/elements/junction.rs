@@ -6,6 +6,7 @@
 //! Sources: the Shockley diode law and the abrupt-junction depletion law, as textbooks give them.
 
 use super::element::{Branch, Unsound};
+use crate::math::quadrature::Rule;
 use crate::netlist::Fields;
 use crate::netlist::{Key, Takes, Value, Values};
 use crate::units;
@@ -21,6 +22,11 @@ const LARGEST: f64 = 1e9;
 /// Its current stays as the law says; but a node that nothing else holds needs some slope to be found at all, enough to
 /// show beside the conductance of a closed switch there.
 pub const LEAST_SLOPE: f64 = 1e-12;
+
+/// The tolerance of a junction's potentials is relative to no more than this [V]: beside a kick of megavolts elsewhere a
+/// tolerance of volts would let the junction stand where it conducts anything. At 100 V the circuits of everyday take as
+/// many steps as without, at 10 V up to half as many again.
+pub const REACH: f64 = 100.0;
 
 /// exp(u) and its slope, continued by the tangent above `steepest`.
 #[inline]
@@ -218,11 +224,15 @@ impl Depletion {
             return (c * v, c);
         }
         let half = 0.5 * b;
-        let below = v.min(half);
-        let rest = 1.0 - below / b;
-        let power = rest.powf(-m);
-        let mut charge = c * b / (1.0 - m) * (1.0 - rest * power);
-        let mut capacitance = c * power;
+        let below = v.min(half) / b;
+        // 1 - (1 - below)^(1 - m), which must not lose its digits near zero: an instant divides the charge by its length.
+        let fallen = if m == 0.5 {
+            below / (1.0 + (1.0 - below).sqrt())
+        } else {
+            -((1.0 - m) * (-below).ln_1p()).exp_m1()
+        };
+        let mut charge = c * b / (1.0 - m) * fallen;
+        let mut capacitance = c * (1.0 - fallen) / (1.0 - below);
         if v > half {
             let top = c * 2f64.powf(m);
             charge += top * ((1.0 - m) * (v - half) + m * (v * v - half * half) / b);
@@ -251,6 +261,22 @@ impl Depletion {
         }
         energy
     }
+}
+
+/// Energy [J] that moves a charge law `q` [C] at once from one voltage [V] to another: the integral of v dq, taken in
+/// parts as v q less the integral of q dv over stretches that double in width from zero on, the first `width` [V] wide.
+pub fn charging(from: f64, to: f64, width: f64, q: impl Fn(f64) -> f64) -> f64 {
+    let rule = Rule::legendre(8);
+    let up_to = |end: f64| {
+        let (mut sum, mut near, mut step) = (0.0, 0.0, width);
+        while near < end.abs() {
+            let far = end.abs().min(near + step);
+            sum += rule.integrate(near.copysign(end), far.copysign(end), &q);
+            (near, step) = (far, 2.0 * step);
+        }
+        sum
+    };
+    to * q(to) - from * q(from) - (up_to(to) - up_to(from))
 }
 
 /// Keys of a forward junction.
@@ -387,6 +413,32 @@ mod tests {
         built_in: 0.7,
         exponent: 0.5,
     };
+
+    #[test]
+    fn a_charge_near_zero_keeps_its_digits() {
+        // C v (1 + m v/(2 V)), the law's own series.
+        for exponent in [0.3, 0.5, 0.7] {
+            let shape = Depletion { exponent, ..SHAPE };
+            for v in [-1e-9, -1e-13, 1e-16, 1e-12] {
+                let series = 20e-12 * v * (1.0 + 0.5 * exponent * v / 0.7);
+                assert_relative_eq!(shape.charge(v).0, series, max_relative = 1e-15);
+            }
+        }
+    }
+
+    #[test]
+    fn charging_at_once_takes_the_energy_of_the_state_function() {
+        for (from, to) in [(-300.0, 0.3), (0.5, -40.0), (0.0, 200.0), (-2.0, -1.0)] {
+            let charged = charging(from, to, 0.03, |v| SHAPE.charge(v).0);
+            let stored = SHAPE.energy(to) - SHAPE.energy(from);
+            assert_relative_eq!(charged, stored, max_relative = 1e-9);
+        }
+        // Transit charge: the integral of v dq of Is (exp(v/s) - 1) is Is (exp(v/s) (v - s) + s).
+        let s = 0.0466;
+        let charged = charging(0.0, 0.8, s, |v| 1e-9 * (v / s).exp_m1());
+        let stored = 1e-9 * ((0.8 / s).exp() * (0.8 - s) + s);
+        assert_relative_eq!(charged, stored, max_relative = 1e-9);
+    }
 
     #[test]
     fn charge_and_energy_are_integrals_of_the_capacitance() {

@@ -4,7 +4,9 @@
 use super::claims::Claims;
 use super::diode::{Diode, JunctionKeys};
 use super::element::{Branch, Element, Energy, Path, PathKind, Point, Unsound};
-use super::junction::{Breakdown, BreakdownKeys, CHARGE_KEYS, ChargeKeys, LEAST_SLOPE, Slope};
+use super::junction::{
+    Breakdown, BreakdownKeys, CHARGE_KEYS, ChargeKeys, LEAST_SLOPE, REACH, Slope,
+};
 use super::kind::{ElementKind, Made, NODES, Surroundings, pair, reference_temperature};
 use super::stamper::Stamper;
 use crate::netlist::{Fields, Key, Takes, Value, Values};
@@ -208,6 +210,7 @@ impl Element for BothWays {
     fn claim(&mut self, claims: &mut Claims<'_>) {
         let hidden = claims.probed && self.capacitance > 0.0;
         self.branch = Branch::claim(claims, hidden);
+        claims.reach([self.branch.a, self.branch.b], REACH);
     }
 
     fn stamp(&self, at: Point<'_>, into: &mut Stamper<'_>) {

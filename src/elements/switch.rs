@@ -8,7 +8,7 @@ use super::element::{
     Branch, Element, Energy, Follower, Happening, Path, PathKind, Point, Rhythm, Switching, Terms,
     Unsound, sum,
 };
-use super::junction::{Breakdown, VOLTS_PER_KELVIN};
+use super::junction::{Breakdown, REACH, VOLTS_PER_KELVIN};
 use super::kind::{ElementKind, Made, NODES, Surroundings, pair};
 use super::stamper::Stamper;
 use super::switch_command::{Command, read_command};
@@ -266,6 +266,9 @@ impl Element for Switch {
 
     fn claim(&mut self, claims: &mut Claims<'_>) {
         self.branch = Branch::claim(claims, false);
+        if self.keys.breakdown.is_some() {
+            claims.reach([self.branch.a, self.branch.b], REACH);
+        }
         claims.modes(4);
         claims.guards(usize::from(self.command.watch().is_some()));
     }

@@ -11,6 +11,7 @@ mod command_line;
 mod e_series;
 mod engine;
 mod floors;
+mod hard_circuits;
 mod inductance_of_air_coils;
 mod ladder;
 mod long_runs;

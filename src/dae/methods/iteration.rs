@@ -6,7 +6,7 @@
 use super::super::dense::Dense;
 use super::super::statistics::Statistics;
 use super::super::system::{Point, System};
-use super::super::tolerances::{SIGNS, lags, largest, rounding};
+use super::super::tolerances::{SIGNS, drowns, lags, largest, rounding};
 use super::super::trouble::Trouble;
 use super::Trial;
 use super::collocation::{Collocation, Failure, sound};
@@ -16,8 +16,8 @@ const CLOSE: f64 = 0.03;
 /// A first Newton step below this share of a tolerance is the last one.
 const VERY_CLOSE: f64 = 0.003;
 /// Iterations at most with one pair of slopes, and with those of each stage: many, for an exponential law above its
-/// solution lets the iteration down in equal small steps.
-const LONGEST: [usize; 2] = [6, 40];
+/// solution lets the iteration down in equal small steps, some forty from either end of a blocking junction.
+const LONGEST: [usize; 2] = [6, 100];
 /// The stages' own factors are kept while the iteration contracts faster than this.
 const BRISK: f64 = 0.1;
 /// The last polynomial is continued at most so many of its own lengths.
@@ -109,7 +109,7 @@ impl<const S: usize> Collocation<S> {
             }
             if before.is_finite() {
                 rate = size / before;
-                if rate > 0.5 && size <= self.noise(trial, own) {
+                if rate > 0.5 && self.is_noise(trial, own) {
                     return Ok(());
                 }
                 eta = if rate < 1.0 {
@@ -203,9 +203,10 @@ impl<const S: usize> Collocation<S> {
         }
     }
 
-    /// The size below which a Newton step is rounding and nothing else. Overwrites the steps, which are then nought.
+    /// True where the Newton steps are rounding and nothing else in every unknown that they move by much; they are then
+    /// nought.
     #[cold]
-    fn noise(&mut self, trial: Trial<'_>, own: bool) -> f64 {
+    fn is_noise(&mut self, trial: Trial<'_>, own: bool) -> bool {
         let n = self.defect.len();
         let rates = self
             .table
@@ -229,7 +230,9 @@ impl<const S: usize> Collocation<S> {
                 terms,
             );
         }
-        let mut most = 8.0 * f64::EPSILON * largest(self.end(), trial.weights).0;
+        let stages = self.stages[n..].iter();
+        let mut noise: Vec<f64> = stages.map(|x| 8.0 * f64::EPSILON * x.abs()).collect();
+        let steps = self.steps.clone();
         for signs in SIGNS {
             if own {
                 for (k, right) in self.coupled.right_mut().iter_mut().enumerate() {
@@ -237,20 +240,31 @@ impl<const S: usize> Collocation<S> {
                 }
                 self.coupled.solve();
                 for (k, step) in self.coupled.right_mut().iter().enumerate() {
-                    most = most.max((step * trial.weights[k / S]).abs());
+                    let noise = &mut noise[k % S * n + k / S];
+                    *noise = noise.max(step.abs());
                 }
             } else {
                 for (k, step) in self.steps.iter_mut().enumerate() {
                     *step = rounding(k % n, terms[k], signs);
                 }
                 self.split.solve(self.table, &mut self.steps);
-                for steps in self.steps.chunks_exact(n.max(1)) {
-                    most = most.max(largest(steps, trial.weights).0);
+                for (noise, step) in noise.iter_mut().zip(&self.steps) {
+                    *noise = noise.max(step.abs());
                 }
             }
         }
-        self.steps.fill(0.0);
-        most
+        let stages = steps
+            .chunks_exact(n.max(1))
+            .zip(noise.chunks_exact(n.max(1)));
+        let drowned = stages
+            .into_iter()
+            .all(|(step, noise)| drowns(step, noise, trial.weights, CLOSE));
+        if drowned {
+            self.steps.fill(0.0);
+        } else {
+            self.steps = steps;
+        }
+        drowned
     }
 
     /// Adds the Newton steps; their size, the unknown that sets it, and whether the system limited one.

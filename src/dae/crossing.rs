@@ -8,6 +8,10 @@ use super::tolerances::largest;
 /// step's end.
 const CLOSE: f64 = 0.05;
 
+/// Share of a step by which an event may come late that the clock makes more than the unknowns do: a guard that rises
+/// while they stand still.
+const LATE: f64 = 1e-6;
+
 /// Points close to the start of a step at which guards are looked at just after an event.
 const EARLY: [f64; 3] = [1e-6, 1e-3, 3e-2];
 
@@ -119,8 +123,9 @@ impl Watch {
         }
         let (far, _) = largest(&self.moved, weights);
         let length = step.to - step.from;
+        let late = 1.0 - root > LATE && self.clocked(system, step, guard, root);
         if root == 1.0
-            || far <= CLOSE
+            || (far <= CLOSE && !late)
             || (1.0 - root) * length <= 4.0 * f64::EPSILON * step.to.abs()
             || located > 10
         {
@@ -128,13 +133,32 @@ impl Watch {
         }
         // Aim a little behind the root, so that the guard has risen at the end of the step taken anew.
         let slope = far / (1.0 - root);
-        let behind = (0.3 * CLOSE / slope).min(0.3 * (1.0 - root));
+        let share = if late { LATE } else { 0.3 };
+        let behind = (0.3 * CLOSE / slope).min(share * (1.0 - root));
         let instant = step.from + (root + behind) * length;
         Crossing::Before(
             instant
                 .max(step.from + 4.0 * f64::EPSILON * step.from.abs())
                 .min(step.to),
         )
+    }
+
+    /// True where most of what the guard has risen by since the root is the clock's doing.
+    fn clocked<S: System + ?Sized>(
+        &mut self,
+        system: &S,
+        step: &Step<'_>,
+        guard: usize,
+        root: f64,
+    ) -> bool {
+        let at = Point {
+            time: step.from + root * (step.to - step.from),
+            x: step.x1,
+            mode: step.mode,
+        };
+        system.guards(at, &mut self.now);
+        let (risen, end) = (self.end[guard] - self.now[guard], self.end[guard]);
+        risen.abs() > 0.5 * end.abs()
     }
 
     /// Where in the step, up to `within`, this guard first rises: looked for between the polynomial's own points and,

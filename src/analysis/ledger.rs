@@ -147,8 +147,10 @@ impl LedgerKeeper {
     pub fn impulse(&mut self, circuit: &Circuit, impulse: &Impulse, time: f64) {
         for (&k, account) in self.entries.iter().zip(&mut self.accounts) {
             let energy = circuit.impulse(k, impulse, time);
-            account.absorbed += energy;
-            account.turnover += energy.abs();
+            let (flown, lost) = circuit.meanwhile(k, impulse, time);
+            account.absorbed += energy + flown;
+            account.dissipated += lost;
+            account.turnover += energy.abs() + flown.abs().max(lost);
         }
     }
 

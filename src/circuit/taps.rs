@@ -151,6 +151,18 @@ impl Circuit {
         impulse.length * nodes.iter().enumerate().map(energy).sum::<f64>()
     }
 
+    /// Energy that flows into an element's terminals and that its own loss law turns to heat [J] while an instant passes,
+    /// the impulse aside: a picosecond's discharge has a thousandth of it done by then.
+    pub fn meanwhile(&self, entry: usize, impulse: &Impulse, time: f64) -> (f64, f64) {
+        let at = Point {
+            time,
+            x: &impulse.after,
+            mode: &impulse.mode,
+        };
+        let (power, loss) = (self.power(entry, at), self.loss(entry, at));
+        (impulse.spent * power, impulse.spent * loss)
+    }
+
     /// Power turned to heat by an element's own loss law [W].
     pub fn loss(&self, entry: usize, at: Point<'_>) -> f64 {
         let entry = &self.entries[entry];

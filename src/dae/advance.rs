@@ -56,6 +56,8 @@ pub struct Impulse {
     pub mode: Vec<f64>,
     /// Its length [s].
     pub length: f64,
+    /// Time [s] that its steps spend with the values after it: what flows meanwhile is no impulse, but flows.
+    pub spent: f64,
 }
 
 /// A step that was kept, with the method's own polynomial through it.

@@ -210,6 +210,7 @@ impl Events {
             mode_before: mode_held,
             mode: state.mode.clone(),
             length: 1.0 / self.instant.meeting.rates[0],
+            spent: self.instant.spent,
         });
         Ok(true)
     }

@@ -40,6 +40,8 @@ pub(crate) struct Meeting {
 pub(crate) struct Instant {
     /// How charges met in the last one.
     pub meeting: Meeting,
+    /// Time [s] that the last one's steps have spent.
+    pub spent: f64,
     weights: Vec<f64>,
     later: Vec<f64>,
 }
@@ -51,6 +53,7 @@ impl Instant {
                 rates: [1.0 / INSTANT; 2],
                 x: vec![0.0; size],
             },
+            spent: 0.0,
             weights: vec![0.0; size],
             later: vec![0.0; size],
         }
@@ -135,6 +138,9 @@ impl Instant {
             x.copy_from_slice(&longer);
             self.meeting.rates[1] = 1.0 / length;
         }
+        // A step along a moving clock leads back to the instant itself.
+        let [first, second] = self.meeting.rates.map(|rate| 1.0 / rate);
+        self.spent = if moves { first } else { first + second };
         newton.forget();
         Ok(())
     }

@@ -11,8 +11,9 @@ use crate::units::Kind;
 const MOST_UNASKED: usize = 24;
 
 /// The waveforms of elements that are recorded unasked, by kind of element.
-const UNASKED: [(&str, &[&str]); 3] = [
+const UNASKED: [(&str, &[&str]); 4] = [
     ("switch", &["voltage across"]),
+    ("contact", &["voltage across"]),
     (
         "coil",
         &["winding current of", "flux density in", "saturation of"],
@@ -146,7 +147,8 @@ impl Signals {
     pub fn impulse(&mut self, circuit: &Circuit, impulse: &Impulse, time: f64) {
         for signal in &mut self.list {
             if let Tap::Energy(k) = signal.tap {
-                signal.energy += circuit.impulse(k, impulse, time);
+                let (flown, _) = circuit.meanwhile(k, impulse, time);
+                signal.energy += circuit.impulse(k, impulse, time) + flown;
             }
         }
     }

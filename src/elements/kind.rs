@@ -18,6 +18,13 @@ pub struct ElementKind {
     pub read: fn(&Fields<'_>, &Surroundings<'_>) -> Option<Made>,
 }
 
+impl ElementKind {
+    /// True where an element of this kind does nothing but open and close.
+    pub fn is_switch(&self) -> bool {
+        matches!(self.word, "switch" | "contact")
+    }
+}
+
 /// The keys that any element takes; the circuit's builder reads them.
 pub const COMMON_KEYS: &[Key] = &[
     Key::optional("kind", Takes::Text, "the kind of element"),

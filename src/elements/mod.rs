@@ -3,10 +3,13 @@
 //! An element reads its keys into parameter handles, derives its numbers from the parameters' values, claims its
 //! unknowns and stamps its share of d/dt q(x) + f(x, t, mode) = 0.
 
+pub mod arc;
 pub mod cable;
 pub mod capacitor;
 pub mod claims;
 pub mod coil;
+pub mod contact;
+pub mod contact_pair;
 pub mod coupled_inductors;
 pub mod current_source;
 pub mod dependent;
@@ -17,6 +20,8 @@ pub mod element;
 pub mod inductor;
 pub mod junction;
 pub mod kind;
+pub mod movement;
+pub mod rebounds;
 pub mod resistor;
 pub mod skin;
 pub mod stamper;
@@ -42,6 +47,7 @@ pub const KINDS: &[ElementKind] = &[
     cable::KIND,
     capacitor::KIND,
     coil::KIND,
+    contact::KIND,
     coupled_inductors::KIND,
     current_source::KIND,
     dependent_current_source::KIND,

@@ -1,7 +1,4 @@
-//! Switch: a conductance whose logarithm moves linearly during `transition`, from the instant of a change on.
-//!
-//! Modes: where it is (resting or moving, open or closed), since when, and the logarithm of the conductance it left from.
-//! An edge during a transition departs from where the conductance is, at the same slope.
+//! Switch: a conductance that moves between two values (see `movement`), by the clock or by a watched signal.
 
 use super::claims::Claims;
 use super::element::{
@@ -10,8 +7,13 @@ use super::element::{
 };
 use super::junction::{Breakdown, REACH, VOLTS_PER_KELVIN};
 use super::kind::{ElementKind, Made, NODES, Surroundings, pair};
+use super::movement::{
+    self, CLOSED_RESISTANCE, Movement, OPEN_RESISTANCE, TRANSITION, is_or_gets_closed,
+};
 use super::stamper::Stamper;
-use super::switch_command::{Command, read_command};
+use super::switch_command::{
+    CLOSES_AT, Command, INITIALLY, OPENS_AT, SQUARE, WATCHES, read_command,
+};
 use crate::netlist::{Fields, Key, Takes, Value, Values};
 use crate::signals::Phrase;
 use crate::units;
@@ -22,46 +24,14 @@ pub const KIND: ElementKind = ElementKind {
     about: "A switch or driver transistor seen as a conductance that changes over a transition time.",
     keys: &[
         NODES,
-        Key::required(
-            "closed_resistance",
-            Takes::Quantity(units::RESISTANCE),
-            "resistance when closed",
-        ),
-        Key::required(
-            "open_resistance",
-            Takes::Quantity(units::RESISTANCE),
-            "resistance when open",
-        ),
-        Key::required(
-            "transition",
-            Takes::Quantity(units::TIME),
-            "duration of a change; 0 s is an ideal jump",
-        ),
-        Key::optional(
-            "initially",
-            Takes::Word(&["open", "closed"]),
-            "state at the start",
-        ),
-        Key::optional(
-            "opens_at",
-            Takes::List(units::TIME),
-            "instants at which it begins to open",
-        ),
-        Key::optional(
-            "closes_at",
-            Takes::List(units::TIME),
-            "instants at which it begins to close",
-        ),
-        Key::optional(
-            "square",
-            Takes::Map(super::switch_command::SQUARE_KEYS),
-            "closed while the square wave is high",
-        ),
-        Key::optional(
-            "watches",
-            Takes::Map(super::switch_command::WATCH_KEYS),
-            "opens and closes by a signal",
-        ),
+        CLOSED_RESISTANCE,
+        OPEN_RESISTANCE,
+        TRANSITION,
+        INITIALLY,
+        OPENS_AT,
+        CLOSES_AT,
+        SQUARE,
+        WATCHES,
         Key::optional(
             "breakdown_voltage",
             Takes::Quantity(units::VOLTAGE),
@@ -76,23 +46,11 @@ pub const KIND: ElementKind = ElementKind {
     read,
 };
 
-/// Places in the mode slice.
-const STATE: usize = 0;
-const SINCE: usize = 1;
-const LEFT_FROM: usize = 2;
-/// Number of the first period of a square: 0, or minus infinity where it has always run.
-const FIRST: usize = 3;
-
-/// Values of `mode[STATE]`.
-const OPEN: f64 = 0.0;
-const CLOSED: f64 = 1.0;
-const OPENING: f64 = 2.0;
-const CLOSING: f64 = 3.0;
+/// Place behind the movement's modes: number of the first period of a square, 0, or minus infinity where it has always
+/// run.
+const FIRST: usize = movement::MODES;
 
 struct Keys {
-    closed: Value,
-    open: Value,
-    transition: Value,
     breakdown: Option<(Value, Value)>,
     ambient: Value,
 }
@@ -101,12 +59,7 @@ struct Switch {
     keys: Keys,
     command: Command,
     initially_closed: bool,
-    /// Logarithms of both conductances.
-    closed: f64,
-    open: f64,
-    /// Conductances closed and open [S].
-    at_rest: (f64, f64),
-    transition: f64,
+    movement: Movement,
     breakdown: Option<Breakdown>,
     branch: Branch,
     watched: Terms,
@@ -114,9 +67,7 @@ struct Switch {
 
 fn read(fields: &Fields<'_>, around: &Surroundings<'_>) -> Option<Made> {
     let terminals = pair(fields);
-    let closed = fields.positive("closed_resistance");
-    let open = fields.positive("open_resistance");
-    let transition = fields.non_negative("transition");
+    let movement = Movement::read(fields);
     let breakdown = if fields.has("breakdown_voltage") || fields.has("breakdown_resistance") {
         let voltage = fields.needed_with("breakdown_voltage", "breakdown_resistance");
         let resistance = fields.needed_with("breakdown_resistance", "breakdown_voltage");
@@ -126,9 +77,6 @@ fn read(fields: &Fields<'_>, around: &Surroundings<'_>) -> Option<Made> {
     };
     let (command, initially_closed) = read_command(fields)?;
     let keys = Keys {
-        closed: closed?,
-        open: open?,
-        transition: transition?,
         breakdown: match breakdown {
             Some(pair) => Some(pair?),
             None => None,
@@ -139,10 +87,7 @@ fn read(fields: &Fields<'_>, around: &Surroundings<'_>) -> Option<Made> {
         keys,
         command,
         initially_closed,
-        closed: 0.0,
-        open: 0.0,
-        at_rest: (0.0, 0.0),
-        transition: 0.0,
+        movement: movement?,
         breakdown: None,
         branch: Branch::default(),
         watched: Terms::new(),
@@ -151,69 +96,13 @@ fn read(fields: &Fields<'_>, around: &Surroundings<'_>) -> Option<Made> {
 }
 
 impl Switch {
-    /// Logarithm of the conductance at a time. Smooth at the arrival too, whose event ends it: derivatives look past it.
-    fn logarithm(&self, time: f64, mode: &[f64]) -> f64 {
-        match mode[STATE] {
-            OPENING => mode[LEFT_FROM] - self.slope() * (time - mode[SINCE]),
-            CLOSING => mode[LEFT_FROM] + self.slope() * (time - mode[SINCE]),
-            CLOSED => self.closed,
-            _ => self.open,
-        }
-    }
-
-    /// Change of the logarithm per second while moving.
-    fn slope(&self) -> f64 {
-        (self.closed - self.open) / self.transition
-    }
-
-    /// End of a movement; infinity at rest.
-    fn arrival(&self, mode: &[f64]) -> f64 {
-        let way = match mode[STATE] {
-            OPENING => mode[LEFT_FROM] - self.open,
-            CLOSING => self.closed - mode[LEFT_FROM],
-            _ => return f64::INFINITY,
-        };
-        // A whole way takes the transition as written, without the rounding of a quotient.
-        let fraction = way / (self.closed - self.open);
-        mode[SINCE]
-            + if fraction >= 1.0 {
-                self.transition
-            } else {
-                fraction * self.transition
-            }
-    }
-
-    fn is_or_gets_closed(mode: &[f64]) -> bool {
-        mode[STATE] == CLOSED || mode[STATE] == CLOSING
-    }
-
     /// Sets out towards a state; nothing happens where it is there or on the way.
     fn go(&self, closed: bool, time: f64, mode: &mut [f64]) -> Option<Happening> {
-        if Self::is_or_gets_closed(mode) == closed {
-            return None;
-        }
-        let from = self.logarithm(time, mode);
-        mode[LEFT_FROM] = from;
-        mode[SINCE] = time;
-        mode[STATE] = match (closed, self.transition > 0.0) {
-            (true, true) => CLOSING,
-            (false, true) => OPENING,
-            (true, false) => CLOSED,
-            (false, false) => OPEN,
-        };
-        Some(if closed {
+        self.movement.go(closed, time, mode).then_some(if closed {
             Happening::Closes
         } else {
             Happening::Opens
         })
-    }
-
-    fn conductance(&self, at: Point<'_>) -> f64 {
-        match at.mode[STATE] {
-            CLOSED => self.at_rest.0,
-            OPEN => self.at_rest.1,
-            _ => self.logarithm(at.time, at.mode).exp(),
-        }
     }
 
     /// Breakdown current [A] and slope [S].
@@ -230,7 +119,7 @@ impl Switch {
 
     /// Current [A] and slope [S].
     fn current(&self, at: Point<'_>, voltage: f64) -> (f64, f64) {
-        let conductance = self.conductance(at);
+        let conductance = self.movement.conductance(at.time, at.mode);
         let (current, slope) = self.broken_down(voltage);
         (conductance * voltage + current, conductance + slope)
     }
@@ -238,24 +127,7 @@ impl Switch {
 
 impl Element for Switch {
     fn derive(&mut self, values: &Values) -> Result<(), Unsound> {
-        let (closed, open) = (values[self.keys.closed], values[self.keys.open]);
-        if closed >= open {
-            return Err(Unsound {
-                word: "out-of-range",
-                key: "open_resistance",
-                headline: format!(
-                    "open, the switch has {}, closed {}",
-                    units::engineering(open, units::RESISTANCE, 4),
-                    units::engineering(closed, units::RESISTANCE, 4)
-                ),
-                help: "`open_resistance` must exceed `closed_resistance`; are they exchanged?"
-                    .into(),
-            });
-        }
-        self.closed = -closed.ln();
-        self.open = -open.ln();
-        self.at_rest = (self.closed.exp(), self.open.exp());
-        self.transition = values[self.keys.transition];
+        self.movement.derive(values)?;
         self.breakdown = self.keys.breakdown.map(|(voltage, resistance)| Breakdown {
             knee: values[voltage],
             resistance: values[resistance],
@@ -269,7 +141,7 @@ impl Element for Switch {
         if self.keys.breakdown.is_some() {
             claims.reach([self.branch.a, self.branch.b], REACH);
         }
-        claims.modes(4);
+        claims.modes(movement::MODES + 1);
         claims.guards(usize::from(self.command.watch().is_some()));
     }
 
@@ -321,7 +193,8 @@ impl Energy for Switch {
 
     fn loss(&self, at: Point<'_>) -> f64 {
         let voltage = self.branch.voltage(at.x);
-        voltage * voltage * self.conductance(at) + voltage * self.broken_down(voltage).0
+        voltage * voltage * self.movement.conductance(at.time, at.mode)
+            + voltage * self.broken_down(voltage).0
     }
 
     fn stored(&self, _at: Point<'_>) -> f64 {
@@ -345,9 +218,7 @@ impl Follower for Switch {
 
 impl Switching for Switch {
     fn start(&self, mode: &mut [f64]) {
-        mode[STATE] = if self.initially_closed { CLOSED } else { OPEN };
-        mode[SINCE] = 0.0;
-        mode[LEFT_FROM] = 0.0;
+        movement::at_rest(self.initially_closed, mode);
         mode[FIRST] = 0.0;
     }
 
@@ -360,58 +231,41 @@ impl Switching for Switch {
             return;
         };
         mode[FIRST] = f64::NEG_INFINITY;
-        mode[SINCE] = since;
-        let (moving, rest, left) = if closed {
-            (CLOSING, CLOSED, self.open)
-        } else {
-            (OPENING, OPEN, self.closed)
-        };
-        mode[LEFT_FROM] = left;
-        mode[STATE] = if time < since + self.transition {
-            moving
-        } else {
-            rest
-        };
+        self.movement.went(closed, since, time, mode);
     }
 
     fn earlier(&self, by: f64, mode: &mut [f64]) {
-        mode[SINCE] -= by;
+        movement::earlier(by, mode);
         if self.command.rhythm() == Rhythm::Once && by > 0.0 {
             self.start(mode);
         }
     }
 
     fn rest(&self, after: Happening, mode: &mut [f64]) -> bool {
-        mode[STATE] = if after == Happening::Closes {
-            CLOSED
+        mode[movement::STATE] = if after == Happening::Closes {
+            movement::CLOSED
         } else {
-            OPEN
+            movement::OPEN
         };
         true
     }
 
     fn next_event(&self, time: f64, mode: &[f64]) -> f64 {
-        let arrival = self.arrival(mode);
+        let arrival = self.movement.arrival(mode);
         let command = self.command.next(time, mode[FIRST]);
         // An arrival that is due is never missed, even where rounding puts it on the instant itself.
         arrival.min(command)
     }
 
     fn at_instant(&self, time: f64, mode: &mut [f64]) -> Option<Happening> {
-        if self.arrival(mode) <= time {
-            mode[STATE] = if Self::is_or_gets_closed(mode) {
-                CLOSED
-            } else {
-                OPEN
-            };
-        }
+        self.movement.arrive(time, mode);
         let closed = self.command.at(time, mode[FIRST])?;
         self.go(closed, time, mode)
     }
 
     fn guards(&self, at: Point<'_>, out: &mut [f64]) {
         if let Some(watch) = self.command.watch() {
-            out[0] = watch.guard(sum(&self.watched, at.x), Self::is_or_gets_closed(at.mode));
+            out[0] = watch.guard(sum(&self.watched, at.x), is_or_gets_closed(at.mode));
         }
     }
 
@@ -422,6 +276,6 @@ impl Switching for Switch {
         _x: &mut [f64],
         mode: &mut [f64],
     ) -> Option<Happening> {
-        self.go(!Self::is_or_gets_closed(mode), time, mode)
+        self.go(!is_or_gets_closed(mode), time, mode)
     }
 }

@@ -5,6 +5,37 @@ use crate::netlist::{Fields, Key, Takes, Value, Values};
 use crate::signals::{Phrase, read_phrase};
 use crate::units;
 
+/// The key of the state at the start.
+pub const INITIALLY: Key = Key::optional(
+    "initially",
+    Takes::Word(&["open", "closed"]),
+    "state at the start",
+);
+/// The key of the instants of opening.
+pub const OPENS_AT: Key = Key::optional(
+    "opens_at",
+    Takes::List(units::TIME),
+    "instants at which it begins to open",
+);
+/// The key of the instants of closing.
+pub const CLOSES_AT: Key = Key::optional(
+    "closes_at",
+    Takes::List(units::TIME),
+    "instants at which it begins to close",
+);
+/// The key of a square wave that moves it.
+pub const SQUARE: Key = Key::optional(
+    "square",
+    Takes::Map(SQUARE_KEYS),
+    "closed while the square wave is high",
+);
+/// The key of a signal that moves it.
+pub const WATCHES: Key = Key::optional(
+    "watches",
+    Takes::Map(WATCH_KEYS),
+    "opens and closes by a signal",
+);
+
 /// The keys of `square`.
 pub const SQUARE_KEYS: &[Key] = &[
     Key::required(

@@ -72,9 +72,11 @@ fn unbroken_switches(netlist: &Netlist, outcome: &Outcome, cautions: &mut Vec<Di
     for entry in circuit
         .entries
         .iter()
-        .filter(|entry| entry.kind.word == "switch")
+        .filter(|entry| entry.kind.is_switch())
     {
-        let broken_down = entry.node.get("breakdown_voltage").is_some();
+        let broken_down = ["breakdown_voltage", "arc"]
+            .iter()
+            .any(|key| entry.node.get(key).is_some());
         if broken_down || supply == 0.0 || within_rating(outcome, &entry.name) {
             continue;
         }

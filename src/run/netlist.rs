@@ -311,7 +311,7 @@ fn check_signals(circuit: &Circuit, readings: &[Reading], sink: &Sink) {
                 let words = circuit
                     .entries
                     .iter()
-                    .filter(|entry| entry.kind.word == "switch");
+                    .filter(|entry| entry.kind.is_switch());
                 let near = crate::netlist::nearest(
                     &event.element.element,
                     words.map(|entry| entry.name.as_str()),
@@ -404,7 +404,10 @@ fn check_sizing(circuit: &Circuit, sizing: Option<&Sizing>, sink: &Sink) {
         }
     }
     for (named, wanted) in [(&sizing.coil, "coil"), (&sizing.switch, "switch")] {
-        let right = |word: &str| word == wanted || (wanted == "coil" && word == "inductor");
+        let right = |word: &str| match wanted {
+            "coil" => matches!(word, "coil" | "inductor"),
+            _ => matches!(word, "switch" | "contact"),
+        };
         if circuit
             .find(&named.text)
             .is_some_and(|entry| right(entry.kind.word))

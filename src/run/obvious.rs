@@ -20,7 +20,8 @@ pub fn add(document: &mut Document, sources: &mut Sources) {
             .map(|entry| entry.key.clone())
             .collect()
     };
-    let (switches, coils) = (of_kind("switch"), of_kind("coil"));
+    let switches = [of_kind("switch"), of_kind("contact")].concat();
+    let coils = of_kind("coil");
     if switches.is_empty() || coils.is_empty() {
         return;
     }

@@ -40,7 +40,7 @@ pub fn suppressors(circuit: &Circuit, across: &Entry) -> Vec<Chain> {
         nodes: Vec::new(),
     };
     follow(circuit, from, to, &start, &mut found);
-    let is_switch = across.kind.word == "switch";
+    let is_switch = across.kind.is_switch();
     found.retain(|chain| is_suppressor(circuit, chain, is_switch));
     found
 }

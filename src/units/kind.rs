@@ -161,6 +161,13 @@ pub const VOLTAGE_RATE: Kind = Kind::new(
     VOLT.over(SECOND),
     "V/s, V/µs, kV/µs",
 );
+/// Electric field [V/m].
+pub const ELECTRIC_FIELD: Kind = Kind::new(
+    "an electric field",
+    "V/m",
+    VOLT.over(METRE),
+    "V/mm, kV/mm, V/µm",
+);
 /// Rate of rise of a current [A/s].
 pub const CURRENT_RATE: Kind = Kind::new("a current rate", "A/s", AMPERE.over(SECOND), "A/s, A/µs");
 /// Relative change per kelvin [1/K].
@@ -255,6 +262,7 @@ pub const ALL: &[Kind] = &[
     THERMAL_CAPACITY,
     CONDUCTANCE,
     VOLTAGE_RATE,
+    ELECTRIC_FIELD,
     CURRENT_RATE,
     TEMPERATURE_COEFFICIENT,
     VOLTAGE_PER_KELVIN,

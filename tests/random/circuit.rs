@@ -34,6 +34,7 @@ const KINDS: &[(&str, f64)] = &[
     ("dependent_voltage_source", 0.5),
     ("dependent_current_source", 0.5),
     ("switch", 3.0),
+    ("contact", 0.7),
     ("diode", 2.5),
     ("zener", 1.0),
     ("suppressor_diode", 1.0),
@@ -282,7 +283,8 @@ impl Maker {
             "current_source" => self.source(&nodes, "current", (1e-7, 10.0), "A"),
             "dependent_voltage_source" => self.dependent(&name, &a, "voltage"),
             "dependent_current_source" => self.dependent(&name, &a, "current"),
-            "switch" => self.switch(&nodes),
+            "switch" => self.switch(&nodes, (1e-3, 10.0)),
+            "contact" => self.contact(&nodes),
             "diode" | "zener" => self.diode(&a, &b, kind == "zener"),
             "suppressor_diode" => self.suppressor(&nodes),
             other => panic!("no maker for `{other}`"),
@@ -567,8 +569,9 @@ impl Maker {
         format!("nodes: [{own}, ground], follows: {signal}, gain: {gain}")
     }
 
-    fn switch(&mut self, nodes: &str) -> String {
-        let closed = self.quantity(1e-3, 10.0, "Ω");
+    /// Keys of a switch without a breakdown; its closed resistance lies in a range.
+    fn switched(&mut self, nodes: &str, closed: (f64, f64)) -> String {
+        let closed = self.quantity(closed.0, closed.1, "Ω");
         let open = self.quantity(1e3, 1e12, "Ω");
         let transition = if self.dice.chance(0.4) {
             "0 s".to_owned()
@@ -619,14 +622,55 @@ impl Maker {
                 format!("initially: {word}")
             }
         };
+        format!(
+            "{nodes}, closed_resistance: {closed}, open_resistance: {open}, transition: {transition}, {command}"
+        )
+    }
+
+    fn switch(&mut self, nodes: &str, closed: (f64, f64)) -> String {
+        let keys = self.switched(nodes, closed);
         let breakdown = self.perhaps(0.2, "breakdown_voltage", |maker| {
             let voltage = maker.quantity(5.0, 1e3, "V");
             let resistance = maker.quantity(1e-3, 100.0, "Ω");
             format!("{voltage}, breakdown_resistance: {resistance}")
         });
-        format!(
-            "{nodes}, closed_resistance: {closed}, open_resistance: {open}, transition: {transition}, {command}{breakdown}"
-        )
+        format!("{keys}{breakdown}")
+    }
+
+    /// A contact; its gap opens within the simulated time or never.
+    fn contact(&mut self, nodes: &str) -> String {
+        let keys = self.switched(nodes, (1e-3, 1.0));
+        let bounce = self.perhaps(0.5, "bounce", |maker| {
+            let count = 1 + maker.dice.below(4);
+            let first = maker.duration * maker.dice.over_decades(1e-4, 0.1);
+            let first = maker.time(first);
+            let restitution = maker.dice.between(0.2, 0.8);
+            let touch = maker.perhaps(0.3, "touch", |maker| {
+                let touch = maker.duration * maker.dice.over_decades(1e-4, 0.1);
+                maker.time(touch)
+            });
+            format!(
+                "{{count: {count}, first_duration: {first}, restitution: {restitution:.3}{touch}}}"
+            )
+        });
+        let arc = self.perhaps(0.6, "arc", |maker| {
+            let metal = maker.dice.one_of(&[
+                "material: silver",
+                "material: tungsten",
+                "minimum_voltage: 9 V, minimum_current: 0.15 A",
+            ]);
+            let capacitance = maker.quantity(1e-12, 1e-9, "F");
+            let gap = maker.quantity(5e-5, 5e-3, "m");
+            let opening = maker.quantity(1e-2, 1.0, "m/s");
+            let closing = maker.quantity(1e-2, 1.0, "m/s");
+            let column = maker.perhaps(0.3, "column_field", |maker| {
+                maker.quantity(1e2, 1e4, "V/m")
+            });
+            format!(
+                "{{{metal}, capacitance: {capacitance}, gap: {gap}, opening_speed: {opening}, closing_speed: {closing}{column}}}"
+            )
+        });
+        format!("{keys}{bounce}{arc}")
     }
 
     /// A switch that watches a signal; the thresholds lie apart, as they must.

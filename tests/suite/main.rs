@@ -8,6 +8,7 @@ mod circuits;
 mod closed_forms;
 mod coils;
 mod command_line;
+mod contacts;
 mod e_series;
 mod engine;
 mod floors;

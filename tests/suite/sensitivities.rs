@@ -251,6 +251,10 @@ fn of_every_shipped_netlist_are_those_of_differences() {
         if !text.contains("transient:") || text.contains("start: steady_state") {
             continue;
         }
+        // The highest crest of a shower of sparks jumps from one spark to another: it has no difference to compare.
+        if text.contains("arc: {") {
+            continue;
+        }
         assert!(
             SHIPPED.iter().any(|shipped| Some(shipped.name) == name),
             "{} is not looked at",

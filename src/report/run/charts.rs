@@ -23,7 +23,11 @@ pub struct Named {
 /// All pictures of a run.
 pub fn charts(netlist: &Netlist, outcome: &Outcome) -> Vec<Named> {
     let mut charts = Vec::new();
-    let switches: Vec<&str> = of_kind(netlist, "switch");
+    let entries = netlist.circuit.entries.iter();
+    let switches: Vec<&str> = entries
+        .filter(|entry| entry.kind.is_switch())
+        .map(|entry| entry.name.as_str())
+        .collect();
     let several = switches.len() > 1;
     for switch in &switches {
         if let Some(chart) = kick::kick(netlist, outcome, switch) {

@@ -182,6 +182,7 @@ impl Simulation<'_> {
             Measure::Voltage => 1e-3,
             Measure::Current => 1e-5,
             Measure::FluxLinkage => 1e-7,
+            Measure::Flux => 1e-10,
             _ => 1e-6,
         };
         Tolerances {

@@ -238,6 +238,7 @@ fn fine(circuit: &Circuit) -> Tolerances {
             Measure::Voltage => 1e-7,
             Measure::Current => 1e-10,
             Measure::FluxLinkage => 1e-11,
+            Measure::Flux => 1e-14,
             _ => 1e-9,
         })
         .collect();

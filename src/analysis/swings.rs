@@ -31,6 +31,7 @@ const LEAST_OF_MEASURE: f64 = 1e-4;
 fn least_of_all(measure: Measure) -> f64 {
     match measure {
         Measure::Current | Measure::FluxLinkage | Measure::Charge => 1e-15,
+        Measure::Flux => 1e-18,
         _ => 1e-9,
     }
 }

@@ -245,6 +245,12 @@ pub(super) fn terminal_pair(entry: &Entry, owner: &Owner) -> Result<(usize, usiz
     match &owner.winding {
         Some(_) => {
             let winding = winding_of(entry, owner)?;
+            // A closed ring counts among the windings and has no ends.
+            if 2 * winding + 1 >= entry.terminals.len() {
+                return Err(format!(
+                    "`{owner}` is closed upon itself and has no terminals"
+                ));
+            }
             Ok((2 * winding, 2 * winding + 1))
         }
         None if entry.terminals.len() == 2 => Ok((0, 1)),

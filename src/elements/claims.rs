@@ -10,8 +10,10 @@ pub enum Measure {
     Voltage,
     /// Amperes.
     Current,
-    /// Webers.
+    /// Webers, times the turns that they pass through.
     FluxLinkage,
+    /// Webers of a core: a flux linkage of one turn.
+    Flux,
     /// Coulombs.
     Charge,
     /// Metres.

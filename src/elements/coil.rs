@@ -1,11 +1,13 @@
 //! Coil on a core: its state is the flux linkage. d(linkage)/dt + R i(linkage) = v, the self-capacitance lies across the
-//! whole coil, winding resistance included.
+//! whole coil, winding resistance included. Iron that conducts adds the states of its shells, on which the current then
+//! hangs too.
 
 use super::claims::{Claims, Measure, Wanted};
 use super::element::{
     Branch, Element, Energy, Path, PathKind, Point, Quantity, Unknown, Unsound, WindingFigures,
 };
 use super::kind::{ElementKind, Made, NODES, Surroundings, pair, reference_temperature};
+use super::leg::Leg;
 use super::skin::Skin;
 use super::stamper::Stamper;
 use super::winding::{
@@ -52,6 +54,8 @@ struct Coil {
     capacitance_key: Value,
     initial_key: Value,
     made: Option<Wound>,
+    leg: Leg,
+    turns: f64,
     resistance: f64,
     skin: Skin,
     capacitance: f64,
@@ -77,6 +81,8 @@ fn read(fields: &Fields<'_>, around: &Surroundings<'_>) -> Option<Made> {
         capacitance_key: capacitance?,
         initial_key: initial?,
         made: None,
+        leg: Leg::default(),
+        turns: 1.0,
         resistance: 0.0,
         skin: Skin::default(),
         capacitance: 0.0,
@@ -97,9 +103,9 @@ impl Coil {
             .linkage
     }
 
-    /// Winding current [A] and its slope over the linkage [1/H].
-    fn current(&self, x: &[f64]) -> (f64, f64) {
-        self.law().current(self.linkage.of(x))
+    /// Winding current [A].
+    fn current(&self, x: &[f64]) -> f64 {
+        self.leg.force(x).value / self.turns
     }
 }
 
@@ -122,6 +128,9 @@ impl Element for Coil {
                 .count_inside(arranged, ladder, self.resistance)
                 .map_err(|fault| unsound(&fault))?;
         }
+        self.turns = wound.linkage.turns();
+        self.leg
+            .derive(wound.linkage.path().clone(), wound.shells, None);
         self.made = Some(wound);
         self.capacitance = values[self.capacitance_key];
         self.initial = values[self.initial_key];
@@ -132,6 +141,8 @@ impl Element for Coil {
         let hidden = claims.probed && self.capacitance > 0.0;
         self.branch = Branch::claim(claims, hidden);
         self.linkage = claims.unknown("flux linkage", Measure::FluxLinkage);
+        self.leg
+            .claim(claims, vec![(self.linkage, 1.0)], self.turns, None);
         self.skin.claim(claims);
         let wanted = Wanted::Of(Quantity::WindingCurrent, 0);
         self.winding_current = claims
@@ -144,29 +155,40 @@ impl Element for Coil {
     }
 
     fn stamp(&self, at: Point<'_>, into: &mut Stamper<'_>) {
-        let (current, slope) = self.current(at.x);
+        let force = self.leg.force(at.x);
+        let current = force.value / self.turns;
+        let slope = force.by_flux / (self.turns * self.turns);
+        let others = force.others().iter();
+        let slopes = std::iter::once((self.linkage, slope))
+            .chain(others.map(|&(other, slope)| (other, slope / self.turns)));
         let (a, b) = (self.branch.a, self.branch.b);
         let voltage = self.branch.voltage(at.x);
         into.q(self.linkage, self.linkage.of(at.x));
         into.dq(self.linkage, self.linkage, 1.0);
         into.f(self.linkage, self.resistance * current - voltage);
-        into.df(self.linkage, self.linkage, self.resistance * slope);
         into.df(self.linkage, a, -1.0);
         into.df(self.linkage, b, 1.0);
-        let slopes = std::iter::once((self.linkage, slope));
-        self.skin.stamp(at.x, current, slopes, self.linkage, into);
+        for (unknown, slope) in slopes.clone() {
+            into.df(self.linkage, unknown, self.resistance * slope);
+        }
+        self.skin
+            .stamp(at.x, current, slopes.clone(), self.linkage, into);
         match self.branch.current {
             None => {
                 into.f(a, current);
                 into.f(b, -current);
-                into.df(a, self.linkage, slope);
-                into.df(b, self.linkage, -slope);
+                for (unknown, slope) in slopes.clone() {
+                    into.df(a, unknown, slope);
+                    into.df(b, unknown, -slope);
+                }
             }
             Some(i) => {
                 into.carry(a, b, i, i.of(at.x));
                 into.f(i, current - i.of(at.x));
                 into.df(i, i, -1.0);
-                into.df(i, self.linkage, slope);
+                for (unknown, slope) in slopes.clone() {
+                    into.df(i, unknown, slope);
+                }
             }
         }
         self.branch
@@ -174,8 +196,11 @@ impl Element for Coil {
         if let Some(winding) = self.winding_current {
             into.f(winding, winding.of(at.x) - current);
             into.df(winding, winding, 1.0);
-            into.df(winding, self.linkage, -slope);
+            for (unknown, slope) in slopes {
+                into.df(winding, unknown, -slope);
+            }
         }
+        self.leg.stamp(at.x, into);
     }
 
     fn energy(&self) -> &dyn Energy {
@@ -186,10 +211,10 @@ impl Element for Coil {
         let linkage = self.linkage.of(at.x);
         let law = self.law();
         match quantity {
-            Quantity::WindingCurrent => Some(law.current(linkage).0),
+            Quantity::WindingCurrent => Some(self.current(at.x)),
             Quantity::FluxLinkage => Some(linkage),
             Quantity::FluxDensity => Some(law.flux_density(linkage)),
-            Quantity::FieldStrength => Some(law.field_strength(linkage)),
+            Quantity::FieldStrength => Some(self.leg.field_strength(at.x)),
             Quantity::Inductance => Some(law.inductance(linkage)),
             Quantity::Saturation => Some(law.saturation(linkage)),
             _ => None,
@@ -197,7 +222,9 @@ impl Element for Coil {
     }
 
     fn initial_charge(&self, q: &mut dyn FnMut(Unknown, f64)) {
-        q(self.linkage, self.law().linkage_at(self.initial));
+        let linkage = self.law().linkage_at(self.initial);
+        q(self.linkage, linkage);
+        self.leg.initial_charge(linkage / self.turns, q);
         self.skin.initial_charge(self.initial, q);
     }
 
@@ -231,18 +258,18 @@ impl Energy for Coil {
         let current = self
             .branch
             .current
-            .map_or_else(|| self.current(at.x).0, |i| i.of(at.x));
+            .map_or_else(|| self.current(at.x), |i| i.of(at.x));
         out[0] = current;
         out[1] = -current;
     }
 
     fn loss(&self, at: Point<'_>) -> f64 {
-        let current = self.current(at.x).0;
-        self.resistance * current.powi(2) + self.skin.loss(at.x, current)
+        let current = self.current(at.x);
+        self.resistance * current.powi(2) + self.skin.loss(at.x, current) + self.leg.loss(at.x)
     }
 
     fn stored(&self, at: Point<'_>) -> f64 {
-        self.law().energy(self.linkage.of(at.x))
+        self.leg.stored(at.x)
             + self.skin.stored(at.x)
             + 0.5 * self.capacitance * self.branch.voltage(at.x).powi(2)
     }

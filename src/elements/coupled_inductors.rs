@@ -3,6 +3,7 @@
 use super::claims::{Claims, Measure, Wanted};
 use super::element::{Element, Energy, Path, PathKind, Point, Quantity, Unknown, Unsound};
 use super::kind::{ElementKind, Made, NODES, Surroundings, Terminal};
+use super::pairs::{self, Pair};
 use super::stamper::Stamper;
 use crate::netlist::{Fields, Key, Takes, Value, Values};
 use crate::units;
@@ -51,8 +52,7 @@ struct Winding {
 struct CoupledInductors {
     names: Vec<String>,
     windings: Vec<Winding>,
-    /// Coupling of the pair (j, k), j < k.
-    couplings: Vec<(usize, usize, Value)>,
+    couplings: Vec<Pair>,
     /// Inductance matrix [H].
     matrix: DMatrix<f64>,
     resistance: Vec<f64>,
@@ -99,7 +99,7 @@ fn read(fields: &Fields<'_>, _around: &Surroundings<'_>) -> Option<Made> {
     if windings.len() < count {
         return None;
     }
-    let couplings = read_couplings(fields, &names)?;
+    let couplings = pairs::read(fields, "coefficient", units::RATIO, &names)?;
     let element = CoupledInductors {
         names: names.clone(),
         matrix: DMatrix::zeros(count, count),
@@ -114,43 +114,6 @@ fn read(fields: &Fields<'_>, _around: &Surroundings<'_>) -> Option<Made> {
         windings: names,
         element: Box::new(element),
     })
-}
-
-/// One coefficient for all pairs, or a mapping `A-B: value`.
-fn read_couplings(fields: &Fields<'_>, names: &[String]) -> Option<Vec<(usize, usize, Value)>> {
-    let count = names.len();
-    let pairs = || (0..count).flat_map(move |j| (j + 1..count).map(move |k| (j, k)));
-    if !fields.is_map("coefficient") {
-        let value = fields.value_as("coefficient", units::RATIO)?;
-        return Some(pairs().map(|(j, k)| (j, k, value)).collect());
-    }
-    let mut couplings = Vec::new();
-    let entries = fields.entries("coefficient");
-    let mut sound = true;
-    for entry in &entries {
-        let found = pairs().find(|&(j, k)| {
-            let text = &entry.name.text;
-            *text == format!("{}-{}", names[j], names[k])
-                || *text == format!("{}-{}", names[k], names[j])
-        });
-        match found {
-            Some((j, k)) => match fields.entry_value(entry, units::RATIO) {
-                Some(value) => couplings.push((j, k, value)),
-                None => sound = false,
-            },
-            None => {
-                sound = false;
-                fields.error_at(
-                    entry.name.span,
-                    "unknown-pair",
-                    format!("`{}` is no pair of windings", entry.name.text),
-                    "not a pair `A-B` of these windings",
-                    &format!("the windings are {}", names.join(", ")),
-                );
-            }
-        }
-    }
-    sound.then_some(couplings)
 }
 
 impl Element for CoupledInductors {

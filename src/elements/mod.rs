@@ -20,7 +20,10 @@ pub mod element;
 pub mod inductor;
 pub mod junction;
 pub mod kind;
+pub mod leg;
+pub mod magnetic_circuit;
 pub mod movement;
+pub mod pairs;
 pub mod rebounds;
 pub mod resistor;
 pub mod skin;
@@ -28,10 +31,12 @@ pub mod stamper;
 pub mod suppressor_diode;
 pub mod switch;
 pub mod switch_command;
+pub mod transformer;
 pub mod unknown;
 pub mod voltage_source;
 pub mod waveforms;
 pub mod winding;
+pub mod wound;
 pub mod zener;
 
 pub use claims::{Claimed, Claims, Measure, Offer, Wanted};
@@ -54,9 +59,11 @@ pub const KINDS: &[ElementKind] = &[
     dependent_voltage_source::KIND,
     diode::KIND,
     inductor::KIND,
+    magnetic_circuit::KIND,
     resistor::KIND,
     suppressor_diode::KIND,
     switch::KIND,
+    transformer::KIND,
     voltage_source::KIND,
     zener::KIND,
 ];

@@ -1,5 +1,6 @@
 //! A core: a shape filled with a material, and what it comes out as under a winding.
 
+use super::eddy::{Section, Shells};
 use super::geometry::{Fault, Geometry, Remark};
 use super::linkage::{CurvePoint, Linkage};
 use super::losses::{Arranged, Impedance, Ladder};
@@ -7,7 +8,7 @@ use super::materials::{Filling, Linear, Losses, Magnetized};
 use super::path::Path;
 use super::shapes::Shape;
 use super::winding::WindingPlan;
-use crate::netlist::Values;
+use crate::netlist::{Value, Values};
 use std::sync::Arc;
 
 /// A core as written. Coils share it.
@@ -17,6 +18,14 @@ pub struct Core {
     pub path: String,
     pub(super) shape: Box<dyn Shape>,
     pub(super) material: Option<Arc<Filling>>,
+    pub(super) eddy: Option<Eddy>,
+}
+
+/// Eddy currents of a core as written.
+#[derive(Clone, Copy, Debug)]
+pub(super) struct Eddy {
+    /// Thickness of its sheets; None for a solid round bar.
+    pub lamination: Option<Value>,
 }
 
 /// A core with one winding, with numbers.
@@ -26,6 +35,8 @@ pub struct Wound {
     pub geometry: Geometry,
     /// Current over flux linkage.
     pub linkage: Linkage,
+    /// The shells of its iron, where eddy currents are counted.
+    pub shells: Option<Shells>,
     /// Winding resistance [Ω] from wire and mean turn; None where either is not known.
     pub resistance: Option<f64>,
     /// Skin and proximity effect of its copper, where they are counted.
@@ -94,6 +105,30 @@ impl Core {
         }
     }
 
+    /// The shells of its path's iron with the values in force; None where eddy currents are not counted.
+    ///
+    /// # Errors
+    /// A value that a study set out of its range.
+    pub fn shells(&self, values: &Values, path: &Path) -> Result<Option<Shells>, Fault> {
+        let Some((eddy, resistivity)) = self.eddy.zip(self.losses(values)?.resistivity) else {
+            return Ok(None);
+        };
+        let section = match eddy.lamination.map(|thickness| values[thickness]) {
+            None => Section::Round,
+            Some(thickness) if thickness > 0.0 => Section::Sheets(thickness),
+            Some(_) => {
+                return Err(Fault {
+                    word: "out-of-range",
+                    key: "lamination",
+                    text: "lamination must be above zero".into(),
+                    help: "lamination: 0.5 mm",
+                });
+            }
+        };
+        let shells = Shells::new(section, path.iron(), path.area(), resistivity);
+        Ok(Some(shells))
+    }
+
     /// The core with one winding on it, core and copper at a `temperature` [K].
     ///
     /// # Errors
@@ -109,9 +144,11 @@ impl Core {
             .mean_turn
             .and_then(|turn| winding.resistance(turn, temperature));
         let remarks = geometry.remarks.clone();
+        let shells = self.shells(values, &path)?;
         Ok(Wound {
             geometry,
             linkage: Linkage::new(path, winding.turns as f64),
+            shells,
             resistance,
             inside: None,
             remarks,

@@ -1,11 +1,12 @@
 //! The netlist's `materials` and `cores`: named, shared by every coil that uses them.
 
-use super::core::Core;
+use super::core::{Core, Eddy};
 use super::geometry::Fault;
 use super::materials::{self, Filling};
 use super::shapes::{self, SHAPES, ShapeKind};
 use crate::diag::Diagnostic;
 use crate::netlist::{Data, Fields, Key, Named, Node, Reader, Takes, is_name, nearest};
+use crate::units::LENGTH;
 use std::collections::BTreeMap;
 use std::sync::Arc;
 
@@ -31,6 +32,17 @@ pub const CORE_KEYS: &[Key] = &[
         Takes::Name("a material"),
         "what fills it; air unless said",
     ),
+    Key::default(
+        "eddy_currents",
+        Takes::Word(&["none", "solid", "laminated"]),
+        "none",
+        "in iron whose material tells its `resistivity`: a solid round bar of the core's area, or sheets",
+    ),
+    Key::optional(
+        "lamination",
+        Takes::Quantity(LENGTH),
+        "thickness of the sheets; of a flat bar too",
+    ),
 ];
 
 /// Named materials and cores.
@@ -54,7 +66,7 @@ impl<'a> Library<'a> {
             library.materials.insert(entry.name.text, material);
         }
         for entry in top.entries("cores") {
-            let core = library.core_at(entry.node, &entry.path);
+            let core = library.core_at(entry.node, &entry.path, &[]);
             library.cores.insert(entry.name.text, core);
         }
         library
@@ -69,7 +81,7 @@ impl<'a> Library<'a> {
             return None;
         };
         let Some(name) = node.text() else {
-            return self.core_at(node, &path);
+            return self.core_at(node, &path, &[]);
         };
         let known = self.cores.keys().map(String::as_str);
         self.find(
@@ -93,8 +105,9 @@ impl<'a> Library<'a> {
         self.cores.get(name)?.as_ref()
     }
 
-    fn core_at(&self, node: &'a Node, path: &str) -> Option<Arc<Core>> {
-        let fields = Fields::new(node, path, CORE_KEYS, self.reader);
+    /// The core written in a mapping that has keys of its own (`beside`), such as a leg's.
+    pub fn core_at(&self, node: &'a Node, path: &str, beside: &'static [Key]) -> Option<Arc<Core>> {
+        let fields = Fields::new(node, path, CORE_KEYS, self.reader).also(beside);
         let kind = self.shape(&fields)?;
         let fields = kind
             .keys
@@ -103,10 +116,13 @@ impl<'a> Library<'a> {
         fields.finish();
         let material = self.material(&fields, kind);
         let shape = (kind.read)(&fields)?;
+        let material = material?;
+        let eddy = eddy(&fields, material.as_deref())?;
         Some(Arc::new(Core {
             path: path.to_owned(),
             shape,
-            material: material?,
+            material,
+            eddy,
         }))
     }
 
@@ -163,6 +179,58 @@ impl<'a> Library<'a> {
             .report(Diagnostic::error("unknown-name", headline).at(name.span, label));
         None
     }
+}
+
+/// Whether and how eddy currents are counted; the outer None where it is written wrongly.
+#[allow(clippy::option_option)]
+fn eddy(fields: &Fields<'_>, material: Option<&Filling>) -> Option<Option<Eddy>> {
+    let conducts = material.is_some_and(|filling| filling.losses.conducts());
+    // Iron that does not conduct has none: that is no default that anybody need know of.
+    let written = fields.has("eddy_currents") || fields.has("lamination");
+    if !conducts && !written {
+        return Some(None);
+    }
+    let word = fields.word("eddy_currents")?;
+    if (word == "laminated") != fields.has("lamination") {
+        let (headline, help) = match word {
+            "laminated" => (
+                "laminated iron needs `lamination`, the thickness of its sheets".to_owned(),
+                "lamination: 0.5 mm",
+            ),
+            _ => (
+                format!("`lamination` has no meaning with `eddy_currents: {word}`"),
+                "eddy_currents: laminated",
+            ),
+        };
+        let key = if word == "laminated" {
+            "eddy_currents"
+        } else {
+            "lamination"
+        };
+        let told = "goes with `eddy_currents: laminated`";
+        fields.error(key, "conflicting-keys", headline, told, Some(help));
+        return None;
+    }
+    if word == "none" {
+        return Some(None);
+    }
+    if !conducts {
+        let headline = "eddy currents need the `resistivity` of the core's material";
+        fields.error(
+            "eddy_currents",
+            "missing-key",
+            headline,
+            "its material does not tell it",
+            Some("a material takes `resistivity: 0.12 µΩ m`"),
+        );
+        return None;
+    }
+    let lamination = if word == "laminated" {
+        Some(fields.positive("lamination")?)
+    } else {
+        None
+    };
+    Some(Some(Eddy { lamination }))
 }
 
 /// True where a mapping is none, or has unknown keys: that has its message, and what is missing may be misspelt.

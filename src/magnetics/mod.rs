@@ -12,22 +12,27 @@
 
 pub mod air;
 pub mod core;
+pub mod eddy;
 pub mod fringing;
 pub mod geometry;
+pub mod leakage;
 pub mod library;
 pub mod linkage;
 pub mod losses;
 pub mod materials;
+pub mod network;
 pub mod path;
 pub mod shapes;
 pub mod winding;
 pub mod wire;
 
 pub use core::{Core, Wound};
+pub use eddy::Shells;
 pub use geometry::{Fault, Geometry, Remark};
 pub use library::{KEYS, Library};
 pub use linkage::{CurvePoint, Linkage};
 pub use materials::{Losses, Steinmetz};
+pub use network::{Network, Seen};
 pub use path::Path;
 pub use winding::WindingPlan;
 pub use wire::{WIRE_KEYS, Wire, WireSpec};

@@ -57,6 +57,32 @@ impl Path {
         )
     }
 
+    /// Length of the material [m].
+    pub fn iron(&self) -> f64 {
+        self.iron
+    }
+
+    /// Magnetomotive force of the air per flux [1/H].
+    pub fn reluctance_of_air(&self) -> f64 {
+        self.air / self.area
+    }
+
+    /// Field strength [A/m] at a flux density [T] of the material, and its slope [m/H].
+    #[inline]
+    pub fn iron_field(&self, flux_density: f64) -> (f64, f64) {
+        self.material.field(flux_density)
+    }
+
+    /// Energy [J/m³] that magnetizes the material to a flux density [T].
+    pub fn iron_energy_density(&self, flux_density: f64) -> f64 {
+        self.material.energy_density(flux_density)
+    }
+
+    /// Flux densities [T] of the material that cut its curve; see [`Magnetization::bends`].
+    pub fn bends(&self) -> Vec<f64> {
+        self.material.bends()
+    }
+
     /// Flux [Wb] at a magnetomotive force [A]: the inverse of `magnetomotive`, to the last digits.
     pub fn flux(&self, magnetomotive: f64) -> f64 {
         let force = magnetomotive.abs();

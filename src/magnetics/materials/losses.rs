@@ -93,6 +93,11 @@ impl Written {
         })
     }
 
+    /// True where the material tells its resistivity.
+    pub fn conducts(&self) -> bool {
+        self.resistivity.is_some()
+    }
+
     /// The figures with the values in force.
     ///
     /// # Errors

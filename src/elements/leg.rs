@@ -1,0 +1,258 @@
+//! A leg of a magnetic circuit joined to the equations: iron and air in series that carry one flux.
+//!
+//! F = H(B) l + (reluctance of the air) · flux is the magnetomotive force across it. In iron that conducts, F is that of
+//! the outermost shell; each further shell s has an unknown, the flux within the sheet of current outside it, and the
+//! row  l H(s + 1) - l H(s) + d(G(s) · flux within s)/dt = 0. A gap that moves adds x/(mu0 A) · flux, and pulls
+//! with the energy's slope at constant flux, flux²/(2 mu0 A).
+
+use super::claims::{Claims, Measure};
+use super::element::{Terms, Unknown, sum};
+use super::stamper::Stamper;
+use crate::magnetics::eddy::Shells;
+use crate::magnetics::{MU0, Path};
+
+/// A value that hangs on the leg's flux and on few unknowns more.
+#[derive(Clone, Copy, Debug)]
+pub struct OfFlux {
+    /// The value.
+    pub value: f64,
+    /// Its slope over the flux of the leg.
+    pub by_flux: f64,
+    others: [(Unknown, f64); 2],
+    count: usize,
+}
+
+impl OfFlux {
+    fn new(value: f64, by_flux: f64) -> Self {
+        OfFlux {
+            value,
+            by_flux,
+            others: [(Unknown::GROUND, 0.0); 2],
+            count: 0,
+        }
+    }
+
+    fn and(&mut self, unknown: Unknown, slope: f64) {
+        self.others[self.count] = (unknown, slope);
+        self.count += 1;
+    }
+
+    /// Its slopes over unknowns that are not part of the flux.
+    pub fn others(&self) -> &[(Unknown, f64)] {
+        &self.others[..self.count]
+    }
+}
+
+/// A leg. Its flux is a linear form of unknowns of the element that it belongs to, over a number of turns: 1 where these
+/// are fluxes, a coil's own where its state is the flux linkage.
+pub struct Leg {
+    path: Option<Path>,
+    shells: Option<Shells>,
+    /// Section of the moving gap [m²], where there is one.
+    moving: Option<f64>,
+    flux: Terms,
+    turns: f64,
+    /// Length of the moving gap [m].
+    gap: Option<Unknown>,
+    /// The flux within each sheet of eddy current, from the outermost.
+    inner: Vec<Unknown>,
+}
+
+impl Default for Leg {
+    fn default() -> Self {
+        Leg {
+            path: None,
+            shells: None,
+            moving: None,
+            flux: Terms::new(),
+            turns: 1.0,
+            gap: None,
+            inner: Vec::new(),
+        }
+    }
+}
+
+impl Leg {
+    /// Takes the numbers: the path, its shells where its iron conducts, the section of a moving gap [m²].
+    pub fn derive(&mut self, path: Path, shells: Option<Shells>, moving: Option<f64>) {
+        self.path = Some(path);
+        self.shells = shells;
+        self.moving = moving;
+    }
+
+    /// Claims the shells' unknowns. `flux` over `turns` makes up the leg's flux [Wb]; `gap` is the moving gap's length.
+    pub fn claim(
+        &mut self,
+        claims: &mut Claims<'_>,
+        flux: Terms,
+        turns: f64,
+        gap: Option<Unknown>,
+    ) {
+        (self.flux, self.turns) = (flux, turns);
+        self.gap = gap;
+        let sheets = self.shells.map_or(0, |shells| shells.sheets.len());
+        self.inner.clear();
+        for _ in 0..sheets {
+            self.inner
+                .push(claims.unknown("flux within a shell", Measure::Flux));
+        }
+    }
+
+    /// The path.
+    pub fn path(&self) -> &Path {
+        self.path
+            .as_ref()
+            .expect("a leg is derived before anything is asked of it")
+    }
+
+    /// The unknowns that make up its flux times the turns, with their factors.
+    pub fn terms(&self) -> &Terms {
+        &self.flux
+    }
+
+    /// Its flux [Wb].
+    #[inline]
+    pub fn flux(&self, x: &[f64]) -> f64 {
+        sum(&self.flux, x) / self.turns
+    }
+
+    /// Magnetomotive force across it [A].
+    #[inline]
+    pub fn force(&self, x: &[f64]) -> OfFlux {
+        let (path, flux) = (self.path(), self.flux(x));
+        let mut force = match &self.shells {
+            None => {
+                let (value, slope) = path.magnetomotive(flux);
+                OfFlux::new(value, slope)
+            }
+            Some(shells) => {
+                let (drop, slope) = self.drop(shells, 0, x);
+                let air = path.reluctance_of_air();
+                let mut force = OfFlux::new(drop + air * flux, slope + air);
+                force.and(self.inner[0], -slope);
+                force
+            }
+        };
+        if let Some((gap, area)) = self.gap.zip(self.moving) {
+            let per_metre = 1.0 / (MU0 * area);
+            force.value += gap.of(x) * per_metre * flux;
+            force.by_flux += gap.of(x) * per_metre;
+            force.and(gap, per_metre * flux);
+        }
+        force
+    }
+
+    /// Pull that closes the moving gap [N].
+    pub fn pull(&self, x: &[f64]) -> OfFlux {
+        let flux = self.flux(x);
+        let per_metre = self.moving.map_or(0.0, |area| 1.0 / (MU0 * area));
+        OfFlux::new(0.5 * flux * flux * per_metre, flux * per_metre)
+    }
+
+    /// The flux [Wb] of shell `k`.
+    fn of_shell(&self, k: usize, x: &[f64]) -> f64 {
+        let within = self.inner.get(k).map_or(0.0, |unknown| unknown.of(x));
+        let outside = match k {
+            0 => self.flux(x),
+            _ => self.inner[k - 1].of(x),
+        };
+        outside - within
+    }
+
+    /// Magnetomotive force along shell `k` [A], and its slope over the shell's flux.
+    fn drop(&self, shells: &Shells, k: usize, x: &[f64]) -> (f64, f64) {
+        let (path, area) = (self.path(), shells.areas[k]);
+        let (field, slope) = path.iron_field(self.of_shell(k, x) / area);
+        (path.iron() * field, path.iron() * slope / area)
+    }
+
+    /// Stamps the rows of the shells; the row that holds the leg's force is the element's.
+    pub fn stamp(&self, x: &[f64], into: &mut Stamper<'_>) {
+        let Some(shells) = &self.shells else {
+            return;
+        };
+        let mut outer = self.drop(shells, 0, x);
+        for (k, &row) in self.inner.iter().enumerate() {
+            let inner = self.drop(shells, k + 1, x);
+            into.q(row, shells.sheets[k] * row.of(x));
+            into.dq(row, row, shells.sheets[k]);
+            into.f(row, inner.0 - outer.0);
+            into.df(row, row, inner.1 + outer.1);
+            match k {
+                0 => {
+                    for &(unknown, factor) in &self.flux {
+                        into.df(row, unknown, -outer.1 * factor / self.turns);
+                    }
+                }
+                _ => into.df(row, self.inner[k - 1], -outer.1),
+            }
+            if let Some(&next) = self.inner.get(k + 1) {
+                into.df(row, next, -inner.1);
+            }
+            outer = inner;
+        }
+    }
+
+    /// Power of its eddy currents [W]: each sheet's current squared over its conductance.
+    pub fn loss(&self, x: &[f64]) -> f64 {
+        let Some(shells) = &self.shells else {
+            return 0.0;
+        };
+        let mut outer = self.drop(shells, 0, x).0;
+        let mut power = 0.0;
+        for (k, conductance) in shells.sheets.iter().enumerate() {
+            let inner = self.drop(shells, k + 1, x).0;
+            power += (outer - inner).powi(2) / conductance;
+            outer = inner;
+        }
+        power
+    }
+
+    /// Energy of its field [J].
+    pub fn stored(&self, x: &[f64]) -> f64 {
+        let (path, flux) = (self.path(), self.flux(x));
+        let fixed = match &self.shells {
+            None => path.energy(flux),
+            Some(shells) => {
+                let mut energy = 0.5 * path.reluctance_of_air() * flux * flux;
+                for (k, area) in shells.areas.iter().enumerate() {
+                    let density = path.iron_energy_density(self.of_shell(k, x) / area);
+                    energy += area * path.iron() * density;
+                }
+                energy
+            }
+        };
+        let moving = self.gap.zip(self.moving);
+        fixed
+            + moving.map_or(0.0, |(gap, area)| {
+                0.5 * flux * flux * gap.of(x) / (MU0 * area)
+            })
+    }
+
+    /// What a zero start at a `flux` [Wb] that has long been there adds to q of the shells' rows.
+    pub fn initial_charge(&self, flux: f64, q: &mut dyn FnMut(Unknown, f64)) {
+        let Some(shells) = &self.shells else {
+            return;
+        };
+        let area: f64 = shells.areas.iter().sum();
+        for (k, &row) in self.inner.iter().enumerate() {
+            q(row, shells.sheets[k] * flux * shells.within(k) / area);
+        }
+    }
+
+    /// Mean flux density [T].
+    pub fn flux_density(&self, x: &[f64]) -> f64 {
+        self.path().flux_density(self.flux(x))
+    }
+
+    /// Field strength at the surface of the material [A/m].
+    pub fn field_strength(&self, x: &[f64]) -> f64 {
+        match &self.shells {
+            None => self.path().field_strength(self.flux(x)),
+            Some(shells) => {
+                let b = self.of_shell(0, x) / shells.areas[0];
+                self.path().iron_field(b).0
+            }
+        }
+    }
+}

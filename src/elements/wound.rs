@@ -1,0 +1,613 @@
+//! Windings on the legs of a core: what `transformer` and `magnetic_circuit` have in common.
+//!
+//! Unknowns are the current of each winding and the flux of each loop of legs ([`crate::magnetics::network`]); a leg's
+//! flux is a sum of loops'. A winding's row is d(N flux + Σ S i)/dt + R i - v = 0, S being the leakage inductances; a loop's row
+//! is Σ ± (force of a leg - Σ N i on it) = 0. Shells of conducting iron belong to the legs. Capacitances lie across a whole
+//! winding, or between two: half of it joins their first ends, half the second ones (common practice).
+
+use super::claims::{Claims, Measure, Wanted};
+use super::element::{
+    Element, Energy, Path, PathKind, Point, Quantity, Terms, Unknown, Unsound, WindingFigures,
+};
+use super::leg::Leg;
+use super::pairs::Pair;
+use super::stamper::Stamper;
+use super::winding::{Winding, unsound};
+use crate::magnetics::leakage::{self, Layer};
+use crate::magnetics::{Core, Fault, Geometry, Linkage, Network, Seen, Wound};
+use crate::netlist::{Value, Values};
+use nalgebra::DMatrix;
+use std::sync::Arc;
+
+/// One winding as read.
+pub struct Turns {
+    /// Its name.
+    pub name: String,
+    /// What it is made of.
+    pub winding: Winding,
+    /// The leg that it is on.
+    pub leg: usize,
+    /// False for a ring that is closed upon itself; such rings come last.
+    pub has_ends: bool,
+    /// Capacitance across it.
+    pub self_capacitance: Option<Value>,
+    /// Current at a zero start.
+    pub initial: Option<Value>,
+}
+
+/// Leakage as read.
+pub enum Leakage {
+    /// An inductance of each winding's own, in series with it; None for none.
+    Own(Vec<Option<Value>>),
+    /// Coefficients of coupling.
+    Coefficients(Vec<Pair>),
+    /// Inductance of the first of a pair with the second one shorted.
+    Shorted(Vec<Pair>),
+    /// Geometry of concentric windings.
+    Concentric(Concentric),
+}
+
+/// Geometry of concentric windings as read.
+pub struct Concentric {
+    /// Axial length.
+    pub breadth: Value,
+    /// Mean turn of all; that of the core where None.
+    pub mean_turn: Option<Value>,
+    /// Insulation between neighbours.
+    pub spacing: Value,
+    /// Radial build of each, from the inside out.
+    pub builds: Vec<Value>,
+}
+
+/// Where the legs lie.
+pub enum Layout {
+    /// One leg that closes upon itself.
+    Ring,
+    /// Legs between numbered magnetic nodes.
+    Between(Vec<(usize, usize)>),
+}
+
+/// A capacitance between two terminals.
+struct Capacitor {
+    from: usize,
+    to: usize,
+    value: Value,
+    /// The part of the value that lies here.
+    share: f64,
+    capacitance: f64,
+}
+
+/// What carries a terminal's current: the row that its share goes to.
+#[derive(Clone, Copy)]
+struct Port {
+    node: Unknown,
+    /// The current as an unknown, where a charge is part of it and somebody asks for it.
+    current: Option<Unknown>,
+}
+
+impl Port {
+    fn row(&self) -> Unknown {
+        self.current.unwrap_or(self.node)
+    }
+}
+
+/// Windings on legs.
+pub struct WoundLegs {
+    windings: Vec<Turns>,
+    cores: Vec<Arc<Core>>,
+    layout: Layout,
+    network: Network,
+    leakage: Leakage,
+    capacitors: Vec<Capacitor>,
+    legs: Vec<Leg>,
+    /// Leakage inductances [H].
+    matrix: DMatrix<f64>,
+    resistances: Vec<f64>,
+    initial: Vec<f64>,
+    made: Vec<Wound>,
+    inductances_at_zero: Vec<f64>,
+    ports: Vec<Port>,
+    currents: Vec<Unknown>,
+    loops: Vec<Unknown>,
+    /// Flux linkages as unknowns, where another element follows them.
+    linkages: Vec<Option<Unknown>>,
+}
+
+impl WoundLegs {
+    /// Windings on legs of these cores; `between` is the capacitance of each pair of windings.
+    pub fn new(
+        windings: Vec<Turns>,
+        cores: Vec<Arc<Core>>,
+        layout: Layout,
+        leakage: Leakage,
+        between: &[Pair],
+    ) -> Self {
+        let capacitor = |from: usize, to: usize, value: Value, share: f64| Capacitor {
+            from,
+            to,
+            value,
+            share,
+            capacitance: 0.0,
+        };
+        let own = windings.iter().enumerate().filter_map(|(k, turns)| {
+            let value = turns.self_capacitance.filter(|_| turns.has_ends)?;
+            Some(capacitor(2 * k, 2 * k + 1, value, 1.0))
+        });
+        let joining = between.iter().flat_map(|&(j, k, value)| {
+            [0, 1].map(|end| capacitor(2 * j + end, 2 * k + end, value, 0.5))
+        });
+        let capacitors = own.chain(joining).collect();
+        let network = match &layout {
+            Layout::Ring => Network::ring(),
+            Layout::Between(ends) => Network::new(ends),
+        };
+        let count = windings.len();
+        WoundLegs {
+            legs: cores.iter().map(|_| Leg::default()).collect(),
+            matrix: DMatrix::zeros(count, count),
+            resistances: vec![0.0; count],
+            initial: vec![0.0; count],
+            made: Vec::new(),
+            inductances_at_zero: Vec::new(),
+            ports: Vec::new(),
+            currents: Vec::new(),
+            loops: Vec::new(),
+            linkages: Vec::new(),
+            windings,
+            cores,
+            layout,
+            network,
+            leakage,
+            capacitors,
+        }
+    }
+
+    fn turns(&self, k: usize) -> f64 {
+        self.windings[k].winding.turns() as f64
+    }
+
+    /// The path that a winding on `leg` sees.
+    fn seen(&self, leg: usize) -> crate::magnetics::Path {
+        let paths = || {
+            self.legs
+                .iter()
+                .map(|leg| leg.path().clone())
+                .collect::<Vec<_>>()
+        };
+        let seen = match &self.layout {
+            Layout::Ring => None,
+            Layout::Between(ends) => Seen::new(ends, &paths(), leg),
+        };
+        seen.map_or_else(|| self.legs[leg].path().clone(), Seen::path)
+    }
+
+    /// Derives the legs; their geometries.
+    fn derive_legs(&mut self, values: &Values) -> Result<Vec<Geometry>, Fault> {
+        let mut geometries = Vec::new();
+        for (k, core) in self.cores.iter().enumerate() {
+            let mut on_it = self
+                .windings
+                .iter()
+                .filter(|turns| turns.leg == k && turns.has_ends);
+            let (only, more) = (on_it.next(), on_it.next());
+            let plan = only
+                .filter(|_| more.is_none())
+                .map(|turns| turns.winding.plan(values));
+            // A leg without a winding is as warm as the others.
+            let temperature = self.windings[0].winding.temperature(values);
+            let (path, geometry) = core.path(values, plan.as_ref(), temperature)?;
+            let shells = core.shells(values, &path)?;
+            self.legs[k].derive(path, shells, None);
+            geometries.push(geometry);
+        }
+        Ok(geometries)
+    }
+
+    fn derive_windings(&mut self, values: &Values, geometries: &[Geometry]) -> Result<(), Unsound> {
+        self.made.clear();
+        for (k, turns) in self.windings.iter().enumerate() {
+            let geometry = &geometries[turns.leg];
+            let plan = turns.winding.plan(values);
+            let temperature = turns.winding.temperature(values);
+            let of_wire = geometry
+                .mean_turn
+                .and_then(|turn| plan.resistance(turn, temperature));
+            self.resistances[k] = turns.winding.resistance(values, of_wire)?;
+            self.initial[k] = turns.initial.map_or(0.0, |value| values[value]);
+            let first = self.windings[..k]
+                .iter()
+                .all(|other| other.leg != turns.leg);
+            self.made.push(Wound {
+                geometry: geometry.clone(),
+                linkage: Linkage::new(self.seen(turns.leg), turns.winding.turns() as f64),
+                shells: None,
+                resistance: of_wire,
+                // What is said of the leg is said once.
+                remarks: if first {
+                    geometry.remarks.clone()
+                } else {
+                    Vec::new()
+                },
+            });
+        }
+        Ok(())
+    }
+
+    /// Leakage per turn squared [H].
+    fn leakage(&self, values: &Values, geometries: &[Geometry]) -> Result<DMatrix<f64>, Unsound> {
+        let count = self.windings.len();
+        let shared = 1.0 / self.legs[0].path().magnetomotive(0.0).1;
+        let (found, key) = match &self.leakage {
+            Leakage::Own(own) => {
+                let mut matrix = DMatrix::zeros(count, count);
+                for (k, value) in own.iter().enumerate() {
+                    let inductance = value.map_or(0.0, |value| values[value]);
+                    matrix[(k, k)] = inductance / self.turns(k).powi(2);
+                }
+                return Ok(matrix);
+            }
+            Leakage::Coefficients(pairs) => {
+                let mut coefficients = DMatrix::identity(count, count);
+                for &(j, k, value) in pairs {
+                    coefficients[(j, k)] = values[value];
+                    coefficients[(k, j)] = values[value];
+                }
+                (
+                    leakage::from_coefficients(shared, &coefficients),
+                    "coefficient",
+                )
+            }
+            Leakage::Shorted(pairs) => {
+                let wanted: Vec<(usize, usize, f64)> = pairs
+                    .iter()
+                    .map(|&(j, k, value)| (j, k, values[value] / self.turns(j).powi(2)))
+                    .collect();
+                (
+                    leakage::from_short_circuits(shared, &wanted, count),
+                    "leakage",
+                )
+            }
+            Leakage::Concentric(concentric) => {
+                let told = concentric.mean_turn.map(|value| values[value]);
+                let Some(mean_turn) = told.or(geometries[0].mean_turn) else {
+                    return Err(Unsound {
+                        word: "no-mean-turn",
+                        key: "concentric",
+                        headline: "the mean turn of this core is not known, so neither is the leakage of its windings".into(),
+                        help: "write `mean_turn: 45 mm` in `concentric` or in the core".into(),
+                    });
+                };
+                let spacing = values[concentric.spacing];
+                let layers: Vec<Layer> = concentric
+                    .builds
+                    .iter()
+                    .map(|&build| Layer {
+                        build: values[build],
+                        spacing,
+                    })
+                    .collect();
+                let pairs = leakage::concentric(&layers, values[concentric.breadth], mean_turn);
+                (leakage::from_pairs(&pairs), "concentric")
+            }
+        };
+        found.map_err(|leakage::Impossible| Unsound {
+            word: "impossible-coupling",
+            key,
+            headline: format!("no windings on this core can have such a `{key}`"),
+            help: "a leakage is smaller than the inductance of its winding, a coefficient lies between 0 and 1, and two \
+                   windings that are both close to a third are close to each other"
+                .into(),
+        })
+    }
+
+    /// A linear form of the loops: the flux of a leg.
+    fn flux_terms(&self, leg: usize) -> Terms {
+        let form = self.network.form(leg).iter();
+        form.map(|&(k, sign)| (self.loops[k], sign)).collect()
+    }
+
+    /// Whether leakage inductances are there at all.
+    fn leaks(&self) -> bool {
+        match &self.leakage {
+            Leakage::Own(own) => own.iter().any(Option::is_some),
+            _ => true,
+        }
+    }
+
+    fn linkage(&self, k: usize, x: &[f64]) -> f64 {
+        let leakage: f64 = (0..self.currents.len())
+            .map(|j| self.matrix[(k, j)] * self.currents[j].of(x))
+            .sum();
+        self.turns(k) * self.legs[self.windings[k].leg].flux(x) + leakage
+    }
+
+    /// Incremental inductance of a winding [H], the others open, about fluxes of the loops.
+    fn inductance(&self, k: usize, loops: &[f64]) -> f64 {
+        let paths: Vec<_> = self.legs.iter().map(|leg| leg.path().clone()).collect();
+        let reluctances = self.network.reluctances(&paths, loops);
+        let mut form = nalgebra::DVector::zeros(loops.len());
+        for &(c, sign) in self.network.form(self.windings[k].leg) {
+            form[c] = sign;
+        }
+        let permeance = reluctances
+            .lu()
+            .solve(&form)
+            .map_or(0.0, |solved| form.dot(&solved));
+        self.turns(k).powi(2) * permeance + self.matrix[(k, k)]
+    }
+
+    fn loop_fluxes(&self, x: &[f64]) -> Vec<f64> {
+        self.loops.iter().map(|unknown| unknown.of(x)).collect()
+    }
+}
+
+impl Element for WoundLegs {
+    fn derive(&mut self, values: &Values) -> Result<(), Unsound> {
+        let geometries = self.derive_legs(values).map_err(|fault| unsound(&fault))?;
+        self.derive_windings(values, &geometries)?;
+        self.matrix = self.leakage(values, &geometries)?;
+        for j in 0..self.windings.len() {
+            for k in 0..self.windings.len() {
+                self.matrix[(j, k)] *= self.turns(j) * self.turns(k);
+            }
+        }
+        for capacitor in &mut self.capacitors {
+            capacitor.capacitance = capacitor.share * values[capacitor.value];
+        }
+        let rest = vec![0.0; self.network.loops()];
+        self.inductances_at_zero = (0..self.windings.len())
+            .map(|k| self.inductance(k, &rest))
+            .collect();
+        Ok(())
+    }
+
+    fn claim(&mut self, claims: &mut Claims<'_>) {
+        let charged = |t: usize| {
+            let touching = |c: &Capacitor| c.capacitance > 0.0 && (c.from == t || c.to == t);
+            self.capacitors.iter().any(touching)
+        };
+        self.ports = (0..claims.terminals.len())
+            .map(|t| {
+                let wanted = Wanted::Current(t);
+                let asked = claims.probed || claims.wants(wanted);
+                let current =
+                    (asked && charged(t)).then(|| claims.unknown("current", Measure::Current));
+                if let Some(current) = current {
+                    claims.offer(wanted, current, 1.0);
+                }
+                Port {
+                    node: claims.terminal(t),
+                    current,
+                }
+            })
+            .collect();
+        self.currents.clear();
+        self.linkages.clear();
+        for (k, turns) in self.windings.iter().enumerate() {
+            let current = claims.unknown("winding current", Measure::Current);
+            if turns.has_ends {
+                for (t, sign) in [(2 * k, 1.0), (2 * k + 1, -1.0)] {
+                    if self.ports[t].current.is_none() {
+                        claims.offer(Wanted::Current(t), current, sign);
+                    }
+                }
+            }
+            claims.offer(Wanted::Of(Quantity::WindingCurrent, k), current, 1.0);
+            self.currents.push(current);
+            let wanted = Wanted::Of(Quantity::FluxLinkage, k);
+            let linkage = claims
+                .wants(wanted)
+                .then(|| claims.unknown("flux linkage", Measure::FluxLinkage));
+            if let Some(linkage) = linkage {
+                claims.offer(wanted, linkage, 1.0);
+            }
+            self.linkages.push(linkage);
+        }
+        self.loops = (0..self.network.loops())
+            .map(|_| claims.unknown("flux", Measure::Flux))
+            .collect();
+        for leg in 0..self.legs.len() {
+            let terms = self.flux_terms(leg);
+            self.legs[leg].claim(claims, terms, 1.0, None);
+        }
+    }
+
+    fn stamp(&self, at: Point<'_>, into: &mut Stamper<'_>) {
+        for port in &self.ports {
+            if let Some(i) = port.current {
+                into.f(port.node, i.of(at.x));
+                into.df(port.node, i, 1.0);
+                into.f(i, -i.of(at.x));
+                into.df(i, i, -1.0);
+            }
+        }
+        for k in 0..self.windings.len() {
+            self.stamp_winding(k, at.x, into);
+        }
+        for (leg, law) in self.legs.iter().enumerate() {
+            self.stamp_leg(leg, law, at.x, into);
+        }
+        for capacitor in self.capacitors.iter().filter(|c| c.capacitance > 0.0) {
+            let (a, b) = (&self.ports[capacitor.from], &self.ports[capacitor.to]);
+            let c = capacitor.capacitance;
+            let charge = c * (a.node.of(at.x) - b.node.of(at.x));
+            for (port, sign) in [(a, 1.0), (b, -1.0)] {
+                into.q(port.row(), sign * charge);
+                into.dq(port.row(), a.node, sign * c);
+                into.dq(port.row(), b.node, -sign * c);
+            }
+        }
+    }
+
+    fn energy(&self) -> &dyn Energy {
+        self
+    }
+
+    fn quantity(&self, quantity: Quantity, winding: usize, at: Point<'_>) -> Option<f64> {
+        let leg = &self.legs[self.windings.get(winding)?.leg];
+        match quantity {
+            Quantity::WindingCurrent => Some(self.currents[winding].of(at.x)),
+            Quantity::FluxLinkage => Some(self.linkage(winding, at.x)),
+            Quantity::FluxDensity => Some(leg.flux_density(at.x)),
+            Quantity::FieldStrength => Some(leg.field_strength(at.x)),
+            Quantity::Inductance => Some(self.inductance(winding, &self.loop_fluxes(at.x))),
+            Quantity::Saturation => {
+                let now = self.inductance(winding, &self.loop_fluxes(at.x));
+                Some(1.0 - now / self.inductances_at_zero[winding])
+            }
+            _ => None,
+        }
+    }
+
+    fn initial_charge(&self, q: &mut dyn FnMut(Unknown, f64)) {
+        let mut ampere_turns = vec![0.0; self.legs.len()];
+        for (k, turns) in self.windings.iter().enumerate() {
+            ampere_turns[turns.leg] += self.turns(k) * self.initial[k];
+        }
+        let paths: Vec<_> = self.legs.iter().map(|leg| leg.path().clone()).collect();
+        let loops = self.network.loop_fluxes(&paths, &ampere_turns);
+        for (k, turns) in self.windings.iter().enumerate() {
+            let leakage: f64 = (0..self.initial.len())
+                .map(|j| self.matrix[(k, j)] * self.initial[j])
+                .sum();
+            let flux = self.network.flux(turns.leg, &loops);
+            q(self.currents[k], self.turns(k) * flux + leakage);
+        }
+        for (leg, law) in self.legs.iter().enumerate() {
+            law.initial_charge(self.network.flux(leg, &loops), q);
+        }
+    }
+
+    fn paths(&self) -> Vec<Path> {
+        let with_ends = self
+            .windings
+            .iter()
+            .enumerate()
+            .filter(|(_, turns)| turns.has_ends);
+        let windings = with_ends.map(|(k, _)| Path {
+            from: 2 * k,
+            to: 2 * k + 1,
+            kind: if self.resistances[k] > 0.0 {
+                PathKind::InductiveWithResistance
+            } else {
+                PathKind::Inductive
+            },
+        });
+        let across = |c: &&Capacitor| c.capacitance > 0.0;
+        let capacitors = self.capacitors.iter().filter(across).map(|c| Path {
+            from: c.from,
+            to: c.to,
+            kind: PathKind::Capacitive,
+        });
+        windings.chain(capacitors).collect()
+    }
+
+    fn windings(&self) -> Vec<WindingFigures<'_>> {
+        let all = self.windings.iter().zip(&self.made).zip(&self.resistances);
+        all.map(|((turns, wound), resistance)| WindingFigures {
+            name: &turns.name,
+            resistance: *resistance,
+            wound,
+        })
+        .collect()
+    }
+}
+
+impl WoundLegs {
+    fn stamp_winding(&self, k: usize, x: &[f64], into: &mut Stamper<'_>) {
+        let (row, turns) = (self.currents[k], self.turns(k));
+        let current = row.of(x);
+        into.f(row, self.resistances[k] * current);
+        into.df(row, row, self.resistances[k]);
+        if self.windings[k].has_ends {
+            let (a, b) = (&self.ports[2 * k], &self.ports[2 * k + 1]);
+            into.f(row, b.node.of(x) - a.node.of(x));
+            into.df(row, a.node, -1.0);
+            into.df(row, b.node, 1.0);
+            into.f(a.row(), current);
+            into.df(a.row(), row, 1.0);
+            into.f(b.row(), -current);
+            into.df(b.row(), row, -1.0);
+        }
+        let leg = &self.legs[self.windings[k].leg];
+        into.q(row, turns * leg.flux(x));
+        for &(flux, factor) in leg.terms() {
+            into.dq(row, flux, turns * factor);
+        }
+        if self.leaks() {
+            for (j, &other) in self.currents.iter().enumerate() {
+                into.q(row, self.matrix[(k, j)] * other.of(x));
+                into.dq(row, other, self.matrix[(k, j)]);
+            }
+        }
+        if let Some(linkage) = self.linkages[k] {
+            into.f(linkage, linkage.of(x) - self.linkage(k, x));
+            into.df(linkage, linkage, 1.0);
+            for &(flux, factor) in leg.terms() {
+                into.df(linkage, flux, -turns * factor);
+            }
+            for (j, &other) in self.currents.iter().enumerate() {
+                into.df(linkage, other, -self.matrix[(k, j)]);
+            }
+        }
+    }
+
+    /// A leg's share of the rows of its loops, and its shells.
+    fn stamp_leg(&self, leg: usize, law: &Leg, x: &[f64], into: &mut Stamper<'_>) {
+        let force = law.force(x);
+        for &(row, sign) in law.terms() {
+            into.f(row, sign * force.value);
+            for &(flux, factor) in law.terms() {
+                into.df(row, flux, sign * factor * force.by_flux);
+            }
+            for &(other, slope) in force.others() {
+                into.df(row, other, sign * slope);
+            }
+            for (k, winding) in self.windings.iter().enumerate() {
+                if winding.leg == leg {
+                    let turns = sign * self.turns(k);
+                    into.f(row, -turns * self.currents[k].of(x));
+                    into.df(row, self.currents[k], -turns);
+                }
+            }
+        }
+        law.stamp(x, into);
+    }
+}
+
+impl Energy for WoundLegs {
+    fn currents(&self, at: Point<'_>, out: &mut [f64]) {
+        for (t, port) in self.ports.iter().enumerate() {
+            let winding = || {
+                let sign = if t % 2 == 0 { 1.0 } else { -1.0 };
+                sign * self.currents[t / 2].of(at.x)
+            };
+            out[t] = port.current.map_or_else(winding, |i| i.of(at.x));
+        }
+    }
+
+    fn loss(&self, at: Point<'_>) -> f64 {
+        let copper: f64 = self
+            .currents
+            .iter()
+            .zip(&self.resistances)
+            .map(|(i, r)| r * i.of(at.x).powi(2))
+            .sum();
+        copper + self.legs.iter().map(|leg| leg.loss(at.x)).sum::<f64>()
+    }
+
+    fn stored(&self, at: Point<'_>) -> f64 {
+        let mut energy: f64 = self.legs.iter().map(|leg| leg.stored(at.x)).sum();
+        for (j, first) in self.currents.iter().enumerate() {
+            for (k, second) in self.currents.iter().enumerate() {
+                energy += 0.5 * self.matrix[(j, k)] * first.of(at.x) * second.of(at.x);
+            }
+        }
+        for capacitor in &self.capacitors {
+            let (a, b) = (&self.ports[capacitor.from], &self.ports[capacitor.to]);
+            let voltage = a.node.of(at.x) - b.node.of(at.x);
+            energy += 0.5 * capacitor.capacitance * voltage * voltage;
+        }
+        energy
+    }
+}

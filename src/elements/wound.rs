@@ -294,8 +294,8 @@ impl WoundLegs {
             word: "impossible-coupling",
             key,
             headline: format!("no windings on this core can have such a `{key}`"),
-            help: "a leakage is smaller than the inductance of its winding, a coefficient lies between 0 and 1, and two \
-                   windings that are both close to a third are close to each other"
+            help: "a coefficient lies between 0 and 1, and two windings that are both close to a third are close to each \
+                   other"
                 .into(),
         })
     }

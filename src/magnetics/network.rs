@@ -341,11 +341,15 @@ mod tests {
                 let flux = network.flux(leg, &loops);
                 assert!((seen.magnetomotive(flux).0 / force - 1.0).abs() < 1e-9);
                 let (more, less) = (
-                    seen.magnetomotive(1.001 * flux),
-                    seen.magnetomotive(0.999 * flux),
+                    seen.magnetomotive(1.00001 * flux),
+                    seen.magnetomotive(0.99999 * flux),
                 );
-                let slope = (more.0 - less.0) / (0.002 * flux);
-                assert!((seen.magnetomotive(flux).1 / slope - 1.0).abs() < 1e-4);
+                let slope = (more.0 - less.0) / (0.00002 * flux);
+                let told = seen.magnetomotive(flux).1;
+                assert!(
+                    (told / slope - 1.0).abs() < 1e-6,
+                    "{leg} {force} A: {told} {slope}"
+                );
                 let gained = seen.energy(1.001 * flux) - seen.energy(0.999 * flux);
                 assert!((gained / (0.002 * flux * force) - 1.0).abs() < 1e-4);
             }

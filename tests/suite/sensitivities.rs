@@ -208,6 +208,18 @@ const SHIPPED: &[Shipped] = &[
         paths: &["elements.supply.voltage", "elements.k1_coil.resistance"],
     },
     Shipped {
+        name: "relay_solid_core",
+        accuracy: 1e-8,
+        by: 1e-3,
+        overrides: &[],
+        paths: &[
+            "elements.supply.voltage",
+            "elements.k1_coil.resistance",
+            "materials.relay_iron.resistivity",
+            "cores.k1_core.gap",
+        ],
+    },
+    Shipped {
         name: "valve_on_cable",
         accuracy: 1e-8,
         by: 1e-3,

@@ -49,6 +49,18 @@ pub struct Entry {
     pub probed: bool,
 }
 
+impl Entry {
+    /// What its windings on cores are called in phrases: `k1_coil`, `t1.primary`.
+    pub fn winding_owners(&self) -> Vec<String> {
+        let name = |winding: &str| match winding {
+            "" => self.name.clone(),
+            _ => format!("{}.{winding}", self.name),
+        };
+        let figures = self.element.windings();
+        figures.iter().map(|figures| name(figures.name)).collect()
+    }
+}
+
 /// A checked circuit with its equations numbered. It is immutable while it is solved.
 pub struct Circuit {
     /// Elements in the order of the netlist.

@@ -3,6 +3,7 @@
 use super::numbering::{terminal_of, terminal_pair, winding_of};
 use super::{Circuit, Entry};
 use crate::dae::{Impulse, Point};
+use crate::elements::element::WHOLE;
 use crate::elements::{Quantity, Unknown};
 use crate::signals::{Owner, Phrase};
 
@@ -77,7 +78,11 @@ impl Circuit {
             Phrase::Of(quantity, whose) => {
                 let k = owner(whose)?;
                 let entry = &self.entries[k];
-                let winding = winding_of(entry, whose)?;
+                let of_core = matches!(quantity, Quantity::FluxDensity | Quantity::FieldStrength);
+                let winding = match &whose.winding {
+                    None if of_core && entry.windings.len() > 1 => WHOLE,
+                    _ => winding_of(entry, whose)?,
+                };
                 let (x, mode) = (vec![0.0; self.unknowns.len()], self.start_mode());
                 let at = Point {
                     time: 0.0,

@@ -45,7 +45,8 @@ pub trait Element: Send + Sync {
     fn follower(&mut self) -> Option<&mut dyn Follower> {
         None
     }
-    /// A quantity of its own (of one winding where the element has several); None where it has no such thing.
+    /// A quantity of its own (of one winding where the element has several, or of the [`WHOLE`]); None where it has no
+    /// such thing.
     fn quantity(&self, _quantity: Quantity, _winding: usize, _at: Point<'_>) -> Option<f64> {
         None
     }
@@ -65,6 +66,10 @@ pub trait Element: Send + Sync {
         Vec::new()
     }
 }
+
+/// Stands for the core as a whole where a winding's number is asked for: its flux density and field strength need no
+/// winding.
+pub const WHOLE: usize = usize::MAX;
 
 /// What the magnetics of one winding came out as.
 pub struct WindingFigures<'a> {

@@ -7,7 +7,8 @@
 
 use super::claims::{Claims, Measure, Wanted};
 use super::element::{
-    Element, Energy, Path, PathKind, Point, Quantity, Terms, Unknown, Unsound, WindingFigures,
+    Element, Energy, Path, PathKind, Point, Quantity, Terms, Unknown, Unsound, WHOLE,
+    WindingFigures,
 };
 use super::leg::Leg;
 use super::pairs::Pair;
@@ -444,7 +445,19 @@ impl Element for WoundLegs {
     }
 
     fn quantity(&self, quantity: Quantity, winding: usize, at: Point<'_>) -> Option<f64> {
-        let leg = &self.legs[self.windings.get(winding)?.leg];
+        let fullest = || {
+            let density = |leg: &&Leg| leg.flux_density(at.x).abs();
+            let legs = self.legs.iter();
+            legs.max_by(|a, b| density(a).total_cmp(&density(b)))
+        };
+        let leg = match winding {
+            WHOLE => fullest()?,
+            _ => &self.legs[self.windings.get(winding)?.leg],
+        };
+        let of_core = matches!(quantity, Quantity::FluxDensity | Quantity::FieldStrength);
+        if winding == WHOLE && !of_core {
+            return None;
+        }
         match quantity {
             Quantity::WindingCurrent => Some(self.currents[winding].of(at.x)),
             Quantity::FluxLinkage => Some(self.linkage(winding, at.x)),

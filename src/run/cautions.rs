@@ -5,6 +5,7 @@ use super::outcome::Outcome;
 use crate::analysis::steady;
 use crate::circuit::Circuit;
 use crate::diag::Diagnostic;
+use crate::elements::element::WindingFigures;
 use crate::signals::Trace;
 
 /// A kick this many times the largest supply counts as unsuppressed.
@@ -110,30 +111,28 @@ fn within_rating(outcome: &Outcome, element: &str) -> bool {
 }
 
 fn saturated_coils(netlist: &Netlist, outcome: &Outcome, cautions: &mut Vec<Diagnostic>) {
-    for entry in netlist
-        .circuit
-        .entries
-        .iter()
-        .filter(|entry| entry.kind.word == "coil")
-    {
-        let Some(trace) = outcome.trace(&format!("saturation of {}", entry.name)) else {
+    for entry in &netlist.circuit.entries {
+        let saturation = |owner: &String| {
+            let trace = outcome.trace(&format!("saturation of {owner}"))?;
+            let values = trace.pieces.iter().flat_map(|piece| {
+                let extremes = piece.extremes();
+                extremes.map(|(_, value)| value).collect::<Vec<f64>>()
+            });
+            Some(values.fold(f64::NEG_INFINITY, f64::max))
+        };
+        // Windings that share a leg share its saturation: it is said once, of the one that loses most.
+        let owners = entry.winding_owners();
+        let all = owners
+            .iter()
+            .filter_map(|owner| Some((owner, saturation(owner)?)));
+        let Some((owner, highest)) = all.max_by(|a, b| a.1.total_cmp(&b.1)) else {
             continue;
         };
-        let highest = trace
-            .pieces
-            .iter()
-            .flat_map(|piece| {
-                piece
-                    .extremes()
-                    .map(|(_, value)| value)
-                    .collect::<Vec<f64>>()
-            })
-            .fold(f64::NEG_INFINITY, f64::max);
         if highest > PAST_THE_KNEE {
             cautions.push(
                 Diagnostic::caution(
                     "past-the-knee",
-                    format!("`{}` is driven past its knee: {:.0} % of its inductance is gone", entry.name, 100.0 * highest),
+                    format!("`{owner}` is driven past its knee: {:.0} % of its inductance is gone", 100.0 * highest),
                 )
                 .at(entry.span, "this coil")
                 .help("there the figures rest on the magnetization far out: give the material a measured `curve`"),
@@ -145,34 +144,29 @@ fn saturated_coils(netlist: &Netlist, outcome: &Outcome, cautions: &mut Vec<Diag
 /// A flux density beyond the last point of a measured curve: the rest is vacuum by assumption.
 fn beyond_the_curve(netlist: &Netlist, outcome: &Outcome, cautions: &mut Vec<Diagnostic>) {
     for entry in &netlist.circuit.entries {
+        let beyond = |(owner, figures): (String, &WindingFigures<'_>)| {
+            let end = figures.wound.linkage.path().known_to()?;
+            let peak = largest(outcome.trace(&format!("flux density in {owner}"))?);
+            (peak > end).then_some((owner, peak, end))
+        };
         let windings = entry.element.windings();
-        let Some(end) = windings
-            .first()
-            .and_then(|figures| figures.wound.linkage.path().known_to())
-        else {
+        let mut all = entry.winding_owners().into_iter().zip(&windings);
+        let Some((owner, peak, end)) = all.find_map(beyond) else {
             continue;
         };
-        let Some(trace) = outcome.trace(&format!("flux density in {}", entry.name)) else {
-            continue;
-        };
-        let peak = largest(trace);
-        if peak > end {
-            let tesla =
-                |value: f64| crate::units::engineering(value, crate::units::FLUX_DENSITY, 3);
-            cautions.push(
-                Diagnostic::caution(
-                    "beyond-the-curve",
-                    format!(
-                        "`{}` reaches {}, its material's curve ends at {}",
-                        entry.name,
-                        tesla(peak),
-                        tesla(end)
-                    ),
-                )
-                .at(entry.span, "this coil")
-                .help("beyond its end the curve goes on with the slope of vacuum: give it more points"),
-            );
-        }
+        let tesla = |value: f64| crate::units::engineering(value, crate::units::FLUX_DENSITY, 3);
+        cautions.push(
+            Diagnostic::caution(
+                "beyond-the-curve",
+                format!(
+                    "`{owner}` reaches {}, its material's curve ends at {}",
+                    tesla(peak),
+                    tesla(end)
+                ),
+            )
+            .at(entry.span, "this coil")
+            .help("beyond its end the curve goes on with the slope of vacuum: give it more points"),
+        );
     }
 }
 

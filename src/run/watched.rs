@@ -11,15 +11,14 @@ use crate::units::Kind;
 const MOST_UNASKED: usize = 24;
 
 /// The waveforms of elements that are recorded unasked, by kind of element.
-const UNASKED: [(&str, &[&str]); 4] = [
+const UNASKED: [(&str, &[&str]); 3] = [
     ("switch", &["voltage across"]),
     ("contact", &["voltage across"]),
-    (
-        "coil",
-        &["winding current of", "flux density in", "saturation of"],
-    ),
     ("inductor", &["current through"]),
 ];
+
+/// The waveforms of windings on cores that are recorded unasked.
+const UNASKED_OF_WINDINGS: [&str; 3] = ["winding current of", "flux density in", "saturation of"];
 
 /// One signal: how it is read, what it measures, and its energy so far where it is one.
 struct Signal {
@@ -171,7 +170,14 @@ impl Signals {
 fn unasked(circuit: &Circuit) -> Vec<String> {
     let mut phrases = Vec::new();
     let mut counts = [0; UNASKED.len()];
+    let mut windings = 0;
     for entry in &circuit.entries {
+        for owner in entry.winding_owners() {
+            if windings < MOST_UNASKED {
+                windings += 1;
+                phrases.extend(UNASKED_OF_WINDINGS.map(|words| format!("{words} {owner}")));
+            }
+        }
         for ((kind, waveforms), count) in UNASKED.iter().zip(&mut counts) {
             if entry.kind.word == *kind && *count < MOST_UNASKED {
                 *count += 1;

@@ -3,7 +3,10 @@
 
 use super::kind::{ElementKind, Made, NODES, Surroundings, reference_temperature};
 use super::transformer::{INITIAL_CURRENT, SELF_CAPACITANCE, ends, read_turns};
-use super::winding::{RESISTANCE, TEMPERATURE_COEFFICIENT, TURNS, WIRE, Winding};
+use super::winding::{
+    LAYER_BREADTH, LAYERS, RESISTANCE, SKIN_AND_PROXIMITY, TEMPERATURE_COEFFICIENT, TURNS, WIRE,
+    Winding,
+};
 use super::wound::{Layout, Leakage, Turns, WoundLegs};
 use crate::diag::{Diagnostic, Span};
 use crate::magnetics::{Core, Network};
@@ -52,6 +55,9 @@ pub const WINDING_KEYS: &[Key] = &[
     WIRE,
     RESISTANCE,
     TEMPERATURE_COEFFICIENT,
+    SKIN_AND_PROXIMITY,
+    LAYERS,
+    LAYER_BREADTH,
     SELF_CAPACITANCE,
     INITIAL_CURRENT,
     Key::optional(

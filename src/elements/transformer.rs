@@ -3,7 +3,10 @@
 
 use super::kind::{ElementKind, Made, NODES, Surroundings, Terminal, reference_temperature};
 use super::pairs;
-use super::winding::{RESISTANCE, TEMPERATURE_COEFFICIENT, TURNS, WIRE, Winding};
+use super::winding::{
+    LAYER_BREADTH, LAYERS, RESISTANCE, SKIN_AND_PROXIMITY, TEMPERATURE_COEFFICIENT, TURNS, WIRE,
+    Winding,
+};
 use super::wound::{Concentric, Layout, Leakage, Turns, WoundLegs};
 use crate::netlist::{Fields, Key, Takes, Value};
 use crate::units;
@@ -88,6 +91,9 @@ pub const WINDING_KEYS: &[Key] = &[
     WIRE,
     RESISTANCE,
     TEMPERATURE_COEFFICIENT,
+    SKIN_AND_PROXIMITY,
+    LAYERS,
+    LAYER_BREADTH,
     SELF_CAPACITANCE,
     INITIAL_CURRENT,
     Key::optional(
@@ -169,7 +175,8 @@ pub fn read_turns(
     name: &str,
     leg: usize,
 ) -> Option<Turns> {
-    let winding = Winding::read(fields, around, reference, "a winding");
+    let winding = Winding::read(fields, around, reference, "a winding")
+        .and_then(|winding| winding.with_lay(fields));
     let self_capacitance = fields.non_negative("self_capacitance");
     let initial = fields.value("initial_current");
     Some(Turns {

@@ -12,6 +12,7 @@ use super::element::{
 };
 use super::leg::Leg;
 use super::pairs::Pair;
+use super::skin::Skin;
 use super::stamper::Stamper;
 use super::winding::{Winding, unsound};
 use crate::magnetics::leakage::{self, Layer};
@@ -104,6 +105,8 @@ pub struct WoundLegs {
     /// Leakage inductances [H].
     matrix: DMatrix<f64>,
     resistances: Vec<f64>,
+    /// Skin and proximity effect of each winding.
+    skins: Vec<Skin>,
     initial: Vec<f64>,
     made: Vec<Wound>,
     inductances_at_zero: Vec<f64>,
@@ -147,6 +150,7 @@ impl WoundLegs {
             legs: cores.iter().map(|_| Leg::default()).collect(),
             matrix: DMatrix::zeros(count, count),
             resistances: vec![0.0; count],
+            skins: (0..count).map(|_| Skin::default()).collect(),
             initial: vec![0.0; count],
             made: Vec::new(),
             inductances_at_zero: Vec::new(),
@@ -218,10 +222,11 @@ impl WoundLegs {
             let first = self.windings[..k]
                 .iter()
                 .all(|other| other.leg != turns.leg);
-            self.made.push(Wound {
+            let mut wound = Wound {
                 geometry: geometry.clone(),
                 linkage: Linkage::new(self.seen(turns.leg), turns.winding.turns() as f64),
                 shells: None,
+                inside: None,
                 resistance: of_wire,
                 // What is said of the leg is said once.
                 remarks: if first {
@@ -229,7 +234,16 @@ impl WoundLegs {
                 } else {
                     Vec::new()
                 },
-            });
+            };
+            let arranged = turns.winding.arranged(values, geometry)?;
+            let impedance = arranged.as_ref().map(|arranged| arranged.impedance);
+            self.skins[k].derive(impedance, self.resistances[k]);
+            if let Some((arranged, ladder)) = arranged.zip(self.skins[k].ladder()) {
+                wound
+                    .count_inside(arranged, ladder, self.resistances[k])
+                    .map_err(|fault| unsound(&fault))?;
+            }
+            self.made.push(wound);
         }
         Ok(())
     }
@@ -395,6 +409,7 @@ impl Element for WoundLegs {
             }
             claims.offer(Wanted::Of(Quantity::WindingCurrent, k), current, 1.0);
             self.currents.push(current);
+            self.skins[k].claim(claims);
             let wanted = Wanted::Of(Quantity::FluxLinkage, k);
             let linkage = claims
                 .wants(wanted)
@@ -485,6 +500,7 @@ impl Element for WoundLegs {
                 .sum();
             let flux = self.network.flux(turns.leg, &loops);
             q(self.currents[k], self.turns(k) * flux + leakage);
+            self.skins[k].initial_charge(self.initial[k], q);
         }
         for (leg, law) in self.legs.iter().enumerate() {
             law.initial_charge(self.network.flux(leg, &loops), q);
@@ -532,6 +548,8 @@ impl WoundLegs {
         let current = row.of(x);
         into.f(row, self.resistances[k] * current);
         into.df(row, row, self.resistances[k]);
+        let slopes = std::iter::once((row, 1.0));
+        self.skins[k].stamp(x, current, slopes, row, into);
         if self.windings[k].has_ends {
             let (a, b) = (&self.ports[2 * k], &self.ports[2 * k + 1]);
             into.f(row, b.node.of(x) - a.node.of(x));
@@ -600,17 +618,19 @@ impl Energy for WoundLegs {
     }
 
     fn loss(&self, at: Point<'_>) -> f64 {
-        let copper: f64 = self
-            .currents
-            .iter()
-            .zip(&self.resistances)
-            .map(|(i, r)| r * i.of(at.x).powi(2))
+        let copper: f64 = (0..self.currents.len())
+            .map(|k| {
+                let current = self.currents[k].of(at.x);
+                self.resistances[k] * current.powi(2) + self.skins[k].loss(at.x, current)
+            })
             .sum();
         copper + self.legs.iter().map(|leg| leg.loss(at.x)).sum::<f64>()
     }
 
     fn stored(&self, at: Point<'_>) -> f64 {
-        let mut energy: f64 = self.legs.iter().map(|leg| leg.stored(at.x)).sum();
+        let legs = self.legs.iter().map(|leg| leg.stored(at.x));
+        let copper = self.skins.iter().map(|skin| skin.stored(at.x));
+        let mut energy: f64 = legs.chain(copper).sum();
         for (j, first) in self.currents.iter().enumerate() {
             for (k, second) in self.currents.iter().enumerate() {
                 energy += 0.5 * self.matrix[(j, k)] * first.of(at.x) * second.of(at.x);

@@ -350,8 +350,8 @@ mod tests {
                     (told / slope - 1.0).abs() < 1e-6,
                     "{leg} {force} A: {told} {slope}"
                 );
-                let gained = seen.energy(1.001 * flux) - seen.energy(0.999 * flux);
-                assert!((gained / (0.002 * flux * force) - 1.0).abs() < 1e-4);
+                let gained = seen.energy(1.00001 * flux) - seen.energy(0.99999 * flux);
+                assert!((gained / (0.00002 * flux * force) - 1.0).abs() < 1e-6);
             }
         }
     }

@@ -28,6 +28,8 @@ const KINDS: &[(&str, f64)] = &[
     ("inductor", 2.0),
     ("coil", 2.0),
     ("coupled_inductors", 1.0),
+    ("transformer", 1.0),
+    ("magnetic_circuit", 1.0),
     ("cable", 0.7),
     ("voltage_source", 1.0),
     ("current_source", 1.0),
@@ -58,12 +60,12 @@ pub fn netlist(seed: u64, number: u64) -> String {
     Maker::new(Dice::new(seed, number)).whole(number)
 }
 
-struct Maker {
-    dice: Dice,
+pub(super) struct Maker {
+    pub(super) dice: Dice,
     nodes: Vec<String>,
     /// Simulated time [s]: the scale of every instant.
     duration: f64,
-    cores: String,
+    pub(super) cores: String,
     elements: String,
     /// Two-terminal elements so far.
     pairs: Vec<String>,
@@ -119,15 +121,15 @@ impl Maker {
             let ambient = self.dice.between(-40.0, 100.0).round();
             writeln!(out, "ambient: {ambient} °C").expect("a text grows");
         }
+        if self.elements.contains("material: ") || !self.cores.is_empty() {
+            out.push_str(
+                "materials:\n  iron: {initial_permeability: 2500, saturation: 1.4 T}\n  \
+                 solid_iron: {initial_permeability: 1500, saturation: 1.6 T, resistivity: 0.12 µΩ m}\n  \
+                 ferrite: {curve: [[0 A/m, 0 T], [40 A/m, 0.2 T], [150 A/m, 0.36 T], [1 kA/m, 0.44 T]]}\n",
+            );
+        }
         if !self.cores.is_empty() {
-            write!(
-                out,
-                "materials:\n  iron: {{initial_permeability: 2500, saturation: 1.4 T}}\n  \
-                 ferrite: {{curve: [[0 A/m, 0 T], [40 A/m, 0.2 T], [150 A/m, 0.36 T], [1 kA/m, 0.44 T]]}}\n\
-                 cores:\n{}",
-                self.cores
-            )
-            .expect("a text grows");
+            write!(out, "cores:\n{}", self.cores).expect("a text grows");
         }
         write!(out, "elements:\n{}", self.elements).expect("a text grows");
         match task {
@@ -196,7 +198,7 @@ impl Maker {
     }
 
     /// Two nodes, seldom the same one.
-    fn two_nodes(&mut self) -> (String, String) {
+    pub(super) fn two_nodes(&mut self) -> (String, String) {
         let count = self.nodes.len();
         let a = self.dice.below(count);
         let mut b = self.dice.below(count);
@@ -207,7 +209,7 @@ impl Maker {
     }
 
     /// A value with its unit, written in one of the ways that a person writes it.
-    fn written(&mut self, value: f64, unit: &str) -> String {
+    pub(super) fn written(&mut self, value: f64, unit: &str) -> String {
         let prefixes = [
             (1e-9, "n"),
             (1e-6, "µ"),
@@ -225,7 +227,7 @@ impl Maker {
         format!("{value:.4e} {unit}")
     }
 
-    fn quantity(&mut self, low: f64, high: f64, unit: &str) -> String {
+    pub(super) fn quantity(&mut self, low: f64, high: f64, unit: &str) -> String {
         let value = self.dice.over_decades(low, high);
         self.written(value, unit)
     }
@@ -243,7 +245,7 @@ impl Maker {
     }
 
     /// With a chance, a key behind a comma.
-    fn perhaps(
+    pub(super) fn perhaps(
         &mut self,
         chance: f64,
         key: &str,
@@ -265,7 +267,7 @@ impl Maker {
         format!("{kind}{}", self.made)
     }
 
-    fn line(&mut self, name: &str, kind: &str, keys: &str) {
+    pub(super) fn line(&mut self, name: &str, kind: &str, keys: &str) {
         writeln!(self.elements, "  {name}: {{kind: {kind}, {keys}}}").expect("a text grows");
     }
 
@@ -278,6 +280,8 @@ impl Maker {
             "inductor" => self.inductor(&nodes),
             "coil" => self.coil(&name, &nodes),
             "coupled_inductors" => return self.coupled(&name, &a, &b),
+            "transformer" => return self.transformer(&name, &a, &b),
+            "magnetic_circuit" => return self.magnetic_circuit(&name, &a, &b),
             "cable" => return self.cable(&name, &a, &b),
             "voltage_source" => self.source(&nodes, "voltage", (1e-4, 1e3), "V"),
             "current_source" => self.source(&nodes, "current", (1e-7, 10.0), "A"),
@@ -323,15 +327,8 @@ impl Maker {
     }
 
     fn coil(&mut self, name: &str, nodes: &str) -> String {
-        let gap = self.perhaps(0.6, "gap", |maker| maker.quantity(1e-5, 1e-3, "m"));
-        let material = self.dice.one_of(&["iron", "ferrite"]);
-        let length = self.quantity(5e-3, 0.2, "m");
-        let area = self.dice.over_decades(1.0, 1e3);
-        writeln!(
-            self.cores,
-            "  {name}_core: {{shape: effective, length: {length}, area: {area:.3} mm²{gap}, mean_turn: 40 mm, material: {material}}}"
-        )
-        .expect("a text grows");
+        let core = self.core_keys();
+        writeln!(self.cores, "  {name}_core: {{{core}}}").expect("a text grows");
         let turns = self.dice.over_decades(1.0, 1e4).round().max(1.0);
         let resistance = self.quantity(1e-3, 1e3, "Ω");
         let copper = self.copper(turns, &resistance);
@@ -350,7 +347,7 @@ impl Maker {
     }
 
     /// A resistance, or now and then a wire with its skin and proximity effect.
-    fn copper(&mut self, turns: f64, resistance: &str) -> String {
+    pub(super) fn copper(&mut self, turns: f64, resistance: &str) -> String {
         if !self.dice.chance(0.2) {
             return format!("resistance: {resistance}");
         }

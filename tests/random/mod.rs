@@ -3,3 +3,4 @@
 pub mod circuit;
 pub mod dice;
 pub mod judge;
+mod wound;

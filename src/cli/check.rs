@@ -2,8 +2,9 @@
 
 use super::common::{self, Source};
 use super::exit;
+use crate::report::coil;
 use crate::report::json::Object;
-use crate::report::run::{json, text};
+use crate::report::run::json;
 use crate::report::tables::{Align, Table};
 use crate::run::coil_reports;
 
@@ -28,7 +29,7 @@ pub fn main(arguments: &Arguments) -> u8 {
             .text("title", Some(&netlist.title))
             .value("elements", circuit.entries.len())
             .value("nodes", circuit.node_names.len())
-            .value("coils", json::coils(&coils))
+            .value("coils", coil::json::coils(&coils))
             .value("cautions", json::cautions(&netlist.cautions))
             .value("defaults", json::defaults_used(&netlist.defaults));
         common::print(&common::json_text(&object.into()));
@@ -45,7 +46,7 @@ pub fn main(arguments: &Arguments) -> u8 {
         circuit.node_names.len() + 1,
         circuit.unknowns.len()
     );
-    let table = text::coils(&coils);
+    let table = coil::text::coils(&coils);
     if !table.is_empty() {
         out += &format!("\nCoils\n{}", table.render(common::screen()));
     }

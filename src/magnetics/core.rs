@@ -1,12 +1,13 @@
 //! A core: a shape filled with a material, and what it comes out as under a winding.
 
+use super::MU0;
 use super::eddy::{Section, Shells};
 use super::geometry::{Fault, Geometry, Remark};
 use super::linkage::{CurvePoint, Linkage};
 use super::losses::{Arranged, Impedance, Ladder};
 use super::materials::{Filling, Linear, Losses, Magnetized};
 use super::path::Path;
-use super::shapes::Shape;
+use super::shapes::{Around, Shape};
 use super::winding::WindingPlan;
 use crate::netlist::{Value, Values};
 use std::sync::Arc;
@@ -82,7 +83,6 @@ impl Core {
         winding: Option<&WindingPlan>,
         temperature: f64,
     ) -> Result<(Path, Geometry), Fault> {
-        let mut geometry = sound(self.shape.derive(values, winding)?)?;
         let magnetized = match &self.material {
             Some(filling) => filling.magnetization.derive(values, temperature)?,
             None => Magnetized {
@@ -90,6 +90,11 @@ impl Core {
                 remarks: Vec::new(),
             },
         };
+        let around = Around {
+            winding,
+            permeability: magnetized.curve.flux_density(0.0).1 / MU0,
+        };
+        let mut geometry = sound(self.shape.derive(values, &around)?)?;
         geometry.remarks.extend(magnetized.remarks);
         Ok((Path::new(&geometry, magnetized.curve), geometry))
     }

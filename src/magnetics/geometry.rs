@@ -2,6 +2,9 @@
 
 use super::MU0;
 use super::fringing::Fringing;
+use super::gaps::Gap;
+use super::moving::MovingGap;
+use super::winding::WindingPlan;
 
 /// Geometry of one magnetic path. SI units.
 #[derive(Clone, Debug, PartialEq)]
@@ -19,10 +22,12 @@ pub struct Geometry {
     /// Length of air [m], of section `area`, in series with the material: the gap over its fringing factor, or for a
     /// coil in air the length that has its permeance.
     pub air: f64,
-    /// All gaps as drawn [m].
-    pub gap: f64,
-    /// The fringing rule and its factor; None where there is no gap to fringe.
+    /// All gaps as drawn, one by one.
+    pub gaps: Vec<Gap>,
+    /// The fringing rule and its factor over all gaps; None where there is no gap to fringe.
     pub fringing: Option<Fringing>,
+    /// The gap that an armature closes, where the shape has one; it is among the gaps too.
+    pub moving: Option<MovingGap>,
     /// Mean length of a turn [m], where the shape tells it.
     pub mean_turn: Option<f64>,
     /// The space for windings, where the shape tells it.
@@ -92,8 +97,9 @@ impl Geometry {
             volume: length * area,
             iron: length,
             air: 0.0,
-            gap: 0.0,
+            gaps: Vec::new(),
             fringing: None,
+            moving: None,
             mean_turn: None,
             window: None,
             layer_breadth: None,
@@ -110,15 +116,62 @@ impl Geometry {
         }
     }
 
-    /// Puts a gap into the path: in series with the material, shorter by its fringing factor.
-    pub fn with_gap(mut self, gap: f64, fringing: Option<Fringing>) -> Self {
-        let factor = fringing.as_ref().map_or(1.0, |fringing| fringing.factor);
-        self.gap = gap;
-        self.air = gap / factor;
-        if let Some(fringing) = &fringing {
-            self.remarks.extend(fringing.remark.clone());
+    /// Puts a gap of the path's own section into it.
+    pub fn with_gap(self, gap: f64, fringing: Option<Fringing>) -> Self {
+        let area = self.area;
+        self.with_gaps(vec![Gap {
+            place: "gap",
+            length: gap,
+            area,
+            fringing,
+        }])
+    }
+
+    /// Puts gaps into the path: in series with the material, each shorter by its fringing factor and counted at the
+    /// path's section.
+    pub fn with_gaps(mut self, gaps: Vec<Gap>) -> Self {
+        let (mut straight, mut fringed) = (0.0, 0.0);
+        for gap in &gaps {
+            let length = gap.length * self.area / gap.area;
+            let factor = gap
+                .fringing
+                .as_ref()
+                .map_or(1.0, |fringing| fringing.factor);
+            straight += length;
+            fringed += length / factor;
         }
-        self.fringing = fringing;
+        self.air += fringed;
+        let mut told = gaps.iter().filter_map(|gap| gap.fringing.as_ref());
+        if let Some(first) = told.next() {
+            self.fringing = Some(Fringing {
+                factor: if fringed > 0.0 {
+                    straight / fringed
+                } else {
+                    first.factor
+                },
+                within: gaps
+                    .iter()
+                    .all(|gap| gap.fringing.as_ref().is_none_or(|fringing| fringing.within)),
+                ..first.clone()
+            });
+        }
+        // Gaps of one kind have one caution.
+        for gap in &gaps {
+            let remark = gap
+                .fringing
+                .as_ref()
+                .and_then(|fringing| fringing.remark.clone());
+            self.remarks
+                .extend(remark.filter(|remark| !self.remarks.contains(remark)));
+        }
+        self.gaps = gaps;
         self
+    }
+
+    /// Gives the geometry its window, and the caution where a winding crowds it.
+    pub fn wind(&mut self, window: Window, winding: Option<&WindingPlan>) {
+        self.window = Some(window);
+        self.remarks
+            .extend(winding.and_then(|winding| winding.crowding(window)));
     }
 }

@@ -1,6 +1,7 @@
 //! What people look at: tables, plots, waveforms as CSV, JSON, files. Values come in, texts and bytes go out.
 
 pub mod chart;
+pub mod coil;
 pub mod csv;
 mod drawing;
 pub mod engineering;

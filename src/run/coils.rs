@@ -4,6 +4,7 @@ use crate::circuit::{Circuit, Entry};
 use crate::dae::Point;
 use crate::elements::{Quantity, element::WindingFigures};
 pub use crate::magnetics::CurvePoint;
+use crate::magnetics::Geometry;
 
 /// The figures of one coil or winding. SI units.
 #[derive(Clone, Debug)]
@@ -24,16 +25,8 @@ pub struct CoilReport {
     pub operating_current: Option<f64>,
     /// Energy of the field at that current [J].
     pub stored_energy: Option<f64>,
-    /// Effective length of the magnetic path [m].
-    pub path_length: f64,
-    /// Effective area [m²].
-    pub path_area: f64,
-    /// Effective volume [m³].
-    pub path_volume: f64,
-    /// Mean turn [m].
-    pub mean_turn: Option<f64>,
-    /// Fringing rule and factor.
-    pub fringing: Option<(String, f64)>,
+    /// Path, gaps, mean turn, window and fringing.
+    pub geometry: Geometry,
     /// Flux density in the smallest section at the operating current [T].
     pub peak_flux_density: Option<f64>,
     /// Flux linkage, inductance and flux density over current.
@@ -83,14 +76,7 @@ pub fn coil_report(
             .then(|| found.inductance_at_zero / figures.resistance),
         operating_current: current,
         stored_energy: found.stored_energy,
-        path_length: geometry.length,
-        path_area: geometry.area,
-        path_volume: geometry.volume,
-        mean_turn: geometry.mean_turn,
-        fringing: geometry
-            .fringing
-            .as_ref()
-            .map(|fringing| (fringing.rule.to_string(), fringing.factor)),
+        geometry: geometry.clone(),
         peak_flux_density: found.peak_flux_density,
         curve: found.curve,
     }

@@ -156,7 +156,10 @@ fn check_coil(coil: &Value) {
             "stored_energy",
             "path",
             "mean_turn",
+            "window_area",
             "fringing",
+            "gaps",
+            "moving_gap",
             "peak_flux_density",
             "curve"
         ]

@@ -17,6 +17,9 @@ pub const RULES: &[Rule] = &[
     muehlethaler::RULE,
 ];
 
+/// How near any of the rules comes, as a share: none knows the window.
+pub const BAND: f64 = 0.1;
+
 /// The rules' words.
 pub const WORDS: [&str; RULES.len()] = {
     let mut words = [""; RULES.len()];
@@ -77,6 +80,8 @@ pub struct Fringing {
     pub factor: f64,
     /// Where the rule comes from.
     pub source: &'static str,
+    /// False where the formula means nothing at this gap and the factor is 1 for want of a better.
+    pub within: bool,
     /// A caution where the gap is long for any rule.
     pub remark: Option<super::Remark>,
 }
@@ -129,6 +134,7 @@ impl Rule {
             rule: self.word,
             factor: found.unwrap_or(1.0),
             source: self.source,
+            within: found.is_some(),
             remark: self.remark(leg, found),
         }
     }

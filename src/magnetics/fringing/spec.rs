@@ -1,6 +1,7 @@
 //! The keys of fringing, read from a core.
 
-use super::{Fringing, LegGap, RULES, Rule, Section, WORDS};
+use super::{RULES, Rule, Section, WORDS};
+use crate::magnetics::gaps::Leg;
 use crate::netlist::{Fields, Key, Takes, Value, Values};
 use crate::units::LENGTH;
 
@@ -88,24 +89,26 @@ impl Spec {
         })
     }
 
-    /// The rule applied to a gap [m] (None for no gap) in a leg of `area` [m²].
-    pub fn derive(&self, values: &Values, gap: f64, area: f64) -> Option<Fringing> {
+    /// The rule named.
+    pub fn rule(&self) -> &'static Rule {
+        self.rule
+    }
+
+    /// The leg of `area` [m²] that the gaps stand in.
+    pub fn leg(&self, values: &Values, area: f64) -> Leg {
         let section = match self.section {
             Written::Rectangle(width, depth) => Section::Rectangle(values[width], values[depth]),
             Written::Round(diameter) => Section::Round(values[diameter]),
             Written::Unsaid => Section::Area(area),
         };
         let height = |value: Option<Value>| value.map(|value| values[value]);
-        let (window_height, leg_height) = (height(self.window_height), height(self.leg_height));
-        apply(
-            self.rule,
-            LegGap {
-                gap,
-                section,
-                window_height,
-                leg_height,
-            },
-        )
+        Leg {
+            place: "gap",
+            section,
+            area,
+            window_height: height(self.window_height),
+            leg_height: height(self.leg_height),
+        }
     }
 }
 
@@ -113,11 +116,6 @@ impl Spec {
 pub fn rule(fields: &Fields<'_>) -> Option<&'static Rule> {
     let word = fields.word("fringing")?;
     RULES.iter().find(|rule| rule.word == word)
-}
-
-/// The rule applied, where there is a gap.
-pub fn apply(rule: &'static Rule, leg: LegGap) -> Option<Fringing> {
-    (leg.gap > 0.0).then(|| rule.apply(&leg))
 }
 
 fn section(fields: &Fields<'_>) -> Option<Written> {

@@ -6,6 +6,7 @@ pub mod curve;
 pub mod linear;
 pub mod losses;
 pub mod magnetization;
+pub mod roll_off;
 mod saturation;
 pub mod smooth;
 
@@ -16,6 +17,7 @@ pub use curve::{Table, TableFault};
 pub use linear::Linear;
 pub use losses::{Losses, Steinmetz};
 pub use magnetization::Magnetization;
+pub use roll_off::Powder;
 pub use smooth::Smooth;
 
 use super::geometry::{Fault, Remark};
@@ -25,7 +27,7 @@ use crate::units::PERMEABILITY;
 use std::sync::Arc;
 
 /// The kinds of material; the first whose `told_by` is written is meant.
-pub const MATERIALS: &[MaterialKind] = &[curve::KIND, smooth::KIND, linear::KIND];
+pub const MATERIALS: &[MaterialKind] = &[curve::KIND, smooth::KIND, roll_off::KIND, linear::KIND];
 
 const INITIAL_PERMEABILITY: Key = Key::optional(
     "initial_permeability",

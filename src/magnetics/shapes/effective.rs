@@ -2,10 +2,10 @@
 //!
 //! H length + (B/mu0) gap/F = N i, `length` being that of the iron and F the fringing factor (1 unless a rule is named).
 
-use super::{Shape, ShapeKind};
+use super::{Around, Shape, ShapeKind};
 use crate::magnetics::fringing::spec::{EFFECTIVE_KEYS, Spec};
+use crate::magnetics::gaps::{self, Gapping, Legs};
 use crate::magnetics::geometry::{Fault, Geometry, Window};
-use crate::magnetics::winding::WindingPlan;
 use crate::netlist::{Fields, Key, Takes, Value, Values};
 use crate::units::{AREA, LENGTH};
 
@@ -13,7 +13,7 @@ use crate::units::{AREA, LENGTH};
 pub const KIND: ShapeKind = ShapeKind {
     word: "effective",
     about: "a core told by its effective length and area",
-    keys: &[KEYS, EFFECTIVE_KEYS],
+    keys: &[KEYS, gaps::KEYS, EFFECTIVE_KEYS],
     takes_material: true,
     read,
 };
@@ -30,7 +30,6 @@ const KEYS: &[Key] = &[
         Takes::Quantity(AREA),
         "smallest section, where the flux density peaks",
     ),
-    Key::optional("gap", Takes::Quantity(LENGTH), "all air gaps together"),
     Key::optional(
         "mean_turn",
         Takes::Quantity(LENGTH),
@@ -47,7 +46,7 @@ struct Effective {
     length: Value,
     area: Value,
     minimum_area: Option<Value>,
-    gap: Option<Value>,
+    gapping: Gapping,
     mean_turn: Option<Value>,
     window_area: Option<Value>,
     fringing: Spec,
@@ -56,16 +55,16 @@ struct Effective {
 fn read(fields: &Fields<'_>) -> Option<Box<dyn Shape>> {
     let (length, area) = (fields.positive("length"), fields.positive("area"));
     let minimum_area = fields.positive("minimum_area");
-    let gap = fields.non_negative("gap");
     let (mean_turn, window_area) = (fields.positive("mean_turn"), fields.positive("window_area"));
     let fringing = Spec::read(fields)?;
+    let gapping = Gapping::read(fields, false, fringing.rule(), false)?;
     smallest_below_effective(fields)?;
     let (length, area) = length.zip(area)?;
     Some(Box::new(Effective {
         length,
         area,
         minimum_area,
-        gap,
+        gapping,
         mean_turn,
         window_area,
         fringing,
@@ -92,19 +91,25 @@ fn smallest_below_effective(fields: &Fields<'_>) -> Option<()> {
 }
 
 impl Shape for Effective {
-    fn derive(&self, values: &Values, winding: Option<&WindingPlan>) -> Result<Geometry, Fault> {
+    fn derive(&self, values: &Values, around: &Around<'_>) -> Result<Geometry, Fault> {
         let optional = |value: Option<Value>| value.map(|value| values[value]);
-        let (area, gap) = (values[self.area], optional(self.gap).unwrap_or(0.0));
-        let mut geometry = Geometry::closed(values[self.length], area)
-            .with_gap(gap, self.fringing.derive(values, gap, area));
+        let area = values[self.area];
+        let legs = Legs {
+            ground: self.fringing.leg(values, area),
+            others: &[],
+        };
+        let closed = Geometry::closed(values[self.length], area);
+        let mut geometry = self
+            .gapping
+            .derive(values, closed, &legs, around.permeability)?;
         geometry.minimum_area = optional(self.minimum_area).unwrap_or(area);
         geometry.mean_turn = optional(self.mean_turn);
-        geometry.window = optional(self.window_area).map(|area| Window {
-            area,
-            practical_fill: PRACTICAL_FILL,
-        });
-        if let (Some(window), Some(winding)) = (geometry.window, winding) {
-            geometry.remarks.extend(winding.crowding(window));
+        if let Some(area) = optional(self.window_area) {
+            let window = Window {
+                area,
+                practical_fill: PRACTICAL_FILL,
+            };
+            geometry.wind(window, around.winding);
         }
         Ok(geometry)
     }

@@ -1,13 +1,16 @@
-//! `shape: solenoid`: a straight coil in air, told in one of three ways.
+//! `shape: solenoid`: a straight coil in air, told in one of three ways, or with a slug of material in it.
 //!
 //! `mean_diameter` and `length`: the current sheet. `inner_diameter`, `outer_diameter` and `length`: current spread over the
-//! section. With `layers` and the coil's wire: turn by turn.
+//! section. With `layers` and the coil's wire: turn by turn. `core_diameter` and `core_length` put a slug into the
+//! middle of any of them ([`crate::magnetics::open_core`]), which sees a thick coil as three layers of one third each.
 
-use super::{Shape, ShapeKind, ordered};
+use super::{Around, Shape, ShapeKind, ordered};
+use crate::magnetics::MU0;
 use crate::magnetics::air::section::{self, Section};
 use crate::magnetics::air::sheet;
 use crate::magnetics::air::turns::Lattice;
 use crate::magnetics::geometry::{Fault, Geometry, Remark, Window};
+use crate::magnetics::open_core::{Coil, Cylinder, sheet_coil, with_core};
 use crate::magnetics::winding::WindingPlan;
 use crate::netlist::{Fields, Key, Takes, Value, Values};
 use crate::units::LENGTH;
@@ -16,9 +19,9 @@ use std::f64::consts::{FRAC_PI_4, PI};
 /// `shape: solenoid`.
 pub const KIND: ShapeKind = ShapeKind {
     word: "solenoid",
-    about: "a straight coil in air",
+    about: "a straight coil in air, or with a slug in it",
     keys: &[KEYS],
-    takes_material: false,
+    takes_material: true,
     read,
 };
 
@@ -58,13 +61,30 @@ const KEYS: &[Key] = &[
         Takes::Quantity(LENGTH),
         "from layer to layer; the wire's outer diameter unless said",
     ),
+    Key::optional(
+        "core_diameter",
+        Takes::Quantity(LENGTH),
+        "diameter of a slug of the core's material in the coil",
+    ),
+    Key::optional(
+        "core_length",
+        Takes::Quantity(LENGTH),
+        "length of the slug, whose middle is the coil's",
+    ),
 ];
 
 /// Room beside bobbin walls and imperfect lay: common practice.
 const PRACTICAL_FILL: f64 = 0.9;
 
 #[derive(Debug)]
-enum Solenoid {
+struct Solenoid {
+    coil: Winding,
+    /// Diameter and length of the slug.
+    slug: Option<(Value, Value)>,
+}
+
+#[derive(Debug)]
+enum Winding {
     Sheet {
         diameter: Value,
         length: Value,
@@ -90,16 +110,64 @@ struct Layered {
 }
 
 fn read(fields: &Fields<'_>) -> Option<Box<dyn Shape>> {
-    let shape = if fields.has("layers") {
-        Solenoid::Layered(layered(fields)?)
+    let slug = slug(fields);
+    let coil = if fields.has("layers") {
+        Winding::Layered(layered(fields)?)
     } else {
         only_with_layers(fields)?;
         spread_out(fields)?
     };
-    Some(Box::new(shape))
+    Some(Box::new(Solenoid { coil, slug: slug? }))
 }
 
-fn spread_out(fields: &Fields<'_>) -> Option<Solenoid> {
+/// The slug, where there is one; a material and a slug belong together.
+#[allow(clippy::option_option)]
+fn slug(fields: &Fields<'_>) -> Option<Option<(Value, Value)>> {
+    let (across, along) = (fields.has("core_diameter"), fields.has("core_length"));
+    if !across && !along {
+        if fields.has("material") {
+            fields.error(
+                "material",
+                "conflicting-keys",
+                "a solenoid without `core_diameter` and `core_length` is a coil in air and takes no `material`",
+                "nothing to fill",
+                None,
+            );
+            return None;
+        }
+        return Some(None);
+    }
+    let diameter = fields.needed_with("core_diameter", "core_length");
+    let length = fields.needed_with("core_length", "core_diameter");
+    let around = if fields.has("mean_diameter") {
+        "mean_diameter"
+    } else {
+        "inner_diameter"
+    };
+    if fields.has(around) {
+        fits(fields, around)?;
+    }
+    Some(Some((diameter?, length?)))
+}
+
+/// A slug fits into its coil.
+fn fits(fields: &Fields<'_>, around: &str) -> Option<()> {
+    let (slug, hole) = (fields.amount("core_diameter")?, fields.amount(around)?);
+    if slug.high <= hole.low {
+        return Some(());
+    }
+    let headline = format!("core_diameter must not exceed {around}");
+    fields.error(
+        "core_diameter",
+        "out-of-range",
+        headline,
+        "it does not fit into the coil",
+        None,
+    );
+    None
+}
+
+fn spread_out(fields: &Fields<'_>) -> Option<Winding> {
     if !fields.has("length") {
         fields.missing("length");
     }
@@ -110,7 +178,7 @@ fn spread_out(fields: &Fields<'_>) -> Option<Solenoid> {
             one_diameter(fields);
             return None;
         }
-        return Some(Solenoid::Sheet {
+        return Some(Winding::Sheet {
             diameter: fields.positive("mean_diameter")?,
             length: length?,
         });
@@ -142,7 +210,7 @@ fn spread_out(fields: &Fields<'_>) -> Option<Solenoid> {
         fields.positive("outer_diameter"),
     );
     ordered(fields, "inner_diameter", "outer_diameter")?;
-    Some(Solenoid::Thick {
+    Some(Winding::Thick {
         inner: inner?,
         outer: outer?,
         length: length?,
@@ -210,24 +278,67 @@ fn one_diameter(fields: &Fields<'_>) {
 }
 
 impl Shape for Solenoid {
-    fn derive(&self, values: &Values, winding: Option<&WindingPlan>) -> Result<Geometry, Fault> {
+    fn derive(&self, values: &Values, around: &Around<'_>) -> Result<Geometry, Fault> {
+        let (air, coil) = self.coil.derive(values, around.winding)?;
+        let Some((diameter, length)) = self.slug else {
+            return Ok(air);
+        };
+        let slug = Cylinder {
+            diameter: values[diameter],
+            length: values[length],
+        };
+        super::above_zero(&[slug.diameter, slug.length])?;
+        super::slender(slug.length / slug.diameter, coil.length / slug.length)?;
+        if coil.diameters.iter().any(|&outer| slug.diameter > outer) {
+            return Err(no_room(
+                "core_diameter",
+                "the slug does not fit into its coil",
+            ));
+        }
+        // What the coil alone has, told by its path.
+        let permeance = MU0 * air.area / air.air;
+        with_core(air, permeance, &coil, slug, around.permeability)
+    }
+}
+
+/// Three layers that stand for an even section.
+fn three_layers(inner: f64, outer: f64, length: f64) -> Coil {
+    // Of equal weight (Chebyshev's rule of three points, exact for cubics): middle, and ±1/√2 of the half depth.
+    let (middle, half) = (0.5 * (inner + outer), 0.5 * (outer - inner));
+    let away = half * std::f64::consts::FRAC_1_SQRT_2;
+    Coil {
+        diameters: vec![middle - away, middle, middle + away],
+        length,
+    }
+}
+
+impl Winding {
+    /// The coil in air, and as what a slug sees it.
+    fn derive(
+        &self,
+        values: &Values,
+        winding: Option<&WindingPlan>,
+    ) -> Result<(Geometry, Coil), Fault> {
         match self {
-            Solenoid::Sheet { diameter, length } => {
-                Ok(one_layer(values[*diameter], values[*length], winding))
+            Winding::Sheet { diameter, length } => {
+                let (diameter, length) = (values[*diameter], values[*length]);
+                let (coil, _) = sheet_coil(diameter, length);
+                Ok((one_layer(diameter, length, winding), coil))
             }
-            Solenoid::Thick {
+            Winding::Thick {
                 inner,
                 outer,
                 length,
             } => {
+                let (inner, outer, length) = (values[*inner], values[*outer], values[*length]);
                 let section = Section {
-                    inner: 0.5 * values[*inner],
-                    outer: 0.5 * values[*outer],
-                    length: values[*length],
+                    inner: 0.5 * inner,
+                    outer: 0.5 * outer,
+                    length,
                 };
-                thick(section, winding)
+                Ok((thick(section, winding)?, three_layers(inner, outer, length)))
             }
-            Solenoid::Layered(layered) => layered.derive(values, winding),
+            Winding::Layered(layered) => layered.derive(values, winding),
         }
     }
 }
@@ -278,7 +389,11 @@ fn in_air(diameter: f64, length: f64, permeance: f64) -> Geometry {
 }
 
 impl Layered {
-    fn derive(&self, values: &Values, winding: Option<&WindingPlan>) -> Result<Geometry, Fault> {
+    fn derive(
+        &self,
+        values: &Values,
+        winding: Option<&WindingPlan>,
+    ) -> Result<(Geometry, Coil), Fault> {
         let wire = winding.and_then(|winding| winding.wire.as_ref());
         let bare = wire.and_then(|wire| wire.bare_diameter);
         let (Some(winding), Some(wire), Some(bare_diameter)) = (winding, wire, bare) else {
@@ -317,7 +432,12 @@ impl Layered {
                 "turns closer than the bare wire's diameter overlap",
             ));
         }
-        Ok(self.geometry(values, &lattice, wire.outer))
+        let coil = three_layers(
+            lattice.inner_diameter,
+            lattice.outer_diameter(),
+            lattice.length(),
+        );
+        Ok((self.geometry(values, &lattice, wire.outer), coil))
     }
 
     fn geometry(&self, values: &Values, lattice: &Lattice, outer: f64) -> Geometry {

@@ -5,9 +5,10 @@
 //! effective length less the gap, and the gap has the effective area. Its leg is the ring's section, a quarter of the
 //! mean circle high: beyond that the two sides no longer face each other across the gap.
 
-use super::{Shape, ShapeKind, ordered};
-use crate::magnetics::fringing::spec::{DRAWN_KEYS, apply, rule};
-use crate::magnetics::fringing::{LegGap, Rule, Section};
+use super::{Around, Shape, ShapeKind, ordered};
+use crate::magnetics::fringing::Section;
+use crate::magnetics::fringing::spec::{DRAWN_KEYS, rule};
+use crate::magnetics::gaps::{self, Gapping, Leg, Legs};
 use crate::magnetics::geometry::{Fault, Geometry, Window};
 use crate::magnetics::winding::WindingPlan;
 use crate::netlist::{Fields, Key, Takes, Value, Values};
@@ -18,7 +19,7 @@ use std::f64::consts::{FRAC_PI_4, PI};
 pub const KIND: ShapeKind = ShapeKind {
     word: "toroid",
     about: "a ring of rectangular section",
-    keys: &[KEYS, DRAWN_KEYS],
+    keys: &[KEYS, gaps::KEYS, DRAWN_KEYS],
     takes_material: true,
     read,
 };
@@ -35,7 +36,6 @@ const KEYS: &[Key] = &[
         "diameter of the hole",
     ),
     Key::required("height", Takes::Quantity(LENGTH), "height along the axis"),
-    Key::optional("gap", Takes::Quantity(LENGTH), "a slit across the ring"),
 ];
 
 /// The hole must leave room for the shuttle or the hand: common practice.
@@ -46,8 +46,7 @@ struct Toroid {
     outer: Value,
     inner: Value,
     height: Value,
-    gap: Option<Value>,
-    rule: &'static Rule,
+    gapping: Gapping,
 }
 
 fn read(fields: &Fields<'_>) -> Option<Box<dyn Shape>> {
@@ -55,8 +54,8 @@ fn read(fields: &Fields<'_>) -> Option<Box<dyn Shape>> {
         fields.positive("outer_diameter"),
         fields.positive("inner_diameter"),
     );
-    let (height, gap) = (fields.positive("height"), fields.non_negative("gap"));
-    let rule = rule(fields)?;
+    let height = fields.positive("height");
+    let gapping = Gapping::read(fields, false, rule(fields)?, true);
     let (outer, inner) = outer.zip(inner)?;
     ordered(fields, "inner_diameter", "outer_diameter")?;
     gap_leaves_iron(fields)?;
@@ -64,14 +63,13 @@ fn read(fields: &Fields<'_>) -> Option<Box<dyn Shape>> {
         outer,
         inner,
         height: height?,
-        gap,
-        rule,
+        gapping: gapping?,
     }))
 }
 
 /// The slit must fit into the inner circle.
 fn gap_leaves_iron(fields: &Fields<'_>) -> Option<()> {
-    if !fields.has("gap") {
+    if fields.node("gap").is_none_or(|node| node.text().is_none()) {
         return Some(());
     }
     let (gap, inner) = (fields.amount("gap")?, fields.amount("inner_diameter")?);
@@ -100,37 +98,33 @@ pub fn effective(outer: f64, inner: f64, height: f64) -> (f64, f64) {
 }
 
 impl Shape for Toroid {
-    fn derive(&self, values: &Values, winding: Option<&WindingPlan>) -> Result<Geometry, Fault> {
+    fn derive(&self, values: &Values, around: &Around<'_>) -> Result<Geometry, Fault> {
         let (outer, inner, height) = (values[self.outer], values[self.inner], values[self.height]);
-        let gap = self.gap.map_or(0.0, |gap| values[gap]);
         let width = 0.5 * (outer - inner);
+        super::above_zero(&[width, inner, height])?;
         let (length, area) = effective(outer, inner, height);
-        if !(width > 0.0 && gap < length) {
-            return Err(Fault {
-                word: "out-of-range",
-                key: "inner_diameter",
-                text: "the ring's hole or gap leaves no iron".into(),
-                help: "inner_diameter must be smaller than outer_diameter, and gap shorter than the ring",
-            });
-        }
-        let leg = LegGap {
-            gap,
+        let leg = Leg {
+            place: "ring",
             section: Section::Rectangle(width, height),
+            area,
             window_height: None,
             leg_height: Some(PI * 0.5 * (outer + inner) / 4.0),
         };
-        let mut geometry = Geometry::closed(length, area).with_gap(gap, apply(self.rule, leg));
-        geometry.iron = length - gap;
-        geometry.mean_turn = Some(mean_turn(width, height, inner, winding));
+        let legs = Legs {
+            ground: leg,
+            others: &[],
+        };
+        let closed = Geometry::closed(length, area);
+        let mut geometry = self
+            .gapping
+            .derive(values, closed, &legs, around.permeability)?;
+        geometry.mean_turn = Some(mean_turn(width, height, inner, around.winding));
         let window = Window {
             area: FRAC_PI_4 * inner * inner,
             practical_fill: PRACTICAL_FILL,
         };
-        geometry.window = Some(window);
         geometry.layer_breadth = Some(PI * inner);
-        geometry
-            .remarks
-            .extend(winding.and_then(|winding| winding.crowding(window)));
+        geometry.wind(window, around.winding);
         Ok(geometry)
     }
 }

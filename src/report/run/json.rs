@@ -1,8 +1,9 @@
 //! A run as the JSON object that the README fixes; SI units throughout.
 
 use crate::diag::Diagnostic;
+use crate::report::coil;
 use crate::report::json::{Object, table};
-use crate::run::{CoilReport, Outcome};
+use crate::run::Outcome;
 use serde_json::Value;
 
 /// The object of `run`.
@@ -23,7 +24,7 @@ pub fn run(outcome: &Outcome) -> Value {
         .value("limits", limits(outcome))
         .value("ratings", ratings(outcome))
         .value("ledger", ledger(outcome))
-        .value("coils", coils(&outcome.coils))
+        .value("coils", coil::json::coils(&outcome.coils))
         .value("steady_state", steady_state(outcome))
         .value("cautions", cautions(&outcome.cautions))
         .value("defaults", defaults(outcome))
@@ -129,52 +130,6 @@ fn ledger(outcome: &Outcome) -> Value {
     Object::new()
         .table("elements", elements)
         .number("imbalance", outcome.ledger.imbalance)
-        .into()
-}
-
-/// The `coils` of `check`, `coil` and `run`.
-pub fn coils(reports: &[CoilReport]) -> Value {
-    table(
-        reports
-            .iter()
-            .map(|coil| (coil.name.clone(), self::coil(coil))),
-    )
-}
-
-fn coil(coil: &CoilReport) -> Value {
-    let path = Object::new()
-        .number("length", coil.path_length)
-        .number("area", coil.path_area)
-        .number("volume", coil.path_volume);
-    let fringing = coil
-        .fringing
-        .as_ref()
-        .map_or(Value::Null, |(rule, factor)| {
-            Object::new()
-                .text("rule", Some(rule))
-                .number("factor", *factor)
-                .into()
-        });
-    let curve = coil.curve.iter().map(|point| {
-        Object::new()
-            .number("current", point.current)
-            .number("flux_linkage", point.flux_linkage)
-            .number("inductance", point.inductance)
-            .number("flux_density", point.flux_density)
-    });
-    Object::new()
-        .number("turns", coil.turns)
-        .number("inductance_at_zero", coil.inductance_at_zero)
-        .optional("current_at_70_percent", coil.current_at_70_percent)
-        .number("resistance", coil.resistance)
-        .optional("time_constant", coil.time_constant)
-        .optional("operating_current", coil.operating_current)
-        .optional("stored_energy", coil.stored_energy)
-        .value("path", path)
-        .optional("mean_turn", coil.mean_turn)
-        .value("fringing", fringing)
-        .optional("peak_flux_density", coil.peak_flux_density)
-        .list("curve", curve)
         .into()
 }
 

@@ -1,9 +1,10 @@
 //! A run on the terminal: the answer first, then tables; digits no finer than they are worth.
 
 use crate::analysis::Found;
+use crate::report::coil;
 use crate::report::engineering::{duration, engineering, engineering_or_dash, margin, percent};
 use crate::report::tables::{Align, Cell, Screen, Table, Tone};
-use crate::run::{CoilReport, LimitResult, Outcome};
+use crate::run::{LimitResult, Outcome};
 use std::fmt::Write as _;
 
 /// Digits of a reading: what an accuracy of 1e-4 is worth.
@@ -36,7 +37,12 @@ pub fn run(outcome: &Outcome, screen: Screen) -> String {
             percent(outcome.ledger.imbalance)
         );
     }
-    section(&mut text, "Coils", &coils(&outcome.coils), screen);
+    section(
+        &mut text,
+        "Coils",
+        &coil::text::coils(&outcome.coils),
+        screen,
+    );
     let _ = writeln!(text, "\n{CAUTION}");
     text
 }
@@ -332,34 +338,6 @@ fn ledger(outcome: &Outcome) -> Table {
             (joules(account.dissipated), joules(account.stored))
         };
         table.row([name.clone(), joules(account.absorbed), dissipated, stored]);
-    }
-    table
-}
-
-/// The coils of `check`, `coil` and `run`.
-pub fn coils(reports: &[CoilReport]) -> Table {
-    let mut table = Table::new()
-        .column("coil", Align::Left)
-        .column("turns", Align::Right)
-        .column("L at zero", Align::Right)
-        .column("I at 70 %", Align::Right)
-        .column("R", Align::Right)
-        .column("L/R", Align::Right)
-        .column("I at rest", Align::Right)
-        .column("energy", Align::Right)
-        .column("B peak", Align::Right);
-    for coil in reports {
-        table.row([
-            coil.name.clone(),
-            format!("{}", coil.turns),
-            engineering(coil.inductance_at_zero, "H", DIGITS),
-            engineering_or_dash(coil.current_at_70_percent, "A", DIGITS),
-            engineering(coil.resistance, "Ω", DIGITS),
-            coil.time_constant.map_or("—".into(), duration),
-            engineering_or_dash(coil.operating_current, "A", DIGITS),
-            engineering_or_dash(coil.stored_energy, "J", DIGITS),
-            engineering_or_dash(coil.peak_flux_density, "T", DIGITS),
-        ]);
     }
     table
 }

@@ -221,7 +221,8 @@ impl Gapping {
             MU0 * geometry.area / (geometry.iron / permeability + geometry.air)
         };
         let most = permeance(closed);
-        if !(factor <= most) {
+        let reachable = factor <= most;
+        if !reachable {
             return Err(unreachable(format!(
                 "an inductance factor of {:.4} nH is above that of the core without a gap, {:.4} nH",
                 1e9 * factor,

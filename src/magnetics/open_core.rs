@@ -11,7 +11,7 @@
 //!
 //! One-dimensional models of this kind are those of D.-X. Chen, J. A. Brug, R. B. Goldfarb, "Demagnetizing factors for
 //! cylinders", IEEE Transactions on Magnetics 27 (1991) 3601. At χ -> 0 it is exact (the factor of the current sheet); at
-//! any χ it lies within 4 % of a field solution in its factors, within 5 % in what a core adds to a coil, 9 % where the coil
+//! any χ it lies within 4 % of a field solution in its factors, within 6 % in what a core adds to a coil, 9 % where the coil
 //! covers less than half of it.
 
 use super::air::loops;

@@ -106,6 +106,55 @@ coil: {core: one, turns: 4000}
 }
 
 #[test]
+fn an_inductance_factor_keeps_its_spread_through_its_corners() {
+    let text = "
+materials:
+  ferrite: {initial_permeability: 2300 ± 20 %, saturation: 0.45 T}
+cores:
+  pair: {shape: e_pair, width: 25 mm, height: 12.5 mm, depth: 7 mm, window_depth: 8.5 mm, window_width: 17.5 mm,
+         leg_width: 7.5 mm, inductance_factor: 160 nH ± 3 %, material: ferrite}
+coil: {core: pair, turns: 10}
+";
+    let mut corners = 0;
+    let found = differences(text, |document, reader| {
+        let top = Fields::new(&document.root, "", TOP, reader).also(KEYS);
+        let library = Library::read(&top);
+        let core = library.named("pair").expect("it was read");
+        let plan = WindingPlan {
+            turns: 10,
+            wire: None,
+        };
+        let parameters = reader.parameters.borrow();
+        let find = |path: &str| {
+            let value = parameters.find(path).expect("the path is known");
+            (value, parameters.get(value).spread)
+        };
+        let (factor, spread) = find("cores.pair.inductance_factor");
+        assert!(
+            (spread.0 / 155.2e-9 - 1.0).abs() < 1e-12 && (spread.1 / 164.8e-9 - 1.0).abs() < 1e-12
+        );
+        let (permeability, range) = find("materials.ferrite.initial_permeability");
+        let mut gaps = Vec::new();
+        for wanted in [spread.0, spread.1] {
+            for softness in [range.0, range.1] {
+                let mut values = parameters.nominal();
+                values.set(factor, wanted);
+                values.set(permeability, softness);
+                let wound = core.wound(&values, &plan, 298.15).expect("it is sound");
+                // The maker's promise holds whatever the material does: the gap follows.
+                let reached = wound.linkage.inductance_at_zero() / 100.0;
+                assert!((reached / wanted - 1.0).abs() < 1e-12);
+                gaps.push(wound.geometry.gaps[0].length);
+                corners += 1;
+            }
+        }
+        assert!(gaps[0] > gaps[2] && gaps[0] < gaps[1]);
+    });
+    assert!(found.is_empty(), "{found:?}");
+    assert_eq!(corners, 4);
+}
+
+#[test]
 fn a_core_may_be_written_in_place_and_a_material_left_out() {
     let text = "
 coil: {core: {shape: solenoid, mean_diameter: 10 mm, length: 20 mm}, turns: 100}

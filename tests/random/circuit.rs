@@ -125,7 +125,9 @@ impl Maker {
             out.push_str(
                 "materials:\n  iron: {initial_permeability: 2500, saturation: 1.4 T}\n  \
                  solid_iron: {initial_permeability: 1500, saturation: 1.6 T, resistivity: 0.12 µΩ m}\n  \
-                 ferrite: {curve: [[0 A/m, 0 T], [40 A/m, 0.2 T], [150 A/m, 0.36 T], [1 kA/m, 0.44 T]]}\n",
+                 ferrite: {curve: [[0 A/m, 0 T], [40 A/m, 0.2 T], [150 A/m, 0.36 T], [1 kA/m, 0.44 T]]}\n  \
+                 powder: {initial_permeability: 60, roll_off: {half_field: 8 kA/m, exponent: 1.6}}\n  \
+                 hot_ferrite: {initial_permeability: 2300, saturation: [[-50 °C, 0.5 T], [120 °C, 0.36 T]]}\n",
             );
         }
         if !self.cores.is_empty() {

@@ -4,25 +4,6 @@ use super::circuit::Maker;
 use std::fmt::Write;
 
 impl Maker {
-    /// The keys of an `effective` core: length, area, perhaps a gap, material, perhaps eddy currents.
-    pub(super) fn core_keys(&mut self) -> String {
-        let gap = self.perhaps(0.6, "gap", |maker| maker.quantity(1e-5, 1e-3, "m"));
-        let length = self.quantity(5e-3, 0.2, "m");
-        let area = self.dice.over_decades(1.0, 1e3);
-        let material = match self.dice.below(10) {
-            0 => "solid_iron, eddy_currents: solid".to_owned(),
-            1 => {
-                let thickness = self.dice.over_decades(0.03, 3.0);
-                format!("solid_iron, eddy_currents: laminated, lamination: {thickness:.3} mm")
-            }
-            2..6 => "ferrite".to_owned(),
-            _ => "iron".to_owned(),
-        };
-        format!(
-            "shape: effective, length: {length}, area: {area:.3} mm²{gap}, mean_turn: 40 mm, material: {material}"
-        )
-    }
-
     /// Nodes, turns, copper and capacitance of a winding; the first goes where it is sent.
     fn winding_keys(&mut self, ends: Option<(&str, &str)>) -> String {
         let (a, b) = match ends {

@@ -164,8 +164,14 @@ fn check_coil(coil: &Value) {
             "curve"
         ]
     );
-    assert_eq!(keys(&coil["path"]), ["length", "area", "volume"]);
-    assert_eq!(keys(&coil["fringing"]), ["rule", "factor"]);
+    assert_eq!(
+        keys(&coil["path"]),
+        ["length", "area", "smallest_area", "volume"]
+    );
+    assert_eq!(
+        keys(&coil["fringing"]),
+        ["rule", "factor", "band", "source"]
+    );
     let curve = coil["curve"].as_array().expect("a list of points");
     assert_eq!(
         keys(&curve[0]),

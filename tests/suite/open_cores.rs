@@ -117,7 +117,7 @@ fn what_a_core_adds_to_a_coil_is_that_of_the_field() {
         let within = if row.get("w") < 0.5 * row.get("g") {
             0.09
         } else {
-            0.05
+            0.06
         };
         let added = MU0 * 0.01 * linkage / row.get("w").powi(2);
         check(

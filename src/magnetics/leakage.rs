@@ -50,8 +50,10 @@ pub fn from_short_circuits(
         let s = from_pairs(&l)?;
         let mut worst = 0.0_f64;
         for &(j, k, value) in wanted.iter().filter(|pair| pair.2 > 0.0) {
-            let (mutual, shorted) = (shared + s[(j, k)], shared + s[(k, k)]);
-            let reached = shared + s[(j, j)] - mutual * mutual / shorted;
+            // (L1 L2 - M²)/L2 without the difference of what is nearly equal.
+            let (first, second, mutual) = (s[(j, j)], s[(k, k)], s[(j, k)]);
+            let pair = first + second - 2.0 * mutual;
+            let reached = (shared * pair + first * second - mutual * mutual) / (shared + second);
             let ratio = value / reached;
             if !(ratio > 0.0 && ratio.is_finite()) {
                 return Err(Impossible);
@@ -60,7 +62,7 @@ pub fn from_short_circuits(
             l[(j, k)] *= ratio;
             l[(k, j)] = l[(j, k)];
         }
-        if worst < 1e-13 {
+        if worst < 1e-12 {
             return Ok(s);
         }
     }
@@ -166,6 +168,15 @@ mod tests {
         // Two windings may be as far apart as they like: x + x/(1 + x) = 50.
         let apart = from_short_circuits(1.0, &[(0, 1, 50.0)], 2).unwrap()[(0, 0)];
         assert!((apart + apart / (1.0 + apart) - 50.0).abs() < 1e-9);
+    }
+
+    #[test]
+    fn a_leakage_may_be_any_small_share_of_the_whole() {
+        for value in [0.0, 1e-12, 1e-9, 1e-6, 1e-3] {
+            let s = from_short_circuits(1.0, &[(0, 1, value)], 2).unwrap();
+            // x + x/(1 + x) = value.
+            assert!((s[(0, 0)] * (1.0 + 1.0 / (1.0 + s[(0, 0)])) - value).abs() <= 1e-11 * value);
+        }
     }
 
     #[test]

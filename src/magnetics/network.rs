@@ -8,6 +8,7 @@
 use super::materials::Magnetization;
 use super::path::Path;
 use nalgebra::{DMatrix, DVector};
+use std::borrow::Borrow;
 use std::sync::Arc;
 
 /// The loops of legs.
@@ -79,15 +80,15 @@ impl Network {
     }
 
     /// Fluxes of the loops [Wb] under ampere-turns [A] on each leg.
-    pub fn loop_fluxes(&self, paths: &[Path], ampere_turns: &[f64]) -> Vec<f64> {
+    pub fn loop_fluxes<P: Borrow<Path>>(&self, paths: &[P], ampere_turns: &[f64]) -> Vec<f64> {
         self.settle(paths, ampere_turns, None)
     }
 
     /// Reluctances of the loops [1/H] about given fluxes of the loops: slopes of their forces.
-    pub fn reluctances(&self, paths: &[Path], loops: &[f64]) -> DMatrix<f64> {
+    pub fn reluctances<P: Borrow<Path>>(&self, paths: &[P], loops: &[f64]) -> DMatrix<f64> {
         let mut matrix = DMatrix::zeros(self.loops, self.loops);
         for (leg, path) in paths.iter().enumerate() {
-            let slope = path.magnetomotive(self.flux(leg, loops)).1;
+            let slope = path.borrow().magnetomotive(self.flux(leg, loops)).1;
             for &(j, s) in &self.forms[leg] {
                 for &(k, t) in &self.forms[leg] {
                     matrix[(j, k)] += s * t * slope;
@@ -98,10 +99,15 @@ impl Network {
     }
 
     /// Of each loop, forces of the legs less the ampere-turns on them [A].
-    fn excess(&self, paths: &[Path], ampere_turns: &[f64], loops: &[f64]) -> DVector<f64> {
+    fn excess<P: Borrow<Path>>(
+        &self,
+        paths: &[P],
+        ampere_turns: &[f64],
+        loops: &[f64],
+    ) -> DVector<f64> {
         let mut sums = DVector::zeros(self.loops);
         for (leg, path) in paths.iter().enumerate() {
-            let force = path.magnetomotive(self.flux(leg, loops)).0 - ampere_turns[leg];
+            let force = path.borrow().magnetomotive(self.flux(leg, loops)).0 - ampere_turns[leg];
             for &(k, s) in &self.forms[leg] {
                 sums[k] += s * force;
             }
@@ -110,7 +116,12 @@ impl Network {
     }
 
     /// Newton's iteration to the least energy, from rest; where the last loop's flux is given, over the others alone.
-    fn settle(&self, paths: &[Path], ampere_turns: &[f64], last: Option<f64>) -> Vec<f64> {
+    fn settle<P: Borrow<Path>>(
+        &self,
+        paths: &[P],
+        ampere_turns: &[f64],
+        last: Option<f64>,
+    ) -> Vec<f64> {
         let mut x = vec![0.0; self.loops];
         if let (Some(given), Some(flux)) = (last, x.last_mut()) {
             *flux = given;

@@ -256,3 +256,6 @@ impl Leg {
         }
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -5,6 +5,12 @@
 //! is Σ ± (force of a leg - Σ N i on it) = 0. Shells of conducting iron belong to the legs. Capacitances lie across a whole
 //! winding, or between two: half of it joins their first ends, half the second ones (common practice).
 
+mod account;
+mod leakage;
+mod stamps;
+
+pub use leakage::{Concentric, Leakage};
+
 use super::claims::{Claims, Measure, Wanted};
 use super::element::{
     Element, Energy, Path, PathKind, Point, Quantity, Terms, Unknown, Unsound, WHOLE,
@@ -15,9 +21,9 @@ use super::pairs::Pair;
 use super::skin::Skin;
 use super::stamper::Stamper;
 use super::winding::{Winding, unsound};
-use crate::magnetics::leakage::{self, Layer};
 use crate::magnetics::{Core, Fault, Geometry, Linkage, Network, Seen, Wound};
 use crate::netlist::{Value, Values};
+use leakage::Beside;
 use nalgebra::DMatrix;
 use std::sync::Arc;
 
@@ -35,30 +41,6 @@ pub struct Turns {
     pub self_capacitance: Option<Value>,
     /// Current at a zero start.
     pub initial: Option<Value>,
-}
-
-/// Leakage as read.
-pub enum Leakage {
-    /// An inductance of each winding's own, in series with it; None for none.
-    Own(Vec<Option<Value>>),
-    /// Coefficients of coupling.
-    Coefficients(Vec<Pair>),
-    /// Inductance of the first of a pair with the second one shorted.
-    Shorted(Vec<Pair>),
-    /// Geometry of concentric windings.
-    Concentric(Concentric),
-}
-
-/// Geometry of concentric windings as read.
-pub struct Concentric {
-    /// Axial length.
-    pub breadth: Value,
-    /// Mean turn of all; that of the core where None.
-    pub mean_turn: Option<Value>,
-    /// Insulation between neighbours.
-    pub spacing: Value,
-    /// Radial build of each, from the inside out.
-    pub builds: Vec<Value>,
 }
 
 /// Where the legs lie.
@@ -248,85 +230,10 @@ impl WoundLegs {
         Ok(())
     }
 
-    /// Leakage per turn squared [H].
-    fn leakage(&self, values: &Values, geometries: &[Geometry]) -> Result<DMatrix<f64>, Unsound> {
-        let count = self.windings.len();
-        let shared = 1.0 / self.legs[0].path().magnetomotive(0.0).1;
-        let (found, key) = match &self.leakage {
-            Leakage::Own(own) => {
-                let mut matrix = DMatrix::zeros(count, count);
-                for (k, value) in own.iter().enumerate() {
-                    let inductance = value.map_or(0.0, |value| values[value]);
-                    matrix[(k, k)] = inductance / self.turns(k).powi(2);
-                }
-                return Ok(matrix);
-            }
-            Leakage::Coefficients(pairs) => {
-                let mut coefficients = DMatrix::identity(count, count);
-                for &(j, k, value) in pairs {
-                    coefficients[(j, k)] = values[value];
-                    coefficients[(k, j)] = values[value];
-                }
-                (
-                    leakage::from_coefficients(shared, &coefficients),
-                    "coefficient",
-                )
-            }
-            Leakage::Shorted(pairs) => {
-                let wanted: Vec<(usize, usize, f64)> = pairs
-                    .iter()
-                    .map(|&(j, k, value)| (j, k, values[value] / self.turns(j).powi(2)))
-                    .collect();
-                (
-                    leakage::from_short_circuits(shared, &wanted, count),
-                    "leakage",
-                )
-            }
-            Leakage::Concentric(concentric) => {
-                let told = concentric.mean_turn.map(|value| values[value]);
-                let Some(mean_turn) = told.or(geometries[0].mean_turn) else {
-                    return Err(Unsound {
-                        word: "no-mean-turn",
-                        key: "concentric",
-                        headline: "the mean turn of this core is not known, so neither is the leakage of its windings".into(),
-                        help: "write `mean_turn: 45 mm` in `concentric` or in the core".into(),
-                    });
-                };
-                let spacing = values[concentric.spacing];
-                let layers: Vec<Layer> = concentric
-                    .builds
-                    .iter()
-                    .map(|&build| Layer {
-                        build: values[build],
-                        spacing,
-                    })
-                    .collect();
-                let pairs = leakage::concentric(&layers, values[concentric.breadth], mean_turn);
-                (leakage::from_pairs(&pairs), "concentric")
-            }
-        };
-        found.map_err(|leakage::Impossible| Unsound {
-            word: "impossible-coupling",
-            key,
-            headline: format!("no windings on this core can have such a `{key}`"),
-            help: "a coefficient lies between 0 and 1, and two windings that are both close to a third are close to each \
-                   other"
-                .into(),
-        })
-    }
-
     /// A linear form of the loops: the flux of a leg.
     fn flux_terms(&self, leg: usize) -> Terms {
         let form = self.network.form(leg).iter();
         form.map(|&(k, sign)| (self.loops[k], sign)).collect()
-    }
-
-    /// Whether leakage inductances are there at all.
-    fn leaks(&self) -> bool {
-        match &self.leakage {
-            Leakage::Own(own) => own.iter().any(Option::is_some),
-            _ => true,
-        }
     }
 
     fn linkage(&self, k: usize, x: &[f64]) -> f64 {
@@ -338,7 +245,7 @@ impl WoundLegs {
 
     /// Incremental inductance of a winding [H], the others open, about fluxes of the loops.
     fn inductance(&self, k: usize, loops: &[f64]) -> f64 {
-        let paths: Vec<_> = self.legs.iter().map(|leg| leg.path().clone()).collect();
+        let paths: Vec<_> = self.legs.iter().map(Leg::path).collect();
         let reluctances = self.network.reluctances(&paths, loops);
         let mut form = nalgebra::DVector::zeros(loops.len());
         for &(c, sign) in self.network.form(self.windings[k].leg) {
@@ -360,12 +267,13 @@ impl Element for WoundLegs {
     fn derive(&mut self, values: &Values) -> Result<(), Unsound> {
         let geometries = self.derive_legs(values).map_err(|fault| unsound(&fault))?;
         self.derive_windings(values, &geometries)?;
-        self.matrix = self.leakage(values, &geometries)?;
-        for j in 0..self.windings.len() {
-            for k in 0..self.windings.len() {
-                self.matrix[(j, k)] *= self.turns(j) * self.turns(k);
-            }
-        }
+        let turns: Vec<f64> = (0..self.windings.len()).map(|k| self.turns(k)).collect();
+        let beside = Beside {
+            turns: &turns,
+            shared: 1.0 / self.legs[0].path().magnetomotive(0.0).1,
+            mean_turn: geometries[0].mean_turn,
+        };
+        self.matrix = self.leakage.matrix(values, &beside)?;
         for capacitor in &mut self.capacitors {
             capacitor.capacitance = capacitor.share * values[capacitor.value];
         }
@@ -492,7 +400,7 @@ impl Element for WoundLegs {
         for (k, turns) in self.windings.iter().enumerate() {
             ampere_turns[turns.leg] += self.turns(k) * self.initial[k];
         }
-        let paths: Vec<_> = self.legs.iter().map(|leg| leg.path().clone()).collect();
+        let paths: Vec<_> = self.legs.iter().map(Leg::path).collect();
         let loops = self.network.loop_fluxes(&paths, &ampere_turns);
         for (k, turns) in self.windings.iter().enumerate() {
             let leakage: f64 = (0..self.initial.len())
@@ -539,108 +447,5 @@ impl Element for WoundLegs {
             wound,
         })
         .collect()
-    }
-}
-
-impl WoundLegs {
-    fn stamp_winding(&self, k: usize, x: &[f64], into: &mut Stamper<'_>) {
-        let (row, turns) = (self.currents[k], self.turns(k));
-        let current = row.of(x);
-        into.f(row, self.resistances[k] * current);
-        into.df(row, row, self.resistances[k]);
-        let slopes = std::iter::once((row, 1.0));
-        self.skins[k].stamp(x, current, slopes, row, into);
-        if self.windings[k].has_ends {
-            let (a, b) = (&self.ports[2 * k], &self.ports[2 * k + 1]);
-            into.f(row, b.node.of(x) - a.node.of(x));
-            into.df(row, a.node, -1.0);
-            into.df(row, b.node, 1.0);
-            into.f(a.row(), current);
-            into.df(a.row(), row, 1.0);
-            into.f(b.row(), -current);
-            into.df(b.row(), row, -1.0);
-        }
-        let leg = &self.legs[self.windings[k].leg];
-        into.q(row, turns * leg.flux(x));
-        for &(flux, factor) in leg.terms() {
-            into.dq(row, flux, turns * factor);
-        }
-        if self.leaks() {
-            for (j, &other) in self.currents.iter().enumerate() {
-                into.q(row, self.matrix[(k, j)] * other.of(x));
-                into.dq(row, other, self.matrix[(k, j)]);
-            }
-        }
-        if let Some(linkage) = self.linkages[k] {
-            into.f(linkage, linkage.of(x) - self.linkage(k, x));
-            into.df(linkage, linkage, 1.0);
-            for &(flux, factor) in leg.terms() {
-                into.df(linkage, flux, -turns * factor);
-            }
-            for (j, &other) in self.currents.iter().enumerate() {
-                into.df(linkage, other, -self.matrix[(k, j)]);
-            }
-        }
-    }
-
-    /// A leg's share of the rows of its loops, and its shells.
-    fn stamp_leg(&self, leg: usize, law: &Leg, x: &[f64], into: &mut Stamper<'_>) {
-        let force = law.force(x);
-        for &(row, sign) in law.terms() {
-            into.f(row, sign * force.value);
-            for &(flux, factor) in law.terms() {
-                into.df(row, flux, sign * factor * force.by_flux);
-            }
-            for &(other, slope) in force.others() {
-                into.df(row, other, sign * slope);
-            }
-            for (k, winding) in self.windings.iter().enumerate() {
-                if winding.leg == leg {
-                    let turns = sign * self.turns(k);
-                    into.f(row, -turns * self.currents[k].of(x));
-                    into.df(row, self.currents[k], -turns);
-                }
-            }
-        }
-        law.stamp(x, into);
-    }
-}
-
-impl Energy for WoundLegs {
-    fn currents(&self, at: Point<'_>, out: &mut [f64]) {
-        for (t, port) in self.ports.iter().enumerate() {
-            let winding = || {
-                let sign = if t % 2 == 0 { 1.0 } else { -1.0 };
-                sign * self.currents[t / 2].of(at.x)
-            };
-            out[t] = port.current.map_or_else(winding, |i| i.of(at.x));
-        }
-    }
-
-    fn loss(&self, at: Point<'_>) -> f64 {
-        let copper: f64 = (0..self.currents.len())
-            .map(|k| {
-                let current = self.currents[k].of(at.x);
-                self.resistances[k] * current.powi(2) + self.skins[k].loss(at.x, current)
-            })
-            .sum();
-        copper + self.legs.iter().map(|leg| leg.loss(at.x)).sum::<f64>()
-    }
-
-    fn stored(&self, at: Point<'_>) -> f64 {
-        let legs = self.legs.iter().map(|leg| leg.stored(at.x));
-        let copper = self.skins.iter().map(|skin| skin.stored(at.x));
-        let mut energy: f64 = legs.chain(copper).sum();
-        for (j, first) in self.currents.iter().enumerate() {
-            for (k, second) in self.currents.iter().enumerate() {
-                energy += 0.5 * self.matrix[(j, k)] * first.of(at.x) * second.of(at.x);
-            }
-        }
-        for capacitor in &self.capacitors {
-            let (a, b) = (&self.ports[capacitor.from], &self.ports[capacitor.to]);
-            let voltage = a.node.of(at.x) - b.node.of(at.x);
-            energy += 0.5 * capacitor.capacitance * voltage * voltage;
-        }
-        energy
     }
 }

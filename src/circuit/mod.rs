@@ -3,6 +3,7 @@
 mod build;
 pub mod checks;
 mod explain;
+mod linear;
 mod numbering;
 mod system;
 mod taps;
@@ -76,8 +77,14 @@ pub struct Circuit {
     /// Elements that read each parameter.
     dependents: BTreeMap<Value, Vec<usize>>,
     pattern: Pattern,
-    /// One slot per stamped position, over all elements.
+    /// Elements that are stamped at every evaluation, and one slot per position that they stamp.
+    stamped: Vec<usize>,
     slots: Vec<u32>,
+    /// One slot per position that the linear elements stamp, and what they stamped.
+    linear_slots: Vec<u32>,
+    linear: linear::Linear,
+    /// Elements with clockwork or guards.
+    switching: Vec<usize>,
     mode_size: usize,
     guard_size: usize,
     by_name: BTreeMap<String, usize>,
@@ -158,6 +165,8 @@ impl Circuit {
             let probed: Vec<bool> = self.entries.iter().map(|entry| entry.probed).collect();
             self.number(&probed)
                 .expect("the same phrases were found when the circuit was built");
+        } else {
+            self.lay_linear();
         }
         Ok(())
     }

@@ -148,8 +148,12 @@ impl Circuit {
     fn find_pattern(&mut self) {
         let size = self.unknowns.len();
         let (x, mode) = (vec![0.0; size], self.start_mode());
+        let (linear, stamped): (Vec<usize>, Vec<usize>) =
+            (0..self.entries.len()).partition(|&k| self.entries[k].element.is_linear());
         let mut positions: Vec<(Unknown, Unknown)> = Vec::new();
-        for entry in &self.entries {
+        let mut of_linear = 0;
+        for (nth, &k) in linear.iter().chain(&stamped).enumerate() {
+            let entry = &self.entries[k];
             let at = Point {
                 time: 0.0,
                 x: &x,
@@ -158,6 +162,9 @@ impl Circuit {
             entry
                 .element
                 .stamp(at, &mut Stamper::recording(&mut positions));
+            if nth + 1 == linear.len() {
+                of_linear = positions.len();
+            }
         }
         let inside: Vec<(usize, usize)> = positions
             .iter()
@@ -165,13 +172,20 @@ impl Circuit {
             .map(|(row, column)| (row.0 as usize, column.0 as usize))
             .collect();
         self.pattern = Pattern::from_positions(size, &inside);
-        self.slots = positions
+        let mut slots: Vec<u32> = positions
             .iter()
             .map(|(row, column)| {
                 let slot = self.pattern.slot(row.0 as usize, column.0 as usize);
                 slot.map_or(crate::elements::stamper::NOWHERE, |slot| slot as u32)
             })
             .collect();
+        self.slots = slots.split_off(of_linear);
+        self.linear_slots = slots;
+        self.stamped = stamped;
+        self.switching = (0..self.entries.len())
+            .filter(|&k| self.entries[k].element.switching().is_some())
+            .collect();
+        self.lay_linear();
     }
 
     /// All modes at the start, before any signal is known.

@@ -1,8 +1,8 @@
 //! The circuit as the solver sees it.
 
-use super::Circuit;
+use super::{Circuit, Entry};
 use crate::dae::{Cause, Evaluation, Pattern, Point, System};
-use crate::elements::{Happening, Stamper};
+use crate::elements::{Happening, Stamper, Switching};
 
 /// Instants closer together than this fraction of the time are one: sources compute them by different roundings.
 const SAME_INSTANT: f64 = 1e-13;
@@ -41,8 +41,8 @@ impl System for Circuit {
 
     fn limit(&self, x: &[f64], dx: &mut [f64]) -> bool {
         let mut limited = false;
-        for entry in &self.entries {
-            limited |= entry.element.limit(x, dx);
+        for &k in &self.stamped {
+            limited |= self.entries[k].element.limit(x, dx);
         }
         limited
     }
@@ -53,23 +53,14 @@ impl System for Circuit {
 
     fn next_event(&self, time: f64, mode: &[f64]) -> f64 {
         let after = just_after(time);
-        let next = |entry: &super::Entry| {
-            entry
-                .element
-                .switching()
-                .map(|switching| switching.next_event(after, &mode[entry.modes.clone()]))
-        };
-        self.entries
-            .iter()
-            .filter_map(next)
+        self.switching()
+            .map(|(_, entry, switching)| switching.next_event(after, &mode[entry.modes.clone()]))
             .fold(f64::INFINITY, f64::min)
     }
 
     fn earlier(&self, by: f64, mode: &mut [f64]) {
-        for entry in &self.entries {
-            if let Some(switching) = entry.element.switching() {
-                switching.earlier(by, &mut mode[entry.modes.clone()]);
-            }
+        for (_, entry, switching) in self.switching() {
+            switching.earlier(by, &mut mode[entry.modes.clone()]);
         }
     }
 
@@ -78,10 +69,8 @@ impl System for Circuit {
     }
 
     fn guards(&self, at: Point<'_>, out: &mut [f64]) {
-        for entry in &self.entries {
-            if !entry.guards.is_empty()
-                && let Some(switching) = entry.element.switching()
-            {
+        for (_, entry, switching) in self.switching() {
+            if !entry.guards.is_empty() {
                 switching.guards(self.own(entry, at), &mut out[entry.guards.clone()]);
             }
         }
@@ -95,15 +84,19 @@ impl System for Circuit {
 }
 
 impl Circuit {
+    /// Elements with clockwork or guards, with their indices.
+    fn switching(&self) -> impl Iterator<Item = (usize, &Entry, &dyn Switching)> {
+        self.switching.iter().filter_map(|&k| {
+            let entry = &self.entries[k];
+            Some((k, entry, entry.element.switching()?))
+        })
+    }
+
     fn stamp_all(&self, at: Point<'_>, share: f64, slopes: bool, out: &mut Evaluation) {
-        zeroed(&mut out.f, self.unknowns.len());
-        zeroed(&mut out.q, self.unknowns.len());
-        if slopes {
-            zeroed(&mut out.df, self.pattern.len());
-            zeroed(&mut out.dq, self.pattern.len());
-        }
+        self.evaluate_linear(at.x, slopes, out);
         let mut stamper = Stamper::filling(out, &self.slots, slopes).raised(share);
-        for entry in &self.entries {
+        for &k in &self.stamped {
+            let entry = &self.entries[k];
             entry.element.stamp(self.own(entry, at), &mut stamper);
         }
     }
@@ -117,10 +110,7 @@ impl Circuit {
         mode: &mut [f64],
         happened: &mut dyn FnMut(usize, Happening),
     ) {
-        for (k, entry) in self.entries.iter().enumerate() {
-            let Some(switching) = entry.element.switching() else {
-                continue;
-            };
+        for (k, entry, switching) in self.switching() {
             let own = &mut mode[entry.modes.clone()];
             match cause {
                 Cause::Time => {
@@ -153,8 +143,3 @@ impl Circuit {
 
 /// Most events that one element takes within one instant.
 const MOST_AT_ONCE: usize = 16;
-
-fn zeroed(values: &mut Vec<f64>, size: usize) {
-    values.resize(size, 0.0);
-    values.fill(0.0);
-}

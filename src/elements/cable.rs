@@ -285,6 +285,10 @@ impl Element for Cable {
         }
     }
 
+    fn is_linear(&self) -> bool {
+        true
+    }
+
     fn energy(&self) -> &dyn Energy {
         self
     }

@@ -151,6 +151,10 @@ impl Element for Capacitor {
         into.df(u, i, -1.0);
     }
 
+    fn is_linear(&self) -> bool {
+        true
+    }
+
     fn energy(&self) -> &dyn Energy {
         self
     }

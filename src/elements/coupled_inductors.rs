@@ -185,6 +185,10 @@ impl Element for CoupledInductors {
         }
     }
 
+    fn is_linear(&self) -> bool {
+        true
+    }
+
     fn energy(&self) -> &dyn Energy {
         self
     }

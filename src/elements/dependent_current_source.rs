@@ -79,6 +79,10 @@ impl Element for DependentCurrentSource {
         }
     }
 
+    fn is_linear(&self) -> bool {
+        true
+    }
+
     fn energy(&self) -> &dyn Energy {
         self
     }

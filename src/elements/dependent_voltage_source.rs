@@ -67,6 +67,10 @@ impl Element for DependentVoltageSource {
         }
     }
 
+    fn is_linear(&self) -> bool {
+        true
+    }
+
     fn energy(&self) -> &dyn Energy {
         self
     }

@@ -35,6 +35,11 @@ pub trait Element: Send + Sync {
     /// Adds f, q and their slopes; `at.mode` is the element's own slice. The sequence of `df` and `dq`
     /// positions must be the same at every call.
     fn stamp(&self, at: Point<'_>, into: &mut Stamper<'_>);
+    /// True where f and q are linear forms of the unknowns whose factors follow from parameters alone: they are then
+    /// stamped once and not at every evaluation. Such an element shortens no Newton step.
+    fn is_linear(&self) -> bool {
+        false
+    }
     /// Losses, stored energy and terminal currents, for readings, ratings and the ledger.
     fn energy(&self) -> &dyn Energy;
     /// Clockwork and guards, where the element has any.

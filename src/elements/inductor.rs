@@ -91,6 +91,10 @@ impl Element for Inductor {
         into.df(self.i, self.branch.b, 1.0);
     }
 
+    fn is_linear(&self) -> bool {
+        true
+    }
+
     fn energy(&self) -> &dyn Energy {
         self
     }

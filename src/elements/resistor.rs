@@ -81,6 +81,10 @@ impl Element for Resistor {
         self.branch.conduct(at.x, current, self.conductance, into);
     }
 
+    fn is_linear(&self) -> bool {
+        true
+    }
+
     fn energy(&self) -> &dyn Energy {
         self
     }

@@ -56,6 +56,7 @@ pub struct LedgerKeeper {
     entries: Vec<usize>,
     accounts: Vec<Account>,
     stored_at_start: Vec<f64>,
+    /// Unknowns at the places of the rule, one row each.
     x: Vec<f64>,
     /// The points of a step that the rule was made for, and the rule: places and weights.
     points: Vec<f64>,
@@ -110,7 +111,7 @@ impl LedgerKeeper {
             entries,
             accounts,
             stored_at_start,
-            x: vec![0.0; at.x.len()],
+            x: Vec::new(),
             points: Vec::new(),
             rule: Vec::new(),
         }
@@ -126,15 +127,19 @@ impl LedgerKeeper {
             self.points = step.dense.points.to_vec();
             self.rule = rule(&self.points);
         }
-        for &(place, weight) in &self.rule {
-            let time = step.from + place * length;
-            step.dense.at(place, &mut self.x);
-            let at = Point {
-                time,
-                x: &self.x,
-                mode: step.mode,
-            };
-            for (&k, account) in self.entries.iter().zip(&mut self.accounts) {
+        let size = step.x1.len();
+        self.x.resize(size * self.rule.len(), 0.0);
+        for (row, (place, _)) in self.x.chunks_exact_mut(size.max(1)).zip(&self.rule) {
+            step.dense.at(*place, row);
+        }
+        // Element by element: what belongs to one lies together in memory, the next one far away.
+        for (&k, account) in self.entries.iter().zip(&mut self.accounts) {
+            for (x, &(place, weight)) in self.x.chunks_exact(size.max(1)).zip(&self.rule) {
+                let at = Point {
+                    time: step.from + place * length,
+                    x,
+                    mode: step.mode,
+                };
                 let (power, loss) = (circuit.power(k, at), circuit.loss(k, at));
                 account.absorbed += weight * length * power;
                 account.turnover += weight * length * power.abs().max(loss);

@@ -87,6 +87,15 @@ impl<T: Scalar> Matrix<T> {
         }
     }
 
+    /// Takes over the pivots of a factored matrix on the same pattern, of numbers of like sizes, where none have been chosen
+    /// yet: an order costs as much as many factorisations. They are judged as those of the last factorisation are.
+    pub fn take_order<U: Scalar>(&mut self, other: &Matrix<U>) {
+        if let (Factors::Sparse(own), Factors::Sparse(other)) = (&mut self.factors, &other.factors)
+        {
+            own.take_order(other);
+        }
+    }
+
     /// Factors the present values. On failure names the column (the unknown) that has no pivot.
     pub fn factor(&mut self) -> Result<(), Singular> {
         match &mut self.factors {

@@ -180,6 +180,7 @@ impl<const S: usize> Collocation<S> {
     /// Goes on where a method with another number of stages stands: its start and its polynomial.
     pub fn take_over<const R: usize>(&mut self, other: &Collocation<R>) {
         self.restart();
+        self.split.take_order(&other.split);
         self.based = other.based;
         if other.based {
             self.base.f.copy_from_slice(&other.base.f);

@@ -41,6 +41,11 @@ impl<const S: usize> Split<S> {
         }
     }
 
+    /// Takes over the order of elimination of a split with another number of stages.
+    pub fn take_order<const R: usize>(&mut self, other: &Split<R>) {
+        self.real.take_order(&other.real);
+    }
+
     /// Takes the slopes of an evaluation into use; the factors no longer hold.
     pub fn take_slopes(&mut self, out: &Evaluation) {
         self.dq.copy_from_slice(&out.dq);
@@ -72,6 +77,7 @@ impl<const S: usize> Split<S> {
     /// Factors the complex matrices.
     pub fn factor_pairs(&mut self, table: &Coefficients<S>, length: f64) -> Result<(), Singular> {
         for (matrix, &eigenvalue) in self.pairs.iter_mut().zip(&table.pairs) {
+            matrix.take_order(&self.real);
             let rate = eigenvalue / length;
             let slopes = self.dq.iter().zip(&self.df);
             for (value, (&dq, &df)) in matrix.values_mut().iter_mut().zip(slopes) {

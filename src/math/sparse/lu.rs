@@ -12,6 +12,7 @@ use super::super::scalar::Scalar;
 use super::super::singular::Singular;
 use super::order::order;
 use super::structure::Structure;
+use std::sync::Arc;
 
 /// While refilling, a multiple of a row of U that is subtracted may be so many times the largest entry of the row that it
 /// is subtracted from. A new pivot allows ten times an entry, so that changing numbers seldom lead to a new order.
@@ -22,7 +23,7 @@ const WORN: f64 = 10.0;
 /// Factors of a sparse square matrix.
 #[derive(Clone, Debug)]
 pub struct SparseLu<T> {
-    structure: Option<Structure>,
+    structure: Option<Arc<Structure>>,
     /// Entries of L and U by position; reciprocals in the pivots' places.
     entries: Vec<T>,
     /// Sum of the sizes of each row of U.
@@ -60,6 +61,18 @@ impl<T: Scalar> SparseLu<T> {
         self.orders
     }
 
+    /// Takes over the pivots of a matrix on the same pattern where none have been chosen yet. They are judged as those of
+    /// last time are.
+    pub fn take_order<U>(&mut self, other: &SparseLu<U>) {
+        if self.structure.is_none()
+            && let Some(structure) = &other.structure
+        {
+            self.entries.resize(structure.places.len(), T::ZERO);
+            self.growth = other.growth;
+            self.structure = Some(Arc::clone(structure));
+        }
+    }
+
     /// Factors the matrix compressed by column, with the pivots of last time where they serve.
     pub fn factor(
         &mut self,
@@ -76,7 +89,7 @@ impl<T: Scalar> SparseLu<T> {
             }
         }
         let order = order(starts, rows, values)?;
-        let structure = Structure::new(order, starts, rows);
+        let structure = Arc::new(Structure::new(order, starts, rows));
         self.orders += 1;
         self.entries.clear();
         self.entries.resize(structure.places.len(), T::ZERO);
@@ -113,12 +126,18 @@ impl<T: Scalar> SparseLu<T> {
             let mut subtracted = 0.0;
             if (start as usize) < pivot {
                 let own = &self.entries[start as usize..end as usize];
-                peak = own.iter().fold(peak, |most, entry| most.max(entry.size()));
+                peak = own.iter().fold(peak, |most, entry| {
+                    // One instruction, where `max` would look for what is not a number.
+                    let size = entry.size();
+                    if size > most { size } else { most }
+                });
                 subtracted = match &mut targets {
                     Some(targets) => self.subtract_noted(structure, row, targets),
                     None => self.subtract_spread(structure, row),
                 };
-                growth = growth.max(subtracted / peak);
+                if subtracted > growth * peak {
+                    growth = subtracted / peak;
+                }
             }
             let size = self.entries[pivot].size();
             let upper = &self.entries[pivot..end as usize];
@@ -139,18 +158,26 @@ impl<T: Scalar> SparseLu<T> {
     #[inline]
     fn subtract_noted(&mut self, structure: &Structure, row: usize, targets: &mut &[u32]) -> f64 {
         let mut most = 0.0_f64;
-        for position in structure.starts[row] as usize..structure.pivots[row] as usize {
-            let above = structure.places[position] as usize;
+        let (start, end) = (
+            structure.starts[row] as usize,
+            structure.starts[row + 1] as usize,
+        );
+        let pivot = structure.pivots[row] as usize;
+        let (done, own) = self.entries.split_at_mut(start);
+        let own = &mut own[..end - start];
+        for (position, &above) in structure.places[start..pivot].iter().enumerate() {
+            let above = above as usize;
             let first = structure.pivots[above] as usize;
-            let multiplier = self.entries[position] * self.entries[first];
-            self.entries[position] = multiplier;
+            let (reciprocal, behind) = done[first..structure.starts[above + 1] as usize]
+                .split_first()
+                .expect("every row holds its pivot");
+            let multiplier = own[position] * *reciprocal;
+            own[position] = multiplier;
             most = larger(most, multiplier.size() * self.held[above]);
-            let behind = first + 1..structure.starts[above + 1] as usize;
             let (here, rest) = targets.split_at(behind.len());
             *targets = rest;
-            for (&target, source) in here.iter().zip(behind) {
-                let product = multiplier * self.entries[source];
-                self.entries[target as usize] -= product;
+            for (&target, &source) in here.iter().zip(behind) {
+                own[target as usize] -= multiplier * source;
             }
         }
         most

@@ -31,7 +31,8 @@ pub(super) struct Structure {
     pub places: Vec<u32>,
     /// Position of each stored entry of the matrix, in the matrix's own order.
     pub positions: Vec<u32>,
-    /// Where the rows that are subtracted fall: a position per multiplication, in the order of the elimination.
+    /// Where the rows that are subtracted fall: a position per multiplication, counted from the start of the row that they
+    /// are subtracted from, in the order of the elimination.
     pub targets: Option<Vec<u32>>,
 }
 
@@ -103,7 +104,7 @@ impl Structure {
         let mut at = vec![0; self.size()];
         for row in 0..self.size() {
             for position in self.starts[row]..self.starts[row + 1] {
-                at[self.places[position as usize] as usize] = position;
+                at[self.places[position as usize] as usize] = position - self.starts[row];
             }
             for &above in self.before(row) {
                 targets.extend(

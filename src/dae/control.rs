@@ -12,6 +12,10 @@ const SHRINKAGE: f64 = 0.1;
 
 /// A second failure in a row shortens the step at least so much: the error does not follow its order there.
 const REPEATED: f64 = 0.5;
+/// An error so large that it has not fallen with the step belongs to something far faster than the step: it is tried again
+/// at this share.
+const VAST: f64 = 1e3;
+const LEAP: f64 = 1e-2;
 /// Factor for trying a step again whose stages could not be solved.
 const STALLED: f64 = 0.25;
 
@@ -24,6 +28,8 @@ pub(crate) struct Control {
     last: Option<(f64, f64)>,
     /// Attempts given up since a step was kept.
     failures: u32,
+    /// Error of the attempt given up last.
+    failed: f64,
 }
 
 impl Control {
@@ -32,6 +38,7 @@ impl Control {
             order: f64::from(order),
             last: None,
             failures: 0,
+            failed: 0.0,
         }
     }
 
@@ -69,6 +76,11 @@ impl Control {
     /// Factor for trying a step again that had this error.
     pub fn again(&mut self, error: f64) -> f64 {
         self.failures += 1;
+        let stuck = self.failures > 1 && error > VAST && error > 0.5 * self.failed;
+        self.failed = error;
+        if stuck {
+            return LEAP;
+        }
         let most = if self.failures > 1 { REPEATED } else { 0.9 };
         (CAUTION * error.powf(-1.0 / self.order)).clamp(SHRINKAGE, most)
     }
@@ -77,5 +89,21 @@ impl Control {
     pub fn after_stall(&mut self) -> f64 {
         self.failures += 1;
         STALLED
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_vast_error_that_does_not_fall_with_the_step_is_left_by_a_leap() {
+        let mut control = Control::new(4);
+        assert_eq!(control.again(1e7), SHRINKAGE);
+        assert_eq!(control.again(0.9e7), LEAP);
+        assert_eq!(control.again(1e6), SHRINKAGE);
+        // A small error that stays may be rounding: shorter steps would not help.
+        assert_eq!(control.again(10.0), REPEATED);
+        assert_eq!(control.again(10.0), REPEATED);
     }
 }

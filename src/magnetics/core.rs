@@ -130,6 +130,11 @@ impl Core {
                 });
             }
         };
+        // An open core's path counts a section of its own; currents in a bar run round the bar's.
+        let resistivity = match section {
+            Section::Round => resistivity * path.area() / path.section(),
+            Section::Sheets(_) => resistivity,
+        };
         let shells = Shells::new(section, path.iron(), path.area(), resistivity);
         Ok(Some(shells))
     }

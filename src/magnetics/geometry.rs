@@ -15,6 +15,8 @@ pub struct Geometry {
     pub area: f64,
     /// Smallest section [m²]: the flux density peaks there.
     pub minimum_area: f64,
+    /// Section of the material itself [m²]; differs from `area` where a core is open and its winding reaches beyond it.
+    pub section: f64,
     /// Effective volume [m³].
     pub volume: f64,
     /// Length of the path inside the core's material [m]; 0 for a coil in air.
@@ -94,6 +96,7 @@ impl Geometry {
             length,
             area,
             minimum_area: area,
+            section: area,
             volume: length * area,
             iron: length,
             air: 0.0,

@@ -292,6 +292,7 @@ pub fn with_core(
         return Err(unsolvable());
     }
     geometry.area = found.reach / (1.0 - share);
+    geometry.section = core.section();
     geometry.minimum_area = geometry.area / found.crowding.max(1.0);
     geometry.length = MU0 * geometry.area / permeance;
     geometry.iron = (1.0 - share) * geometry.length;

@@ -13,6 +13,7 @@ use std::sync::Arc;
 pub struct Path {
     area: f64,
     minimum_area: f64,
+    section: f64,
     iron: f64,
     /// Reluctivity of air times the length of air: magnetomotive force per tesla [A/T].
     air: f64,
@@ -25,6 +26,7 @@ impl Path {
         Path {
             area: geometry.area,
             minimum_area: geometry.minimum_area,
+            section: geometry.section,
             iron: geometry.iron,
             air: geometry.air / MU0,
             material,
@@ -44,6 +46,11 @@ impl Path {
     /// Effective area [m²].
     pub fn area(&self) -> f64 {
         self.area
+    }
+
+    /// Section of the material itself [m²]: that of the path, but for open cores.
+    pub fn section(&self) -> f64 {
+        self.section
     }
 
     /// Magnetomotive force [A] at a `flux` [Wb], and its slope [1/H].

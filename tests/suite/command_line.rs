@@ -503,3 +503,48 @@ fn no_colour_means_no_colour_whatever_the_terminal() {
     plain.env("NO_COLOR", "1").env("TERM", "xterm-256color");
     assert!(!caught(plain).err.contains('\u{1b}'));
 }
+
+const PAIR: &str = "
+materials:
+  ferrite: {initial_permeability: 2300, saturation: 0.45 T}
+cores:
+  pair: {shape: e_pair, width: 25 mm, height: 12.5 mm, depth: 7 mm, window_depth: 8.5 mm, window_width: 17.5 mm,
+         leg_width: 7.5 mm, gap: [0.2 mm, 0.2 mm], spacer: 0.1 mm, material: ferrite}
+elements:
+  choke: {kind: coil, nodes: [a, b], core: pair, turns: 40, wire: {diameter: 0.5 mm}, self_capacitance: 10 pF}
+";
+
+#[test]
+fn coil_tells_each_gap_and_the_rule_with_its_band_and_source() {
+    let called = call_with_input(&["coil", "-"], PAIR.as_bytes());
+    assert_eq!(called.code, Some(0), "{}", called.err);
+    for piece in [
+        "window 85.00 mm²",
+        "gap in the centre leg of 300 µm at 52.50 mm²",
+        "gap in the centre leg of 200 µm at 52.50 mm²",
+        "gap in the outer legs of 100 µm at 52.50 mm²",
+        "fringing by `muehlethaler`",
+        "good to about 10 %",
+        "J. Muehlethaler, J. W. Kolar, A. Ecklebe",
+    ] {
+        assert!(called.out.contains(piece), "{piece}: {}", called.out);
+    }
+    let json = call_with_input(&["coil", "-", "--json"], PAIR.as_bytes()).json();
+    let choke = &json["coils"]["choke"];
+    let gaps = choke["gaps"].as_array().expect("a list of gaps");
+    assert_eq!(gaps.len(), 3);
+    assert_eq!(keys(&gaps[0]), ["place", "length", "area", "factor"]);
+    assert_eq!(choke["fringing"]["band"], 0.1);
+    assert!(choke["moving_gap"].is_null());
+    // The factor over all gaps is that of their reluctances: each at its own section.
+    let of = |gap: &Value, name: &str| gap[name].as_f64().expect("a number");
+    let straight: f64 = gaps
+        .iter()
+        .map(|gap| of(gap, "length") / of(gap, "area"))
+        .sum();
+    let fringed: f64 = gaps
+        .iter()
+        .map(|gap| of(gap, "length") / of(gap, "area") / of(gap, "factor"))
+        .sum();
+    assert!((of(&choke["fringing"], "factor") * fringed / straight - 1.0).abs() < 1e-12);
+}

@@ -265,3 +265,38 @@ fn a_winding_on_a_rod_takes_its_layers() {
         Bound::Relative(1e-12),
     );
 }
+
+#[test]
+fn the_field_enters_a_solid_slug_at_the_same_pace_under_any_coil() {
+    // Sheet conductance times a shell's permeance per mu: the time that diffusion takes is the slug's own, radius²/8 of a
+    // bar over resistivity in all (Stoll, The Analysis of Eddy Currents, 1974: Σ over modes, from memory).
+    let material = "{initial_permeability: 3000, saturation: 1.5 T, resistivity: 0.12 µΩ m}";
+    let pace = |coil: &str| {
+        let core = format!(
+            "shape: solenoid, {coil}, core_diameter: 10 mm, core_length: 40 mm, eddy_currents: solid"
+        );
+        let wound = Coil::on(material, core, 100).wound();
+        let shells = wound.shells.expect("its iron conducts");
+        let iron = wound.geometry.iron;
+        let within = |k: usize| shells.areas[k + 1..].iter().sum::<f64>();
+        let whole: f64 = shells.areas.iter().sum();
+        // The mean delay of the flux per permeability: Σ G (share within)² · section/length.
+        let delay = |k: usize| shells.sheets[k] * (within(k) / whole).powi(2) * whole / iron;
+        (0..shells.sheets.len()).map(delay).sum::<f64>()
+    };
+    let source = "radius²/(8 resistivity) of a round bar, from 2 I1(z)/(z I0(z)) at low frequency";
+    let exact = 5e-3f64.powi(2) / (8.0 * 0.12e-6);
+    for coil in [
+        "mean_diameter: 10.5 mm, length: 40 mm",
+        "mean_diameter: 16 mm, length: 30 mm",
+        "inner_diameter: 12 mm, outer_diameter: 40 mm, length: 40 mm",
+    ] {
+        check(
+            "eddy currents of a slug",
+            source,
+            pace(coil),
+            exact,
+            Bound::Relative(0.01),
+        );
+    }
+}

@@ -219,6 +219,19 @@ const SHIPPED: &[Shipped] = &[
             "cores.k1_core.gap",
         ],
     },
+    // Supply, slug, its material, clamp.
+    Shipped {
+        name: "valve_slug",
+        accuracy: 1e-8,
+        by: 1e-3,
+        overrides: &[],
+        paths: &[
+            "elements.supply.voltage",
+            "cores.valve.core_length",
+            "materials.soft_iron.saturation",
+            "elements.clamp.breakdown_voltage",
+        ],
+    },
     Shipped {
         name: "valve_on_cable",
         accuracy: 1e-8,

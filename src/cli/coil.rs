@@ -3,7 +3,7 @@
 use super::common::{self, Source};
 use super::exit;
 use crate::diag::Diagnostic;
-use crate::report::coil::{charts, json, text};
+use crate::report::coil::{charts, copper, json, text};
 use crate::report::files;
 use crate::report::json::Object;
 use crate::run::coil_reports;
@@ -51,7 +51,10 @@ pub fn main(arguments: &Arguments) -> u8 {
     if let Some(folder) = &arguments.out {
         let drawn = files::folder(folder).and_then(|()| {
             coils.iter().try_for_each(|coil| {
-                super::run::draw(&charts::coil(coil), folder, &format!("coil_{}", coil.name))
+                super::run::draw(&charts::coil(coil), folder, &format!("coil_{}", coil.name))?;
+                copper::chart(coil).map_or(Ok(()), |chart| {
+                    super::run::draw(&chart, folder, &format!("copper_{}", coil.name))
+                })
             })
         });
         if let Err(error) = drawn {

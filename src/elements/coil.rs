@@ -241,6 +241,11 @@ impl Element for Coil {
         }]
     }
 
+    fn quickest_of_ladder(&self, _winding: usize, at: Point<'_>) -> Option<[f64; 2]> {
+        self.skin.ladder()?;
+        Some(self.skin.quickest(at.x, self.current(at.x)))
+    }
+
     fn windings(&self) -> Vec<WindingFigures<'_>> {
         self.made
             .iter()

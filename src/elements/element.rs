@@ -70,11 +70,49 @@ pub trait Element: Send + Sync {
     fn windings(&self) -> Vec<WindingFigures<'_>> {
         Vec::new()
     }
+    /// Power in the quickest section of a winding's ladder of skin and proximity effect, and in all of them [W]; None
+    /// where the winding has no ladder.
+    fn quickest_of_ladder(&self, _winding: usize, _at: Point<'_>) -> Option<[f64; 2]> {
+        None
+    }
+    /// Each core whose material may lose: by itself that of the first winding, on which all others are.
+    fn cores(&self) -> Vec<CoreFigures<'_>> {
+        let first = self.windings().into_iter().next();
+        first
+            .map(|winding| CoreFigures {
+                name: "",
+                place: 0,
+                volume: winding.wound.geometry.volume,
+                losses: winding.wound.losses,
+                eddy_currents: winding.wound.shells.is_some(),
+            })
+            .into_iter()
+            .collect()
+    }
+}
+
+/// A core as its loss is told by its flux density.
+pub struct CoreFigures<'a> {
+    /// Name of the leg; empty where the element has one core.
+    pub name: &'a str,
+    /// Stands for the core where a winding's number is asked for: of a winding on it, or of the leg ([`of_leg`]).
+    pub place: usize,
+    /// Volume of the material [m³].
+    pub volume: f64,
+    /// What the material loses.
+    pub losses: crate::magnetics::Losses,
+    /// True where eddy currents in it are part of the equations.
+    pub eddy_currents: bool,
 }
 
 /// Stands for the core as a whole where a winding's number is asked for: its flux density and field strength need no
 /// winding.
 pub const WHOLE: usize = usize::MAX;
+
+/// Stands for a leg of a core where a winding's number is asked for.
+pub const fn of_leg(leg: usize) -> usize {
+    WHOLE - 1 - leg
+}
 
 /// What the magnetics of one winding came out as.
 pub struct WindingFigures<'a> {

@@ -172,7 +172,8 @@ fn read(fields: &Fields<'_>, around: &Surroundings<'_>) -> Option<Made> {
         Layout::Between(legs.ends),
         Leakage::Own(own),
         &[],
-    );
+    )
+    .with_legs_named(legs.names.into_iter().map(|name| name.text).collect());
     Some(Made {
         terminals,
         windings: names,

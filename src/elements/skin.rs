@@ -84,6 +84,15 @@ impl Skin {
             .sum()
     }
 
+    /// Power in the quickest section and in all [W].
+    pub fn quickest(&self, x: &[f64], current: f64) -> [f64; 2] {
+        let last = self.sections.last().zip(self.currents.last());
+        let quickest = last.map_or(0.0, |((resistance, _), own)| {
+            resistance * (current - own.of(x)).powi(2)
+        });
+        [quickest, self.loss(x, current)]
+    }
+
     /// Energy of the field inside the conductors [J].
     pub fn stored(&self, x: &[f64]) -> f64 {
         let own = self.sections.iter().zip(&self.currents);

@@ -98,14 +98,15 @@ impl Winding {
     /// The same with [`SKIN_AND_PROXIMITY`], [`LAYERS`] and [`LAYER_BREADTH`] of the mapping read too.
     pub fn with_lay(mut self, fields: &Fields<'_>) -> Option<Self> {
         let wire = matches!(self.copper, Copper::Wire(_));
+        let written = fields.has("skin_and_proximity");
+        if !written {
+            unused(fields)?;
+        }
         // Where no wire is told there is nothing for the effects to be in, and no default to tell of.
-        if !wire && !fields.has("skin_and_proximity") {
-            unused(fields, "without a wire and `skin_and_proximity`")?;
+        if !wire && !written {
             return Some(self);
         }
-        let law = SkinLaw::of(fields.word("skin_and_proximity")?);
-        let Some(law) = law else {
-            unused(fields, "without `skin_and_proximity`")?;
+        let Some(law) = SkinLaw::of(fields.word("skin_and_proximity")?) else {
             return Some(self);
         };
         if !wire {
@@ -228,7 +229,7 @@ fn read_copper(fields: &Fields<'_>, noun: &str) -> Option<Copper> {
 }
 
 /// Refuses keys that only skin and proximity effect use.
-fn unused(fields: &Fields<'_>, label: &str) -> Option<()> {
+fn unused(fields: &Fields<'_>) -> Option<()> {
     let stray = ["layers", "layer_breadth"]
         .into_iter()
         .find(|key| fields.has(key));
@@ -239,7 +240,7 @@ fn unused(fields: &Fields<'_>, label: &str) -> Option<()> {
         stray,
         "unused-key",
         format!("`{stray}` is for skin and proximity effect, which this winding does not count"),
-        label,
+        "without `skin_and_proximity`",
         Some("`skin_and_proximity: dowell` (or `ferreira`) counts it; without it the key is not needed"),
     );
     None

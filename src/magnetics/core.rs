@@ -40,6 +40,8 @@ pub struct Wound {
     pub shells: Option<Shells>,
     /// Winding resistance [Ω] from wire and mean turn; None where either is not known.
     pub resistance: Option<f64>,
+    /// What its material loses, where that is told.
+    pub losses: Losses,
     /// Skin and proximity effect of its copper, where they are counted.
     pub inside: Option<Inside>,
     /// What somebody should know, geometry's remarks included.
@@ -160,6 +162,7 @@ impl Core {
             linkage: Linkage::new(path, winding.turns as f64),
             shells,
             resistance,
+            losses: self.losses(values)?,
             inside: None,
             remarks,
         })

@@ -5,7 +5,7 @@ use super::outcome::Outcome;
 use crate::analysis::steady;
 use crate::circuit::Circuit;
 use crate::diag::Diagnostic;
-use crate::elements::element::WindingFigures;
+use crate::elements::element::{CoreFigures, WindingFigures};
 use crate::signals::Trace;
 
 /// A kick this many times the largest supply counts as unsuppressed.
@@ -24,6 +24,7 @@ pub fn add(netlist: &Netlist, outcome: &mut Outcome) {
     beyond_the_curve(netlist, outcome, &mut cautions);
     releases_from_current(netlist, &mut cautions);
     unevaluated_ratings(outcome, &mut cautions);
+    core_loss_twice(netlist, &mut cautions);
     cautions.extend(coils(&netlist.circuit));
     outcome.cautions.extend(cautions);
 }
@@ -189,6 +190,23 @@ fn releases_from_current(netlist: &Netlist, cautions: &mut Vec<Diagnostic>) {
             .at(reading.name.span, "no armature is modelled")
             .help("eddy currents, the armature's way and contact bounce come on top: measure them on the bench"),
         );
+    }
+}
+
+/// A core whose loss is estimated beside the ledger and is in the ledger too.
+fn core_loss_twice(netlist: &Netlist, cautions: &mut Vec<Diagnostic>) {
+    for entry in &netlist.circuit.entries {
+        let cores = entry.element.cores();
+        let twice = |core: &CoreFigures<'_>| core.losses.steinmetz.is_some() && core.eddy_currents;
+        if cores.iter().any(twice) {
+            let text = format!(
+                "the core of `{}` loses by `eddy_currents` in the ledger and by `steinmetz` beside it: the estimate counts the \
+                 same loss once more",
+                entry.name
+            );
+            let caution = Diagnostic::caution("core-loss-twice", text).at(entry.span, "this core");
+            cautions.push(caution.help("take one of the two; they are not to be added"));
+        }
     }
 }
 

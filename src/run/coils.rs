@@ -31,6 +31,60 @@ pub struct CoilReport {
     pub peak_flux_density: Option<f64>,
     /// Flux linkage, inductance and flux density over current.
     pub curve: Vec<CurvePoint>,
+    /// The copper over frequency, where skin and proximity effect are counted.
+    pub copper: Option<Copper>,
+}
+
+/// A winding's copper over frequency.
+#[derive(Clone, Debug)]
+pub struct Copper {
+    /// Sections of the ladder.
+    pub sections: usize,
+    /// Highest frequency [Hz] at which the ladder follows the law.
+    pub up_to: f64,
+    /// From a hundredth of the corner to a thousand times it.
+    pub points: Vec<CopperPoint>,
+}
+
+/// One frequency. SI units.
+#[derive(Clone, Copy, Debug)]
+pub struct CopperPoint {
+    /// [Hz].
+    pub frequency: f64,
+    /// Resistance by the law [Ω].
+    pub resistance: f64,
+    /// Inductance of the field inside the conductors by the law [H].
+    pub inductance: f64,
+    /// The ladder's resistance [Ω].
+    pub ladder_resistance: f64,
+    /// The ladder's inductance [H].
+    pub ladder_inductance: f64,
+}
+
+/// Points per decade of the copper's table.
+const PER_DECADE: i32 = 10;
+
+fn copper(figures: &WindingFigures<'_>) -> Option<Copper> {
+    let inside = figures.wound.inside.as_ref()?;
+    let (impedance, ladder) = (inside.impedance, &inside.ladder);
+    let point = |k: i32| {
+        let frequency = impedance.corner() * 10f64.powf(f64::from(k) / f64::from(PER_DECADE));
+        let omega = std::f64::consts::TAU * frequency;
+        let [law, ladder] =
+            [impedance.at(frequency), ladder.at(frequency)].map(|ratio| figures.resistance * ratio);
+        CopperPoint {
+            frequency,
+            resistance: law.re,
+            inductance: law.im / omega,
+            ladder_resistance: ladder.re,
+            ladder_inductance: ladder.im / omega,
+        }
+    };
+    Some(Copper {
+        sections: ladder.sections.len(),
+        up_to: ladder.up_to(),
+        points: (-2 * PER_DECADE..=3 * PER_DECADE).map(point).collect(),
+    })
 }
 
 /// Points of each curve.
@@ -79,6 +133,7 @@ pub fn coil_report(
         geometry: geometry.clone(),
         peak_flux_density: found.peak_flux_density,
         curve: found.curve,
+        copper: copper(figures),
     }
 }
 

@@ -1,5 +1,7 @@
 //! What watches a run: it feeds readings and ratings step by step, keeps the ledger and the waveforms.
 
+use super::beyond_ladder::Ladders;
+use super::core_loss::CoreLosses;
 use super::netlist::Netlist;
 use super::outcome::{Outcome, Work};
 use super::repeated::{Figures, RatingFigure};
@@ -31,6 +33,9 @@ pub struct Feed {
     readings: Vec<(usize, Taking)>,
     ratings: Vec<Metered>,
     recorder: Option<Recorder>,
+    /// Core losses, where waveforms are kept: what a person looks at.
+    core_losses: Option<CoreLosses>,
+    ladders: Option<Ladders>,
     /// Signals that are recorded, and the instant [s] from which on.
     recorded: (usize, f64),
     /// Switches whose first opening has been recorded.
@@ -112,11 +117,17 @@ impl Feed {
         let recorder = keeps
             .waveforms
             .map(|(from, until)| Recorder::new(signals.named(), from, until));
+        let recorded = (signals.len(), keeps.waveforms.map_or(0.0, |(from, _)| from));
+        let core_losses = keeps
+            .waveforms
+            .map(|_| CoreLosses::new(circuit, &mut signals));
         Feed {
             pieces: keeps.pieces,
             readings,
             recorder,
-            recorded: (signals.len(), keeps.waveforms.map_or(0.0, |(from, _)| from)),
+            core_losses,
+            ladders: keeps.waveforms.map(|_| Ladders::new(circuit)),
+            recorded,
             opened: Vec::new(),
             ratings: metered(circuit, &mut signals),
             signals,
@@ -194,12 +205,18 @@ impl Feed {
             for metered in &mut self.ratings {
                 metered.meter.feed(&self.signals.piece(metered.signal));
             }
+            if let Some(losses) = &mut self.core_losses {
+                losses.feed(&self.signals);
+            }
             if let Some(recorder) = &mut self.recorder {
                 recorder.step(from, to, self.signals.first(self.recorded.0));
             }
         }
         if let Some(keeper) = &mut self.keeper {
             keeper.step(circuit, step);
+        }
+        if let Some(ladders) = &mut self.ladders {
+            ladders.step(circuit, step);
         }
         self.last.time = step.to;
         self.last.x.copy_from_slice(step.x1);
@@ -216,7 +233,11 @@ impl Feed {
             (Analysis::SteadyState(_), Some(steady)) => steady.period,
             _ => duration,
         };
+        let periodic = matches!(netlist.analysis, Analysis::SteadyState(_));
+        let losses = self.core_losses.as_ref();
         let findings = Findings {
+            core_losses: losses
+                .map_or(Vec::new(), |losses| losses.finish(self.last.time, periodic)),
             duration,
             reached: self.last.time,
             work: Some(work),
@@ -233,7 +254,14 @@ impl Feed {
             Analysis::SteadyState(_) => "steady_state",
             Analysis::Transient(_) | Analysis::OperatingPoint => "transient",
         };
-        outcome(netlist, analysis, findings)
+        let mut outcome = outcome(netlist, analysis, findings);
+        let ladders = self.ladders.as_ref();
+        outcome.cautions.extend(
+            ladders
+                .into_iter()
+                .flat_map(|ladders| ladders.cautions(circuit)),
+        );
+        outcome
     }
 
     /// The figures alone at the end of the run.

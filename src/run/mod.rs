@@ -4,8 +4,10 @@
 //! text -> load -> Netlist (circuit, analysis, readings, limits) -> pilot -> run -> Outcome
 //! ```
 
+mod beyond_ladder;
 mod cautions;
 mod coils;
+mod core_loss;
 mod feed;
 mod netlist;
 mod obvious;
@@ -17,7 +19,8 @@ mod verify;
 mod watched;
 
 pub use cautions::coils as coil_cautions;
-pub use coils::{CoilReport, CurvePoint, coil_reports};
+pub use coils::{CoilReport, Copper, CopperPoint, CurvePoint, coil_reports};
+pub use core_loss::CoreLoss;
 pub use netlist::{Netlist, ReadError, Sizing, read, read_coils, read_document};
 pub use outcome::{LimitResult, Outcome, RatingResult, ReadingResult, Work};
 pub use repeated::{Figures, RatingFigure, again, pilot};

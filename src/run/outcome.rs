@@ -1,6 +1,6 @@
 //! What a run came to.
 
-use super::{CoilReport, Sensitivity};
+use super::{CoilReport, CoreLoss, Sensitivity};
 use crate::analysis::{Account, Found, Ledger};
 use crate::dae::{Ending, Statistics};
 use crate::diag::Diagnostic;
@@ -97,6 +97,8 @@ pub struct Outcome {
     pub accounts: Vec<(String, Account)>,
     /// The ledger as a whole.
     pub ledger: Ledger,
+    /// Core losses estimated beside the ledger, outside its balance.
+    pub core_losses: Vec<CoreLoss>,
     /// Coils.
     pub coils: Vec<CoilReport>,
     /// Cautions.

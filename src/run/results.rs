@@ -2,6 +2,7 @@
 
 use super::cautions;
 use super::coils::coil_reports;
+use super::core_loss::CoreLoss;
 use super::feed::Metered;
 use super::netlist::Netlist;
 use super::outcome::{LimitResult, Outcome, RatingResult, ReadingResult, Work};
@@ -27,6 +28,8 @@ pub struct Findings {
     pub ratings: Vec<RatingResult>,
     /// The accounts of all elements.
     pub ledger: Ledger,
+    /// What cores lose by their material's own law.
+    pub core_losses: Vec<CoreLoss>,
     /// Recorded waveforms.
     pub traces: Vec<Trace>,
     /// What happened when.
@@ -52,6 +55,7 @@ pub fn outcome(netlist: &Netlist, analysis: &'static str, findings: Findings) ->
         ratings: findings.ratings,
         accounts: accounts(circuit, &findings.ledger.accounts),
         ledger: findings.ledger,
+        core_losses: findings.core_losses,
         coils: coil_reports(circuit),
         cautions: netlist.cautions.clone(),
         defaults: netlist.defaults.clone(),

@@ -95,6 +95,7 @@ fn run_prints_one_object_with_the_fixed_names() {
             "limits",
             "ratings",
             "ledger",
+            "estimated_core_loss",
             "coils",
             "steady_state",
             "cautions",
@@ -161,7 +162,8 @@ fn check_coil(coil: &Value) {
             "gaps",
             "moving_gap",
             "peak_flux_density",
-            "curve"
+            "curve",
+            "copper"
         ]
     );
     assert_eq!(

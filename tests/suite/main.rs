@@ -9,6 +9,7 @@ mod closed_forms;
 mod coils;
 mod command_line;
 mod contacts;
+mod core_losses;
 mod core_shapes;
 mod coupled_windings;
 mod e_series;

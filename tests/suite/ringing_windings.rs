@@ -1,7 +1,7 @@
 //! Guards: in the equations a winding loses at every frequency what its copper loses there, a steady current meets its
 //! resistance alone, and a ring is damped by the copper at the ring's own frequency.
 
-use crate::netlists::{from_text, outcome, value};
+use crate::netlists::{from_file, from_text, outcome, value};
 use crate::record::{Bound, check};
 use coilbreak::magnetics::losses::impedance::Layers;
 use coilbreak::magnetics::losses::{Impedance, Ladder};
@@ -26,7 +26,7 @@ const LAYERS: Layers = Layers {
 
 /// The resistivity of copper at 25 °C [Ω m], and the winding's resistance [Ω].
 fn copper() -> (f64, f64) {
-    let resistivity = COPPER * copper_ratio(TWENTY + 5.0, TWENTY);
+    let resistivity = copper_at(25.0);
     (
         resistivity,
         90.0 * 50e-3 * resistivity / (0.25 * PI * 0.4e-3 * 0.4e-3),
@@ -207,4 +207,73 @@ analysis: {{transient: {{duration: 1 ms, start: zero}}}}
             Bound::Relative(1e-12),
         );
     }
+}
+
+#[test]
+fn the_copper_of_a_coil_is_told_over_frequency_law_beside_ladder() {
+    let netlist = from_file("netlists/flow_meter_coil.yaml", &[]);
+    let report = &coilbreak::run::coil_reports(&netlist.circuit)[0];
+    let copper = report.copper.as_ref().expect("its winding has a law");
+    assert!((4..=5).contains(&copper.sections));
+    let source = "Dowell 1966";
+    for point in copper
+        .points
+        .iter()
+        .filter(|point| point.frequency <= copper.up_to)
+    {
+        let subject = "copper over frequency";
+        let (law, ladder) = (point.resistance, point.ladder_resistance);
+        check(subject, source, ladder, law, Bound::Relative(0.02));
+        let (law, ladder) = (point.inductance, point.ladder_inductance);
+        check(subject, source, ladder, law, Bound::Relative(0.02));
+    }
+    // 8 layers of 0.5 mm in 0.544 mm at 25 °C.
+    let layers = Layers {
+        count: 8.0,
+        pitch: coilbreak::magnetics::wire::grade_one(0.5e-3),
+    };
+    let exact = Impedance::equivalent_foil(0.5e-3, layers, copper_at(25.0));
+    let last = copper.points.last().expect("a table");
+    check(
+        "copper over frequency",
+        source,
+        last.resistance / report.resistance,
+        exact.at(last.frequency).re,
+        Bound::Relative(1e-9),
+    );
+    let chart = coilbreak::report::coil::copper::chart(report).expect("a picture");
+    let size = coilbreak::report::chart::Size::default();
+    let svg = coilbreak::report::plots::svg(&chart, size).expect("it can be drawn");
+    for piece in ["ladder fitted up to", "resistance", "frequency"] {
+        assert!(svg.contains(piece), "no `{piece}`");
+    }
+}
+
+fn copper_at(celsius: f64) -> f64 {
+    COPPER * copper_ratio(celsius + 273.15, TWENTY)
+}
+
+#[test]
+fn a_ring_above_the_ladders_reach_raises_a_caution() {
+    let cautions = |share: f64| {
+        let impedance = of_law("dowell");
+        let frequency = share * 100.0 * impedance.corner();
+        let out = outcome(&from_text(
+            &format!(
+                "{CORE}
+elements:
+  drive: {{kind: current_source, nodes: [ground, a], current: {{sine: {{amplitude: 0.5 A, frequency: {frequency:e} Hz}}}}}}
+  coil: {{kind: coil, nodes: [a, ground], {COIL}, skin_and_proximity: dowell, self_capacitance: 0 F}}
+analysis: {{steady_state: {{period: {:e} s}}}}
+",
+                1.0 / frequency
+            ),
+            &[],
+        ));
+        let words = out.cautions.iter();
+        words
+            .filter(|caution| caution.word == "beyond-the-ladder")
+            .count()
+    };
+    assert_eq!([cautions(0.5), cautions(2.0)], [0, 1]);
 }

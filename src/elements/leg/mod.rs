@@ -98,6 +98,11 @@ impl Leg {
         }
     }
 
+    /// True where eddy currents in its iron are counted.
+    pub fn has_shells(&self) -> bool {
+        self.shells.is_some()
+    }
+
     /// The path.
     pub fn path(&self) -> &Path {
         self.path

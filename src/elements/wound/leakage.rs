@@ -34,10 +34,21 @@ pub struct Concentric {
 pub(super) struct Beside<'a> {
     /// Turns of each winding.
     pub turns: &'a [f64],
+    /// Inductance of the field inside each winding's copper that its ladder of skin and proximity effect holds, per turn
+    /// squared [H]. A leakage that is measured with a winding shorted, or reckoned from the windings' build, has that
+    /// field in it.
+    pub inside: &'a [f64],
     /// Permeance of the core at rest [H].
     pub shared: f64,
     /// Mean turn of the core [m], where it is known.
     pub mean_turn: Option<f64>,
+}
+
+impl Beside<'_> {
+    /// What is left of a pair's permeance [H] outside the copper.
+    fn outside(&self, permeance: f64, j: usize, k: usize) -> f64 {
+        (permeance - self.inside[j] - self.inside[k]).max(0.0)
+    }
 }
 
 impl Leakage {
@@ -92,15 +103,17 @@ impl Leakage {
             Leakage::Shorted(pairs) => {
                 let wanted: Vec<(usize, usize, f64)> = pairs
                     .iter()
-                    .map(|&(j, k, value)| (j, k, values[value] / turns[j].powi(2)))
+                    .map(|&(j, k, value)| {
+                        let told = values[value] / turns[j].powi(2);
+                        (j, k, beside.outside(told, j, k))
+                    })
                     .collect();
                 let found = leakage::from_short_circuits(beside.shared, &wanted, count);
                 (found, "leakage")
             }
-            Leakage::Concentric(concentric) => (
-                concentric.permeances(values, beside.mean_turn)?,
-                "concentric",
-            ),
+            Leakage::Concentric(concentric) => {
+                (concentric.permeances(values, beside)?, "concentric")
+            }
         };
         found.map_err(|leakage::Impossible| Unsound {
             word: "impossible-coupling",
@@ -117,10 +130,10 @@ impl Concentric {
     fn permeances(
         &self,
         values: &Values,
-        mean_turn: Option<f64>,
+        beside: &Beside<'_>,
     ) -> Result<Result<DMatrix<f64>, leakage::Impossible>, Unsound> {
         let told = self.mean_turn.map(|value| values[value]);
-        let mean_turn = told.or(mean_turn).ok_or_else(|| Unsound {
+        let mean_turn = told.or(beside.mean_turn).ok_or_else(|| Unsound {
             word: "no-mean-turn",
             key: "concentric",
             headline:
@@ -137,7 +150,12 @@ impl Concentric {
                 spacing,
             })
             .collect();
-        let pairs = leakage::concentric(&layers, values[self.breadth], mean_turn);
+        let mut pairs = leakage::concentric(&layers, values[self.breadth], mean_turn);
+        for j in 0..layers.len() {
+            for k in (0..layers.len()).filter(|&k| k != j) {
+                pairs[(j, k)] = beside.outside(pairs[(j, k)], j, k);
+            }
+        }
         Ok(leakage::from_pairs(&pairs))
     }
 }

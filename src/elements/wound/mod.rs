@@ -13,15 +13,15 @@ pub use leakage::{Concentric, Leakage};
 
 use super::claims::{Claims, Measure, Wanted};
 use super::element::{
-    Element, Energy, Path, PathKind, Point, Quantity, Terms, Unknown, Unsound, WHOLE,
-    WindingFigures,
+    CoreFigures, Element, Energy, Path, PathKind, Point, Quantity, Terms, Unknown, Unsound, WHOLE,
+    WindingFigures, of_leg,
 };
 use super::leg::Leg;
 use super::pairs::Pair;
 use super::skin::Skin;
 use super::stamper::Stamper;
 use super::winding::{Winding, unsound};
-use crate::magnetics::{Core, Fault, Geometry, Linkage, Network, Seen, Wound};
+use crate::magnetics::{Core, Fault, Geometry, Linkage, Losses, Network, Seen, Wound};
 use crate::netlist::{Value, Values};
 use leakage::Beside;
 use nalgebra::DMatrix;
@@ -79,6 +79,10 @@ impl Port {
 pub struct WoundLegs {
     windings: Vec<Turns>,
     cores: Vec<Arc<Core>>,
+    /// Names of the legs; empty where there is one that closes upon itself.
+    leg_names: Vec<String>,
+    /// Volume [m³] and losses of each leg's material.
+    materials: Vec<(f64, Losses)>,
     layout: Layout,
     network: Network,
     leakage: Leakage,
@@ -140,6 +144,8 @@ impl WoundLegs {
             currents: Vec::new(),
             loops: Vec::new(),
             linkages: Vec::new(),
+            leg_names: vec![String::new(); cores.len()],
+            materials: Vec::new(),
             windings,
             cores,
             layout,
@@ -147,6 +153,18 @@ impl WoundLegs {
             leakage,
             capacitors,
         }
+    }
+
+    /// With names of its legs.
+    #[must_use]
+    pub fn with_legs_named(self, leg_names: Vec<String>) -> Self {
+        WoundLegs { leg_names, ..self }
+    }
+
+    /// Inductance of the field inside a winding's copper that its ladder holds, per turn squared [H].
+    fn inside(&self, k: usize) -> f64 {
+        let inside = self.made[k].inside.as_ref();
+        inside.map_or(0.0, |inside| inside.inductance) / self.turns(k).powi(2)
     }
 
     fn turns(&self, k: usize) -> f64 {
@@ -171,6 +189,7 @@ impl WoundLegs {
     /// Derives the legs; their geometries.
     fn derive_legs(&mut self, values: &Values) -> Result<Vec<Geometry>, Fault> {
         let mut geometries = Vec::new();
+        self.materials.clear();
         for (k, core) in self.cores.iter().enumerate() {
             let mut on_it = self
                 .windings
@@ -184,6 +203,7 @@ impl WoundLegs {
             let temperature = self.windings[0].winding.temperature(values);
             let (path, geometry) = core.path(values, plan.as_ref(), temperature)?;
             let shells = core.shells(values, &path)?;
+            self.materials.push((geometry.volume, core.losses(values)?));
             self.legs[k].derive(path, shells, None);
             geometries.push(geometry);
         }
@@ -208,6 +228,7 @@ impl WoundLegs {
                 geometry: geometry.clone(),
                 linkage: Linkage::new(self.seen(turns.leg), turns.winding.turns() as f64),
                 shells: None,
+                losses: self.materials[turns.leg].1,
                 inside: None,
                 resistance: of_wire,
                 // What is said of the leg is said once.
@@ -268,8 +289,10 @@ impl Element for WoundLegs {
         let geometries = self.derive_legs(values).map_err(|fault| unsound(&fault))?;
         self.derive_windings(values, &geometries)?;
         let turns: Vec<f64> = (0..self.windings.len()).map(|k| self.turns(k)).collect();
+        let inside: Vec<f64> = (0..self.windings.len()).map(|k| self.inside(k)).collect();
         let beside = Beside {
             turns: &turns,
+            inside: &inside,
             shared: 1.0 / self.legs[0].path().magnetomotive(0.0).1,
             mean_turn: geometries[0].mean_turn,
         };
@@ -373,12 +396,13 @@ impl Element for WoundLegs {
             let legs = self.legs.iter();
             legs.max_by(|a, b| density(a).total_cmp(&density(b)))
         };
-        let leg = match winding {
-            WHOLE => fullest()?,
-            _ => &self.legs[self.windings.get(winding)?.leg],
+        let leg = match self.windings.get(winding) {
+            Some(turns) => &self.legs[turns.leg],
+            None if winding == WHOLE => fullest()?,
+            None => self.legs.get(of_leg(winding))?,
         };
         let of_core = matches!(quantity, Quantity::FluxDensity | Quantity::FieldStrength);
-        if winding == WHOLE && !of_core {
+        if winding >= self.windings.len() && !of_core {
             return None;
         }
         match quantity {
@@ -445,6 +469,25 @@ impl Element for WoundLegs {
             name: &turns.name,
             resistance: *resistance,
             wound,
+        })
+        .collect()
+    }
+
+    fn quickest_of_ladder(&self, winding: usize, at: Point<'_>) -> Option<[f64; 2]> {
+        let skin = &self.skins[winding];
+        skin.ladder()?;
+        Some(skin.quickest(at.x, self.currents[winding].of(at.x)))
+    }
+
+    fn cores(&self) -> Vec<CoreFigures<'_>> {
+        let materials = self.materials.iter().zip(&self.leg_names).zip(&self.legs);
+        let legs = materials.enumerate();
+        legs.map(|(k, ((&(volume, losses), name), leg))| CoreFigures {
+            name,
+            place: of_leg(k),
+            volume,
+            losses,
+            eddy_currents: leg.has_shells(),
         })
         .collect()
     }

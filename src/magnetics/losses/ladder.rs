@@ -89,6 +89,17 @@ impl Ladder {
         REACH * self.of.corner()
     }
 
+    /// Share of the quickest section in the loss of all sections under a sine of a `frequency` [Hz]; it grows with the
+    /// frequency, so that a larger share tells of a higher one.
+    pub fn quickest_share(&self, frequency: f64) -> f64 {
+        let loss = |section: &Section| {
+            let square = (2.0 * PI * frequency * section.time).powi(2);
+            section.share * square / (1.0 + square)
+        };
+        let all: f64 = self.sections.iter().map(loss).sum();
+        self.sections.last().map_or(0.0, |last| loss(last) / all)
+    }
+
     /// Inductance at direct current over resistance to direct current [s].
     pub fn time(&self) -> f64 {
         let sections = self.sections.iter();

@@ -102,7 +102,10 @@ impl Lay {
                         remarks.extend(porous(fill(diameter, layers.pitch)));
                         Impedance::equivalent_foil(diameter, layers, resistivity)
                     }
-                    SkinLaw::Ferreira => Impedance::rounds(diameter, layers, resistivity),
+                    SkinLaw::Ferreira => {
+                        remarks.extend(close(diameter, layers.pitch, wire.outer));
+                        Impedance::rounds(diameter, layers, resistivity)
+                    }
                 }
             }
             Conductors::Strands(count, diameter) => {
@@ -198,6 +201,19 @@ fn porous(porosity: f64) -> Option<Remark> {
     })
 }
 
+/// A caution where round wires would push more field aside than lies in their cells: a wire of radius r takes 2π r² of it
+/// away at high frequency, each layer's cell being a pitch wide and the `outer` diameter [m] high.
+fn close(diameter: f64, pitch: f64, outer: f64) -> Option<Remark> {
+    let taken = std::f64::consts::FRAC_PI_2 * diameter * diameter / (pitch * outer);
+    (taken > 1.0).then(|| {
+        Remark::new(
+            "close-wires",
+            "the wires lie so close that Ferreira's law, which takes their field as even, finds too much loss at \
+             high frequency; `dowell` is nearer",
+        )
+    })
+}
+
 /// A caution for coils in air, whose field must run along them and vanish outside.
 fn short_in_air(geometry: &Geometry) -> Option<Remark> {
     let diameter = geometry.mean_turn? / std::f64::consts::PI;
@@ -239,7 +255,7 @@ mod tests {
     #[test]
     fn a_window_tells_layers_and_pitch() {
         // 50 turns of 0.4 mm fit into 20 mm: 150 turns make three full layers.
-        let wire = Wire::round(0.35e-3, Some(0.4e-3));
+        let wire = Wire::round(0.3e-3, Some(0.4e-3));
         let layers = Layers {
             count: 3.0,
             pitch: 0.4e-3,
@@ -247,7 +263,7 @@ mod tests {
         let found = arranged(lay(SkinLaw::Ferreira), 150, wire.clone(), Some(20e-3)).unwrap();
         assert_eq!(
             found.impedance,
-            Impedance::rounds(0.35e-3, layers, COPPER * copper_ratio(TWENTY, TWENTY))
+            Impedance::rounds(0.3e-3, layers, COPPER * copper_ratio(TWENTY, TWENTY))
         );
         assert!(found.remarks.is_empty());
         let told = Lay {
@@ -291,6 +307,10 @@ mod tests {
         assert_eq!(
             word(arranged(dowell, 150, wire(), None)),
             Some("layers-unknown")
+        );
+        assert_eq!(
+            word(arranged(lay(SkinLaw::Ferreira), 150, wire(), breadth)),
+            Some("close-wires")
         );
         let foil = Wire::foil(0.1e-3, 18e-3);
         assert_eq!(

@@ -43,6 +43,7 @@ fn coil(coil: &CoilReport) -> Value {
         )
         .optional("peak_flux_density", coil.peak_flux_density)
         .list("curve", curve)
+        .value("copper", super::copper::json(coil))
         .into()
 }
 

@@ -2,5 +2,6 @@
 //! the text's page, a field of the object, a panel of the chart.
 
 pub mod charts;
+pub mod copper;
 pub mod json;
 pub mod text;

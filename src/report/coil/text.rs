@@ -9,7 +9,7 @@ use crate::run::CoilReport;
 const ROWS: usize = 13;
 
 /// What is told of each coil below the table of all, part by part; an empty part is left out.
-const PARTS: &[fn(&CoilReport, Screen) -> String] = &[magnetics, over_current];
+const PARTS: &[fn(&CoilReport, Screen) -> String] = &[magnetics, over_current, super::copper::text];
 
 /// The answer in a line for each coil, the table of all, and the parts of each.
 pub fn page(coils: &[CoilReport], screen: Screen) -> String {

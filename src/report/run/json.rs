@@ -24,6 +24,7 @@ pub fn run(outcome: &Outcome) -> Value {
         .value("limits", limits(outcome))
         .value("ratings", ratings(outcome))
         .value("ledger", ledger(outcome))
+        .value("estimated_core_loss", core_losses(outcome))
         .value("coils", coil::json::coils(&outcome.coils))
         .value("steady_state", steady_state(outcome))
         .value("cautions", cautions(&outcome.cautions))
@@ -131,6 +132,16 @@ fn ledger(outcome: &Outcome) -> Value {
         .table("elements", elements)
         .number("imbalance", outcome.ledger.imbalance)
         .into()
+}
+
+/// Core losses by core, outside the ledger's balance.
+fn core_losses(outcome: &Outcome) -> Value {
+    table(outcome.core_losses.iter().map(|core| {
+        let object = Object::new()
+            .number("energy", core.energy)
+            .number("mean_power", core.mean_power);
+        (core.name.clone(), object)
+    }))
 }
 
 /// Cautions as objects.

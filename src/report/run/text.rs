@@ -39,6 +39,12 @@ pub fn run(outcome: &Outcome, screen: Screen) -> String {
     }
     section(
         &mut text,
+        "Estimated core loss, beside the ledger (improved generalised Steinmetz)",
+        &core_losses(outcome),
+        screen,
+    );
+    section(
+        &mut text,
         "Coils",
         &coil::text::coils(&outcome.coils),
         screen,
@@ -338,6 +344,21 @@ fn ledger(outcome: &Outcome) -> Table {
             (joules(account.dissipated), joules(account.stored))
         };
         table.row([name.clone(), joules(account.absorbed), dissipated, stored]);
+    }
+    table
+}
+
+fn core_losses(outcome: &Outcome) -> Table {
+    let mut table = Table::new()
+        .column("core of", Align::Left)
+        .column("energy", Align::Right)
+        .column("mean power", Align::Right);
+    for core in &outcome.core_losses {
+        table.row([
+            core.name.clone(),
+            engineering(core.energy, "J", DIGITS),
+            engineering(core.mean_power, "W", DIGITS),
+        ]);
     }
     table
 }

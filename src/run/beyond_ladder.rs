@@ -67,7 +67,7 @@ impl Ladders {
                 units::engineering(up_to, units::FREQUENCY, 3)
             );
             let caution = Diagnostic::caution("beyond-the-ladder", text).at(entry.span, "this winding");
-            Some(caution.help("there the copper damps less than it would: rings die sooner than computed"))
+            Some(caution.help("beyond it the damping by the copper is rough: the resistance is a third off at first, then grows no more"))
         });
         beyond.collect()
     }

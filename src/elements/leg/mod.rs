@@ -2,14 +2,16 @@
 //!
 //! F = H(B) l + (reluctance of the air) · flux is the magnetomotive force across it. In iron that conducts, F is that of
 //! the outermost shell; each further shell s has an unknown, the flux within the sheet of current outside it, and the
-//! row  l H(s + 1) - l H(s) + d(G(s) · flux within s)/dt = 0. A gap that moves adds x/(mu0 A) · flux, and pulls
-//! with the energy's slope at constant flux, flux²/(2 mu0 A).
+//! row  l H(s + 1) - l H(s) + d(G(s) · flux within s)/dt = 0. Where a gap x moves, all that is not iron has the
+//! reluctance R(x) ([`MovingGap`]) in place of the path's own air; it pulls with the energy's slope at constant flux,
+//! flux²/2 dR/dx.
 
 use super::claims::{Claims, Measure};
 use super::element::{Terms, Unknown, sum};
 use super::stamper::Stamper;
+use crate::magnetics::Path;
 use crate::magnetics::eddy::Shells;
-use crate::magnetics::{MU0, Path};
+use crate::magnetics::moving::MovingGap;
 
 /// A value that hangs on the leg's flux and on few unknowns more.
 #[derive(Clone, Copy, Debug)]
@@ -48,8 +50,8 @@ impl OfFlux {
 pub struct Leg {
     path: Option<Path>,
     shells: Option<Shells>,
-    /// Section of the moving gap [m²], where there is one.
-    moving: Option<f64>,
+    /// The gap that moves, where there is one.
+    moving: Option<MovingGap>,
     flux: Terms,
     turns: f64,
     /// Length of the moving gap [m].
@@ -73,8 +75,8 @@ impl Default for Leg {
 }
 
 impl Leg {
-    /// Takes the numbers: the path, its shells where its iron conducts, the section of a moving gap [m²].
-    pub fn derive(&mut self, path: Path, shells: Option<Shells>, moving: Option<f64>) {
+    /// Takes the numbers: the path, its shells where its iron conducts, the gap that an armature moves.
+    pub fn derive(&mut self, path: Path, shells: Option<Shells>, moving: Option<MovingGap>) {
         self.path = Some(path);
         self.shells = shells;
         self.moving = moving;
@@ -121,37 +123,47 @@ impl Leg {
         sum(&self.flux, x) / self.turns
     }
 
+    /// Reluctance of all that is not iron [1/H] and its slope over the moving gap [1/(H m)].
+    fn air(&self, x: &[f64]) -> (f64, f64) {
+        match self.gap.zip(self.moving.as_ref()) {
+            Some((gap, moving)) => moving.reluctance(gap.of(x)),
+            None => (self.path().reluctance_of_air(), 0.0),
+        }
+    }
+
     /// Magnetomotive force across it [A].
     #[inline]
     pub fn force(&self, x: &[f64]) -> OfFlux {
         let (path, flux) = (self.path(), self.flux(x));
-        let mut force = match &self.shells {
-            None => {
-                let (value, slope) = path.magnetomotive(flux);
-                OfFlux::new(value, slope)
-            }
-            Some(shells) => {
-                let (drop, slope) = self.drop(shells, 0, x);
-                let air = path.reluctance_of_air();
-                let mut force = OfFlux::new(drop + air * flux, slope + air);
-                force.and(self.inner[0], -slope);
-                force
-            }
-        };
-        if let Some((gap, area)) = self.gap.zip(self.moving) {
-            let per_metre = 1.0 / (MU0 * area);
-            force.value += gap.of(x) * per_metre * flux;
-            force.by_flux += gap.of(x) * per_metre;
-            force.and(gap, per_metre * flux);
+        if self.shells.is_none() && self.moving.is_none() {
+            let (value, slope) = path.magnetomotive(flux);
+            return OfFlux::new(value, slope);
+        }
+        let (air, by_gap) = self.air(x);
+        let (drop, slope) = self.drop(0, x);
+        let mut force = OfFlux::new(drop + air * flux, slope + air);
+        if let Some(&within) = self.inner.first() {
+            force.and(within, -slope);
+        }
+        if let Some(gap) = self.gap {
+            force.and(gap, by_gap * flux);
         }
         force
     }
 
-    /// Pull that closes the moving gap [N].
+    /// Pull that closes the moving gap [N]; none where nothing moves. Its slope over the gap is taken by a central
+    /// difference of the reluctance's.
     pub fn pull(&self, x: &[f64]) -> OfFlux {
-        let flux = self.flux(x);
-        let per_metre = self.moving.map_or(0.0, |area| 1.0 / (MU0 * area));
-        OfFlux::new(0.5 * flux * flux * per_metre, flux * per_metre)
+        let Some((gap, moving)) = self.gap.zip(self.moving.as_ref()) else {
+            return OfFlux::new(0.0, 0.0);
+        };
+        let (flux, length) = (self.flux(x), gap.of(x));
+        let by_gap = moving.reluctance(length).1;
+        let step = 1e-4 * (length.abs() + moving.residual).max(1e-6);
+        let slopes = [length + step, length - step].map(|length| moving.reluctance(length).1);
+        let mut pull = OfFlux::new(0.5 * flux * flux * by_gap, flux * by_gap);
+        pull.and(gap, 0.25 * flux * flux * (slopes[0] - slopes[1]) / step);
+        pull
     }
 
     /// The flux [Wb] of shell `k`.
@@ -164,9 +176,10 @@ impl Leg {
         outside - within
     }
 
-    /// Magnetomotive force along shell `k` [A], and its slope over the shell's flux.
-    fn drop(&self, shells: &Shells, k: usize, x: &[f64]) -> (f64, f64) {
-        let (path, area) = (self.path(), shells.areas[k]);
+    /// Magnetomotive force along shell `k`, or the whole iron where it has none [A], and its slope over the flux there.
+    fn drop(&self, k: usize, x: &[f64]) -> (f64, f64) {
+        let path = self.path();
+        let area = self.shells.map_or(path.area(), |shells| shells.areas[k]);
         let (field, slope) = path.iron_field(self.of_shell(k, x) / area);
         (path.iron() * field, path.iron() * slope / area)
     }
@@ -176,9 +189,9 @@ impl Leg {
         let Some(shells) = &self.shells else {
             return;
         };
-        let mut outer = self.drop(shells, 0, x);
+        let mut outer = self.drop(0, x);
         for (k, &row) in self.inner.iter().enumerate() {
-            let inner = self.drop(shells, k + 1, x);
+            let inner = self.drop(k + 1, x);
             into.q(row, shells.sheets[k] * row.of(x));
             into.dq(row, row, shells.sheets[k]);
             into.f(row, inner.0 - outer.0);
@@ -203,10 +216,10 @@ impl Leg {
         let Some(shells) = &self.shells else {
             return 0.0;
         };
-        let mut outer = self.drop(shells, 0, x).0;
+        let mut outer = self.drop(0, x).0;
         let mut power = 0.0;
         for (k, conductance) in shells.sheets.iter().enumerate() {
-            let inner = self.drop(shells, k + 1, x).0;
+            let inner = self.drop(k + 1, x).0;
             power += (outer - inner).powi(2) / conductance;
             outer = inner;
         }
@@ -216,22 +229,18 @@ impl Leg {
     /// Energy of its field [J].
     pub fn stored(&self, x: &[f64]) -> f64 {
         let (path, flux) = (self.path(), self.flux(x));
-        let fixed = match &self.shells {
-            None => path.energy(flux),
-            Some(shells) => {
-                let mut energy = 0.5 * path.reluctance_of_air() * flux * flux;
-                for (k, area) in shells.areas.iter().enumerate() {
-                    let density = path.iron_energy_density(self.of_shell(k, x) / area);
-                    energy += area * path.iron() * density;
-                }
-                energy
-            }
-        };
-        let moving = self.gap.zip(self.moving);
-        fixed
-            + moving.map_or(0.0, |(gap, area)| {
-                0.5 * flux * flux * gap.of(x) / (MU0 * area)
-            })
+        if self.shells.is_none() && self.moving.is_none() {
+            return path.energy(flux);
+        }
+        let whole = path.area();
+        let areas = self.shells.as_ref().map(|shells| shells.areas.as_slice());
+        let areas = areas.unwrap_or(std::slice::from_ref(&whole));
+        let mut energy = 0.5 * self.air(x).0 * flux * flux;
+        for (k, area) in areas.iter().enumerate() {
+            let density = path.iron_energy_density(self.of_shell(k, x) / area);
+            energy += area * path.iron() * density;
+        }
+        energy
     }
 
     /// What a zero start at a `flux` [Wb] that has long been there adds to q of the shells' rows.

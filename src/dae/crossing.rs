@@ -76,16 +76,29 @@ impl Watch {
         fired: Option<usize>,
     ) -> Option<usize> {
         system.guards(at, &mut self.now);
-        let jumped = (0..self.now.len())
-            .find(|&k| Some(k) != fired && self.start[k] < 0.0 && self.now[k] > 0.0);
-        self.start.copy_from_slice(&self.now);
+        let mut jumped = None;
+        for (k, (start, &now)) in self.start.iter_mut().zip(&self.now).enumerate() {
+            let waits = Some(k) != fired && *start < 0.0 && now >= 0.0;
+            // Of several the first is taken; the others wait for their turn.
+            if waits && jumped.is_some() {
+                continue;
+            }
+            if waits {
+                jumped = Some(k);
+            }
+            *start = now;
+        }
         self.fresh = true;
         jumped
     }
 
-    /// The step looked at last is kept.
+    /// The step looked at last is kept. Guards that have risen in it wait for the event at its end, where they are taken.
     pub fn keep(&mut self) {
-        self.start.copy_from_slice(&self.end);
+        for (start, &end) in self.start.iter_mut().zip(&self.end) {
+            if *start >= 0.0 || end < 0.0 {
+                *start = end;
+            }
+        }
         self.fresh = false;
     }
 

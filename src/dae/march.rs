@@ -234,15 +234,17 @@ impl<S: System + ?Sized> Run<'_, '_, '_, S> {
             if flow.is_break() {
                 return Ok(Ending::Stopped);
             }
-            let cause = match end {
-                End::Guard(guard) => Some(Cause::Guard(guard)),
-                End::Clock if self.state.time == event => Some(Cause::Time),
-                End::Clock | End::Own => None,
+            let clock = (self.state.time == event).then_some(Cause::Time);
+            // A guard may rise at the very instant of the clock's event: both are taken.
+            let causes = match end {
+                End::Guard(guard) => [Some(Cause::Guard(guard)), clock],
+                End::Clock => [clock, None],
+                End::Own => [None, None],
             };
-            if let Some(cause) = cause
-                && self.take(cause)?.is_break()
-            {
-                return Ok(Ending::Stopped);
+            for cause in causes.into_iter().flatten() {
+                if self.take(cause)?.is_break() {
+                    return Ok(Ending::Stopped);
+                }
             }
         }
         Ok(Ending::Reached)

@@ -218,3 +218,64 @@ fn an_observer_stops_the_march() {
     assert_eq!(ending, Ok(Ending::Stopped));
     assert!(whole.state.time > 0.5 && whole.state.time < 1.0);
 }
+
+/// Two unknowns that grow alike, each with a guard at 1 that turns it round, and a clock that ticks at that very instant.
+struct Twins {
+    pattern: crate::dae::Pattern,
+}
+
+impl System for Twins {
+    fn size(&self) -> usize {
+        2
+    }
+    fn pattern(&self) -> &crate::dae::Pattern {
+        &self.pattern
+    }
+    fn evaluate(&self, at: crate::dae::Point<'_>, slopes: bool, out: &mut crate::dae::Evaluation) {
+        out.f = vec![at.mode[0], at.mode[1]];
+        out.q = at.x.to_vec();
+        if slopes {
+            out.df = vec![0.0; 2];
+            out.dq = vec![1.0; 2];
+        }
+    }
+    fn mode_size(&self) -> usize {
+        3
+    }
+    fn next_event(&self, time: f64, _mode: &[f64]) -> f64 {
+        if time < 1.0 { 1.0 } else { f64::INFINITY }
+    }
+    fn guard_size(&self) -> usize {
+        2
+    }
+    fn guards(&self, at: crate::dae::Point<'_>, out: &mut [f64]) {
+        out.copy_from_slice(&[at.x[0] - 1.0, at.x[1] - 1.0]);
+    }
+    fn transition(&self, cause: Cause, _time: f64, _x: &mut [f64], mode: &mut [f64]) -> bool {
+        match cause {
+            Cause::Guard(which) => mode[which] = 1.0,
+            Cause::Time => mode[2] += 1.0,
+        }
+        true
+    }
+}
+
+#[test]
+fn guards_that_rise_at_one_instant_are_all_taken_and_the_clocks_event_with_them() {
+    for method in METHODS {
+        let system = Twins {
+            pattern: crate::dae::Pattern::from_positions(2, &[(0, 0), (1, 1)]),
+        };
+        let state = State {
+            time: 0.0,
+            x: vec![0.0; 2],
+            mode: vec![-1.0, -1.0, 0.0],
+        };
+        let mut whole = March::new(method, state);
+        march(&mut whole, &system, 1.5, 1e-7).unwrap();
+        assert_eq!(whole.state.mode, [1.0, 1.0, 1.0], "{}", method.name);
+        for x in &whole.state.x {
+            assert!((x - 0.5).abs() < 1e-6, "{}: {x}", method.name);
+        }
+    }
+}

@@ -5,14 +5,14 @@ use super::start::{Begun, begin, begin_at, set_out, vary};
 use super::steady::{self, Found, Warm};
 use super::swings::{Swings, Wish};
 use super::task::Start;
-use crate::circuit::Circuit;
+use crate::circuit::{Actor, Circuit};
 use crate::dae::methods;
 use crate::dae::{
     Advance, Ending, Impulse, March, Method, Moved, Point, Shadows, Span, Statistics, Tolerances,
     Variations,
 };
 use crate::diag::Diagnostic;
-use crate::signals::{EventLog, Happening, Owner};
+use crate::signals::{EventLog, Happening};
 use std::ops::ControlFlow;
 
 /// Numbers of a transient [SI].
@@ -66,7 +66,7 @@ pub enum Shown<'a> {
         /// Unknowns and modes after it.
         after: Point<'a>,
         /// Elements that opened or closed.
-        happened: &'a [(usize, Happening)],
+        happened: &'a [(Actor, Happening)],
         /// Derivatives at it, where variations are carried along.
         varied: Option<Moved<'a>>,
         /// Charges and flux linkages that moved at once.
@@ -311,7 +311,7 @@ impl Simulation<'_> {
         let state = set_out(circuit, self.settings.start, state);
         let mut log = EventLog::default();
         for (k, what) in happened {
-            log.note(&owner(circuit, k), what, 0.0);
+            log.note(&circuit.owner(k), what, 0.0);
         }
         if watcher(circuit, Shown::Start(state.point()), &log).is_break() {
             return Ok((Statistics::default(), Ending::Stopped));
@@ -345,7 +345,7 @@ impl Simulation<'_> {
                         });
                     }
                     for &(k, what) in &happened {
-                        log.note(&owner(circuit, k), what, *time);
+                        log.note(&circuit.owner(k), what, *time);
                     }
                     let before = Point {
                         time: *time,
@@ -374,12 +374,5 @@ impl Simulation<'_> {
             .map_err(|error| Failure::march(circuit, error))?;
         spent.add(&march.counted);
         Ok((spent, ending))
-    }
-}
-
-fn owner(circuit: &Circuit, entry: usize) -> Owner {
-    Owner {
-        element: circuit.entries[entry].name.clone(),
-        winding: None,
     }
 }

@@ -2,8 +2,8 @@
 
 use super::failure::Failure;
 use super::task::Start;
-use crate::circuit::Circuit;
 use crate::circuit::checks::without_rest;
+use crate::circuit::{Actor, Circuit};
 use crate::dae::{
     Cause, Evaluation, Point, Shadows, State, System, Tolerances, Trouble, Variations,
     consistent_start, operating_point,
@@ -21,11 +21,11 @@ pub struct Begun {
     /// After them: a consistent state.
     pub state: State,
     /// What happened at that very instant.
-    pub happened: Vec<(usize, Happening)>,
+    pub happened: Vec<(Actor, Happening)>,
 }
 
 /// A consistent state at time zero, and what happened at that very instant.
-pub fn start(circuit: &Circuit, from: Start) -> Result<(State, Vec<(usize, Happening)>), Failure> {
+pub fn start(circuit: &Circuit, from: Start) -> Result<(State, Vec<(Actor, Happening)>), Failure> {
     let begun = begin(circuit, from)?;
     Ok((begun.state, begun.happened))
 }
@@ -280,7 +280,7 @@ fn first_instant(
     circuit: &Circuit,
     state: &mut State,
     tolerances: &Tolerances,
-) -> Result<Vec<(usize, Happening)>, Failure> {
+) -> Result<Vec<(Actor, Happening)>, Failure> {
     let mut happened = Vec::new();
     let before = state.mode.clone();
     circuit.take(

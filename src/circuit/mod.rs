@@ -16,7 +16,7 @@ use crate::dae::Pattern;
 use crate::diag::Span;
 use crate::elements::{Claimed, Element, ElementKind, Terminal, Unknown, Unsound};
 use crate::netlist::{Node, Parameters, Value, Values};
-use crate::signals::Rated;
+use crate::signals::{Owner, Rated};
 use std::collections::BTreeMap;
 use std::ops::Range;
 
@@ -62,6 +62,22 @@ impl Entry {
     }
 }
 
+/// Who opens or closes: an element, or a contact of one.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
+pub struct Actor {
+    /// Index of the element.
+    pub entry: usize,
+    /// Number of the contact among its windings; 0 for the element as a whole.
+    pub winding: usize,
+}
+
+impl Actor {
+    /// An element as a whole.
+    pub fn whole(entry: usize) -> Self {
+        Actor { entry, winding: 0 }
+    }
+}
+
 /// A checked circuit with its equations numbered. It is immutable while it is solved.
 pub struct Circuit {
     /// Elements in the order of the netlist.
@@ -101,6 +117,16 @@ pub struct Refused {
 }
 
 impl Circuit {
+    /// What somebody who opens or closes is called.
+    pub fn owner(&self, actor: Actor) -> Owner {
+        let entry = &self.entries[actor.entry];
+        let winding = entry.windings.get(actor.winding);
+        Owner {
+            element: entry.name.clone(),
+            winding: winding.filter(|_| actor.winding > 0).cloned(),
+        }
+    }
+
     /// The element of a name.
     pub fn find(&self, name: &str) -> Option<&Entry> {
         self.by_name.get(name).map(|&k| &self.entries[k])

@@ -267,7 +267,7 @@ pub(super) fn terminal_pair(entry: &Entry, owner: &Owner) -> Result<(usize, usiz
             }
             Ok((2 * winding, 2 * winding + 1))
         }
-        None if entry.terminals.len() == 2 => Ok((0, 1)),
+        None if entry.terminals.len() == 2 || is_coil_of_its_own(entry) => Ok((0, 1)),
         None if entry.windings.is_empty() => {
             let names: Vec<&str> = entry
                 .terminals
@@ -298,13 +298,18 @@ pub(super) fn winding_of(entry: &Entry, owner: &Owner) -> Result<usize, String> 
             .iter()
             .position(|winding| winding == name)
             .ok_or_else(|| no_winding(entry, name)),
-        None if entry.windings.len() > 1 => Err(format!(
+        None if entry.windings.len() > 1 && !is_coil_of_its_own(entry) => Err(format!(
             "`{}` has several windings: {}",
             entry.name,
             entry.windings.join(", ")
         )),
         None => Ok(0),
     }
+}
+
+/// True where an element's first winding has no name: it is the coil that the element's own name means.
+fn is_coil_of_its_own(entry: &Entry) -> bool {
+    entry.windings.first().is_some_and(String::is_empty)
 }
 
 fn no_winding(entry: &Entry, name: &str) -> String {

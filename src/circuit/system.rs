@@ -1,6 +1,6 @@
 //! The circuit as the solver sees it.
 
-use super::{Circuit, Entry};
+use super::{Actor, Circuit, Entry};
 use crate::dae::{Cause, Evaluation, Pattern, Point, System};
 use crate::elements::{Happening, Stamper, Switching};
 
@@ -77,9 +77,9 @@ impl System for Circuit {
     }
 
     fn transition(&self, cause: Cause, time: f64, x: &mut [f64], mode: &mut [f64]) -> bool {
-        let before = mode.to_vec();
+        let (before, x_before) = (mode.to_vec(), x.to_vec());
         self.take(cause, time, x, mode, &mut |_, _| {});
-        before != mode
+        before != mode || x_before != x
     }
 }
 
@@ -108,7 +108,7 @@ impl Circuit {
         time: f64,
         x: &mut [f64],
         mode: &mut [f64],
-        happened: &mut dyn FnMut(usize, Happening),
+        happened: &mut dyn FnMut(Actor, Happening),
     ) {
         for (k, entry, switching) in self.switching() {
             let own = &mut mode[entry.modes.clone()];
@@ -119,7 +119,7 @@ impl Circuit {
                     let mut rounds = 0;
                     while due <= just_after(time) && rounds < MOST_AT_ONCE {
                         if let Some(what) = switching.at_instant(due, own) {
-                            happened(k, what);
+                            happened(Actor::whole(k), what);
                         }
                         let next = switching.next_event(due, own);
                         if next <= due {
@@ -130,9 +130,10 @@ impl Circuit {
                     }
                 }
                 Cause::Guard(which) if entry.guards.contains(&which) => {
-                    if let Some(what) = switching.at_guard(which - entry.guards.start, time, x, own)
-                    {
-                        happened(k, what);
+                    let which = which - entry.guards.start;
+                    if let Some(what) = switching.at_guard(which, time, x, own) {
+                        let winding = switching.winding_of_guard(which);
+                        happened(Actor { entry: k, winding }, what);
                     }
                 }
                 Cause::Guard(_) => {}

@@ -156,8 +156,8 @@ impl Circuit {
         impulse.length * nodes.iter().enumerate().map(energy).sum::<f64>()
     }
 
-    /// Energy that flows into an element's terminals and that its own loss law turns to heat [J] while an instant passes,
-    /// the impulse aside: a picosecond's discharge has a thousandth of it done by then.
+    /// Energy that flows into an element's terminals and that its own loss laws turn to heat [J] while an instant passes,
+    /// the impulse aside: a picosecond's discharge has a thousandth of it done by then, an impact all.
     pub fn meanwhile(&self, entry: usize, impulse: &Impulse, time: f64) -> (f64, f64) {
         let at = Point {
             time,
@@ -165,7 +165,9 @@ impl Circuit {
             mode: &impulse.mode,
         };
         let (power, loss) = (self.power(entry, at), self.loss(entry, at));
-        (impulse.spent * power, impulse.spent * loss)
+        let energy = self.entries[entry].element.energy();
+        let struck = energy.struck(&impulse.before, &impulse.after);
+        (impulse.spent * power, impulse.spent * loss + struck)
     }
 
     /// Power turned to heat by an element's own loss law [W].

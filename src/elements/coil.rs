@@ -6,7 +6,7 @@ use super::claims::{Claims, Measure, Wanted};
 use super::element::{
     Branch, Element, Energy, Path, PathKind, Point, Quantity, Unknown, Unsound, WindingFigures,
 };
-use super::kind::{ElementKind, Made, NODES, Surroundings, pair, reference_temperature};
+use super::kind::{ElementKind, Made, NODES, Surroundings, Terminal, pair, reference_temperature};
 use super::leg::Leg;
 use super::skin::Skin;
 use super::stamper::Stamper;
@@ -14,7 +14,7 @@ use super::winding::{
     LAYER_BREADTH, LAYERS, RESISTANCE, SKIN_AND_PROXIMITY, TEMPERATURE_COEFFICIENT, TURNS, WIRE,
     Winding, unsound,
 };
-use crate::magnetics::{Core, Linkage, Wound};
+use crate::magnetics::{Core, Linkage, MU0, MovingGap, Wound};
 use crate::netlist::{Fields, Key, Takes, Value, Values};
 use crate::units;
 use std::sync::Arc;
@@ -29,11 +29,7 @@ pub const KIND: ElementKind = ElementKind {
         TURNS,
         WIRE,
         RESISTANCE,
-        Key::required(
-            "self_capacitance",
-            Takes::Quantity(units::CAPACITANCE),
-            "capacitance across the whole coil",
-        ),
+        SELF_CAPACITANCE,
         Key::default(
             "initial_current",
             Takes::Quantity(units::CURRENT),
@@ -48,14 +44,22 @@ pub const KIND: ElementKind = ElementKind {
     read,
 };
 
-struct Coil {
+/// The key of the capacitance across a coil.
+pub const SELF_CAPACITANCE: Key = Key::required(
+    "self_capacitance",
+    Takes::Quantity(units::CAPACITANCE),
+    "capacitance across the whole coil",
+);
+
+/// A winding on a core; a relay has one whose gap moves.
+pub(super) struct Coil {
     core: Arc<Core>,
     winding: Winding,
     capacitance_key: Value,
-    initial_key: Value,
+    initial_key: Option<Value>,
     made: Option<Wound>,
-    leg: Leg,
-    turns: f64,
+    pub(super) leg: Leg,
+    pub(super) turns: f64,
     resistance: f64,
     skin: Skin,
     capacitance: f64,
@@ -64,53 +68,60 @@ struct Coil {
     linkage: Unknown,
     /// The winding current as an unknown, where another element follows it.
     winding_current: Option<Unknown>,
+    /// Length of a gap that moves.
+    gap: Option<Unknown>,
 }
 
 fn read(fields: &Fields<'_>, around: &Surroundings<'_>) -> Option<Made> {
-    let terminals = pair(fields);
-    let reference = reference_temperature(fields, around);
-    let core = around.library.core(fields, "core");
-    let winding =
-        reference.and_then(|reference| Winding::read(fields, around, reference, "a coil"));
-    let winding = winding.and_then(|winding| winding.with_lay(fields));
-    let capacitance = fields.non_negative("self_capacitance");
-    let initial = fields.value("initial_current");
-    let element = Coil {
-        core: core?,
-        winding: winding?,
-        capacitance_key: capacitance?,
-        initial_key: initial?,
-        made: None,
-        leg: Leg::default(),
-        turns: 1.0,
-        resistance: 0.0,
-        skin: Skin::default(),
-        capacitance: 0.0,
-        initial: 0.0,
-        branch: Branch::default(),
-        linkage: Unknown::GROUND,
-        winding_current: None,
-    };
-    Some(Made::new(terminals?, element))
+    let (terminals, coil) = Coil::read(fields, around, false)?;
+    Some(Made::new(terminals, coil))
 }
 
 impl Coil {
-    fn law(&self) -> &Linkage {
-        &self
-            .made
-            .as_ref()
-            .expect("a coil is derived before anything is asked of it")
-            .linkage
+    /// Reads a coil, or that of a relay, which starts without current.
+    pub(super) fn read(
+        fields: &Fields<'_>,
+        around: &Surroundings<'_>,
+        of_relay: bool,
+    ) -> Option<(Vec<Terminal>, Self)> {
+        let terminals = pair(fields);
+        let reference = reference_temperature(fields, around);
+        let core = around.library.core(fields, "core");
+        let winding =
+            reference.and_then(|reference| Winding::read(fields, around, reference, "a coil"));
+        let winding = winding.and_then(|winding| winding.with_lay(fields));
+        let capacitance = fields.non_negative("self_capacitance");
+        let initial = if of_relay {
+            Some(None)
+        } else {
+            fields.value("initial_current").map(Some)
+        };
+        let element = Coil {
+            core: core?,
+            winding: winding?,
+            capacitance_key: capacitance?,
+            initial_key: initial?,
+            made: None,
+            leg: Leg::default(),
+            turns: 1.0,
+            resistance: 0.0,
+            skin: Skin::default(),
+            capacitance: 0.0,
+            initial: 0.0,
+            branch: Branch::default(),
+            linkage: Unknown::GROUND,
+            winding_current: None,
+            gap: None,
+        };
+        Some((terminals?, element))
     }
 
-    /// Winding current [A].
-    fn current(&self, x: &[f64]) -> f64 {
-        self.leg.force(x).value / self.turns
-    }
-}
-
-impl Element for Coil {
-    fn derive(&mut self, values: &Values) -> Result<(), Unsound> {
+    /// Re-derives the numbers; of a gap that moves, `seated` is the least length [m], at which the coil is told.
+    pub(super) fn derive_around(
+        &mut self,
+        values: &Values,
+        seated: Option<f64>,
+    ) -> Result<(), Unsound> {
         let mut wound = self
             .core
             .wound(
@@ -129,20 +140,33 @@ impl Element for Coil {
                 .map_err(|fault| unsound(&fault))?;
         }
         self.turns = wound.linkage.turns();
-        self.leg
-            .derive(wound.linkage.path().clone(), wound.shells, None);
+        let whole = wound.linkage.path().clone();
+        match seated {
+            None => self.leg.derive(whole, wound.shells, None),
+            Some(gap) => {
+                // A yoke's air is that of its moving gap; another core's stays beside a plain one.
+                let moving = wound.geometry.moving.clone();
+                let moving = moving.unwrap_or_else(|| MovingGap::plain(&whole));
+                let path = whole.without_air();
+                let of_gap = MU0 * path.area() * moving.reluctance(gap).0;
+                wound.linkage = Linkage::new(path.with_gap(of_gap), self.turns);
+                self.leg.derive(path, wound.shells, Some(moving));
+            }
+        }
         self.made = Some(wound);
         self.capacitance = values[self.capacitance_key];
-        self.initial = values[self.initial_key];
+        self.initial = self.initial_key.map_or(0.0, |key| values[key]);
         Ok(())
     }
 
-    fn claim(&mut self, claims: &mut Claims<'_>) {
+    /// Claims what a coil needs; `gap` is the length of a gap that moves.
+    pub(super) fn claim_around(&mut self, claims: &mut Claims<'_>, gap: Option<Unknown>) {
         let hidden = claims.probed && self.capacitance > 0.0;
         self.branch = Branch::claim(claims, hidden);
         self.linkage = claims.unknown("flux linkage", Measure::FluxLinkage);
         self.leg
-            .claim(claims, vec![(self.linkage, 1.0)], self.turns, None);
+            .claim(claims, vec![(self.linkage, 1.0)], self.turns, gap);
+        self.gap = gap;
         self.skin.claim(claims);
         let wanted = Wanted::Of(Quantity::WindingCurrent, 0);
         self.winding_current = claims
@@ -152,6 +176,41 @@ impl Element for Coil {
             claims.offer(wanted, current, 1.0);
         }
         claims.offer(Wanted::Of(Quantity::FluxLinkage, 0), self.linkage, 1.0);
+    }
+
+    fn law(&self) -> &Linkage {
+        &self
+            .made
+            .as_ref()
+            .expect("a coil is derived before anything is asked of it")
+            .linkage
+    }
+
+    /// Incremental inductance [H] with the gap as it is.
+    fn inductance(&self, x: &[f64]) -> f64 {
+        let path = self.leg.path_now(x);
+        self.turns * self.turns / path.magnetomotive(self.leg.flux(x)).1
+    }
+
+    /// 1 less the incremental inductance over that at no flux, with the gap as it is.
+    fn saturation(&self, x: &[f64]) -> f64 {
+        let path = self.leg.path_now(x);
+        1.0 - path.magnetomotive(0.0).1 / path.magnetomotive(self.leg.flux(x)).1
+    }
+
+    /// Winding current [A].
+    fn current(&self, x: &[f64]) -> f64 {
+        self.leg.force(x).value / self.turns
+    }
+}
+
+impl Element for Coil {
+    fn derive(&mut self, values: &Values) -> Result<(), Unsound> {
+        self.derive_around(values, None)
+    }
+
+    fn claim(&mut self, claims: &mut Claims<'_>) {
+        self.claim_around(claims, None);
     }
 
     fn stamp(&self, at: Point<'_>, into: &mut Stamper<'_>) {
@@ -215,6 +274,8 @@ impl Element for Coil {
             Quantity::FluxLinkage => Some(linkage),
             Quantity::FluxDensity => Some(law.flux_density(linkage)),
             Quantity::FieldStrength => Some(self.leg.field_strength(at.x)),
+            Quantity::Inductance if self.gap.is_some() => Some(self.inductance(at.x)),
+            Quantity::Saturation if self.gap.is_some() => Some(self.saturation(at.x)),
             Quantity::Inductance => Some(law.inductance(linkage)),
             Quantity::Saturation => Some(law.saturation(linkage)),
             _ => None,

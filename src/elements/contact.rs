@@ -12,12 +12,13 @@ use super::element::{
     Unsound, sum,
 };
 use super::kind::{ElementKind, Made, NODES, Surroundings, pair};
-use super::movement::{self, CLOSED_RESISTANCE, Movement, OPEN_RESISTANCE, TRANSITION};
-use super::rebounds::{self, Flight, Rebounds};
+use super::movement::{CLOSED_RESISTANCE, Movement, OPEN_RESISTANCE, TRANSITION};
+use super::rebounds::{self, Rebounds};
 use super::stamper::Stamper;
 use super::switch_command::{
     CLOSES_AT, Command, INITIALLY, OPENS_AT, SQUARE, WATCHES, read_command,
 };
+use super::touching::{self, Touching};
 use crate::netlist::{Fields, Key, Takes, Value, Values};
 use crate::signals::Phrase;
 use crate::units;
@@ -78,9 +79,9 @@ const ARC_KEYS: &[Key] = &[
     ),
 ];
 
-/// Places of the modes behind those of the pair. Number of the first period of a square: 0, or minus infinity where it has
-/// always run.
-const FIRST: usize = contact_pair::MODES;
+/// Places of the modes behind those of the touching contacts. Number of the first period of a square: 0, or minus infinity
+/// where it has always run.
+const FIRST: usize = touching::MODES;
 /// 1 where the last command was to close.
 const COMMANDED: usize = FIRST + 1;
 /// How the gap changes.
@@ -88,12 +89,7 @@ const WAY: usize = FIRST + 2;
 /// Instant [s] since when it does, and the gap [m] then.
 const SET_OUT: usize = FIRST + 3;
 const FROM: usize = FIRST + 4;
-/// 1 after a touch, and the instant [s] of it.
-const TRAIN: usize = FIRST + 5;
-const TOUCHED: usize = FIRST + 6;
-/// Number of the rebound that the contact is in; 0 for none.
-const REBOUND: usize = FIRST + 7;
-const MODES: usize = FIRST + 8;
+const MODES: usize = FIRST + 5;
 
 /// Values of `mode[WAY]`.
 const STILL: f64 = 0.0;
@@ -111,9 +107,8 @@ struct Stroke {
 }
 
 struct Contact {
-    pair: Pair,
+    touching: Touching,
     stroke: Option<Stroke>,
-    rebounds: Option<Rebounds>,
     command: Command,
     initially_closed: bool,
     branch: Branch,
@@ -135,12 +130,14 @@ fn read(fields: &Fields<'_>, around: &Surroundings<'_>) -> Option<Made> {
     let (command, initially_closed) = read_command(fields)?;
     let (arc, stroke) = arc?.unzip();
     let element = Contact {
-        pair: Pair {
-            movement: movement?,
-            arc,
+        touching: Touching {
+            pair: Pair {
+                movement: movement?,
+                arc,
+            },
+            rebounds: rebounds?,
         },
         stroke,
-        rebounds: rebounds?,
         command,
         initially_closed,
         branch: Branch::default(),
@@ -174,11 +171,6 @@ fn read_arc(fields: &Fields<'_>, around: &Surroundings<'_>) -> Option<(Arc, Stro
 }
 
 impl Contact {
-    /// The rebound that the contact is in.
-    fn rebound(&self, mode: &[f64]) -> Option<Flight> {
-        self.rebounds.as_ref()?.flight(mode[REBOUND] as usize)
-    }
-
     fn gap(&self, time: f64, mode: &[f64]) -> Gap {
         let Some(stroke) = &self.stroke else {
             return Gap {
@@ -190,11 +182,8 @@ impl Contact {
         let (length, shrinks) = match mode[WAY] {
             PARTS => (mode[FROM] + stroke.opening * gone, false),
             APPROACHES => (mode[FROM] - stroke.closing * gone, true),
-            _ => match self.rebound(mode) {
-                Some(flight) => {
-                    let since = time - mode[TOUCHED];
-                    (flight.gap(stroke.closing, since), flight.falls(since))
-                }
+            _ => match self.touching.rebound(time, mode) {
+                Some((flight, since)) => (flight.gap(stroke.closing, since), flight.falls(since)),
                 None if mode[COMMANDED] == 0.0 => (stroke.gap, false),
                 None => (0.0, false),
             },
@@ -214,24 +203,14 @@ impl Contact {
         }
     }
 
-    fn touch(&self, time: f64, mode: &mut [f64]) {
-        mode[WAY] = STILL;
-        mode[REBOUND] = 0.0;
-        mode[TRAIN] = f64::from(u8::from(self.rebounds.is_some()));
-        mode[TOUCHED] = time;
-        self.pair.touch(time, mode);
-    }
-
     /// Sets out towards a state; nothing happens where it is there or on the way.
     fn go(&self, closed: bool, time: f64, mode: &mut [f64]) -> Option<Happening> {
         if (mode[COMMANDED] != 0.0) == closed {
             return None;
         }
         let gap = self.gap(time, mode).length.max(0.0);
-        let touches = mode[COMMANDED] != 0.0 && mode[WAY] == STILL && mode[REBOUND] == 0.0;
+        let approached = mode[WAY] != STILL;
         mode[COMMANDED] = f64::from(u8::from(closed));
-        mode[TRAIN] = 0.0;
-        mode[REBOUND] = 0.0;
         if self.stroke.is_some() {
             mode[WAY] = if closed { APPROACHES } else { PARTS };
             mode[SET_OUT] = time;
@@ -239,12 +218,12 @@ impl Contact {
         }
         if closed {
             if self.stroke.is_none() {
-                self.touch(time, mode);
+                self.touching.touch(time, mode);
             }
             Some(Happening::Closes)
         } else {
-            if touches || self.stroke.is_none() {
-                self.pair.part(time, mode);
+            if !approached {
+                self.touching.part(time, mode);
             }
             Some(Happening::Opens)
         }
@@ -252,46 +231,24 @@ impl Contact {
 
     /// The next change of the contact's own, a command aside.
     fn own_next(&self, time: f64, mode: &[f64]) -> f64 {
-        let movement = self.pair.movement.arrival(mode);
-        let train = match &self.rebounds {
-            Some(rebounds) if mode[TRAIN] != 0.0 => rebounds
-                .changes(mode[TOUCHED])
-                .map(|change| change.0)
-                .find(|&instant| instant > time)
-                .unwrap_or(f64::INFINITY),
-            _ => f64::INFINITY,
-        };
-        movement.min(self.arrival(mode)).min(train)
+        self.touching.next(time, mode).min(self.arrival(mode))
     }
 
     fn own_change(&self, time: f64, mode: &mut [f64]) {
-        self.pair.movement.arrive(time, mode);
+        self.touching.change(time, mode);
         if self.arrival(mode) <= time {
-            if mode[WAY] == APPROACHES {
-                self.touch(time, mode);
-            } else {
-                mode[WAY] = STILL;
-            }
-        }
-        let Some(rebounds) = self.rebounds.as_ref().filter(|_| mode[TRAIN] != 0.0) else {
-            return;
-        };
-        let mut changes = rebounds.changes(mode[TOUCHED]);
-        if let Some((_, number, ends)) = changes.find(|change| change.0 == time) {
-            if ends {
-                mode[REBOUND] = 0.0;
-                self.pair.touch(time, mode);
-            } else {
-                mode[REBOUND] = number as f64;
-                self.pair.part(time, mode);
+            let touches = mode[WAY] == APPROACHES;
+            mode[WAY] = STILL;
+            if touches {
+                self.touching.touch(time, mode);
             }
         }
     }
 
     fn at_rest(&self, closed: bool, mode: &mut [f64]) {
-        self.pair.at_rest(closed, mode);
+        self.touching.at_rest(closed, mode);
         mode[COMMANDED] = f64::from(u8::from(closed));
-        for place in [WAY, SET_OUT, FROM, TRAIN, TOUCHED, REBOUND] {
+        for place in [WAY, SET_OUT, FROM] {
             mode[place] = 0.0;
         }
     }
@@ -299,21 +256,18 @@ impl Contact {
 
 impl Element for Contact {
     fn derive(&mut self, values: &Values) -> Result<(), Unsound> {
-        self.pair.derive(values)?;
+        self.touching.derive(values)?;
         if let Some(stroke) = &mut self.stroke {
             [stroke.gap, stroke.opening, stroke.closing] = stroke.keys.map(|key| values[key]);
-        }
-        if let Some(rebounds) = &mut self.rebounds {
-            rebounds.derive(values);
         }
         self.command.derive(values)
     }
 
     fn claim(&mut self, claims: &mut Claims<'_>) {
-        let hidden = claims.probed && self.pair.arc.is_some();
+        let hidden = claims.probed && self.touching.pair.arc.is_some();
         self.branch = Branch::claim(claims, hidden);
         claims.modes(MODES);
-        let arc = if self.pair.arc.is_some() {
+        let arc = if self.touching.pair.arc.is_some() {
             contact_pair::GUARDS
         } else {
             0
@@ -323,7 +277,7 @@ impl Element for Contact {
 
     fn stamp(&self, at: Point<'_>, into: &mut Stamper<'_>) {
         let gap = self.gap(at.time, at.mode);
-        self.pair.stamp(&self.branch, at, gap, into);
+        self.touching.pair.stamp(&self.branch, at, gap, into);
     }
 
     fn energy(&self) -> &dyn Energy {
@@ -354,6 +308,7 @@ impl Element for Contact {
 impl Energy for Contact {
     fn currents(&self, at: Point<'_>, out: &mut [f64]) {
         let current = self
+            .touching
             .pair
             .through(&self.branch, at, self.gap(at.time, at.mode));
         out[0] = current;
@@ -361,11 +316,13 @@ impl Energy for Contact {
     }
 
     fn loss(&self, at: Point<'_>) -> f64 {
-        self.pair.loss(&self.branch, at, self.gap(at.time, at.mode))
+        self.touching
+            .pair
+            .loss(&self.branch, at, self.gap(at.time, at.mode))
     }
 
     fn stored(&self, at: Point<'_>) -> f64 {
-        self.pair.stored(&self.branch, at)
+        self.touching.pair.stored(&self.branch, at)
     }
 }
 
@@ -412,9 +369,8 @@ impl Switching for Contact {
     }
 
     fn earlier(&self, by: f64, mode: &mut [f64]) {
-        movement::earlier(by, mode);
+        touching::earlier(by, mode);
         mode[SET_OUT] -= by;
-        mode[TOUCHED] -= by;
         if self.command.rhythm() == Rhythm::Once && by > 0.0 {
             self.start(mode);
         }
@@ -437,9 +393,9 @@ impl Switching for Contact {
     }
 
     fn guards(&self, at: Point<'_>, out: &mut [f64]) {
-        if self.pair.arc.is_some() {
+        if self.touching.pair.arc.is_some() {
             let gap = self.gap(at.time, at.mode);
-            self.pair.guards(&self.branch, at, gap, out);
+            self.touching.pair.guards(&self.branch, at, gap, out);
         }
         if let (Some(watch), Some(last)) = (self.command.watch(), out.last_mut()) {
             *last = watch.guard(sum(&self.watched, at.x), at.mode[COMMANDED] != 0.0);
@@ -453,8 +409,10 @@ impl Switching for Contact {
         x: &mut [f64],
         mode: &mut [f64],
     ) -> Option<Happening> {
-        if self.pair.arc.is_some() && which < contact_pair::GUARDS {
-            self.pair.at_guard(which, &self.branch, time, x, mode);
+        if self.touching.pair.arc.is_some() && which < contact_pair::GUARDS {
+            self.touching
+                .pair
+                .at_guard(which, &self.branch, time, x, mode);
             return None;
         }
         self.go(mode[COMMANDED] == 0.0, time, mode)

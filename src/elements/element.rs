@@ -166,6 +166,10 @@ pub trait Energy {
     fn impulse(&self, _before: &[f64], _after: &[f64]) -> Option<f64> {
         None
     }
+    /// Energy [J] that an event turns to heat at once, `before` and `after` it: an impact.
+    fn struck(&self, _before: &[f64], _after: &[f64]) -> f64 {
+        0.0
+    }
     /// True for sources, which stand outside the balance.
     fn is_source(&self) -> bool {
         false
@@ -209,6 +213,10 @@ pub trait Switching {
     }
     /// Fills the guards that the element claimed; an event falls where one rises through zero.
     fn guards(&self, _at: Point<'_>, _out: &mut [f64]) {}
+    /// The winding or contact that guard `which` is of; 0 where the element is but one thing.
+    fn winding_of_guard(&self, _which: usize) -> usize {
+        0
+    }
     /// Takes the event of guard `which` (counted within the element).
     fn at_guard(
         &self,
@@ -265,7 +273,12 @@ impl Default for Branch {
 impl Branch {
     /// Claims the two terminals, and the current as an unknown where `always` or where it is followed.
     pub fn claim(claims: &mut Claims<'_>, always: bool) -> Self {
-        let (first, second) = (Wanted::Current(0), Wanted::Current(1));
+        Self::claim_at(claims, 0, always)
+    }
+
+    /// The same between the terminal `from` and the next one.
+    pub fn claim_at(claims: &mut Claims<'_>, from: usize, always: bool) -> Self {
+        let (first, second) = (Wanted::Current(from), Wanted::Current(from + 1));
         let followed = claims.wants(first) || claims.wants(second);
         let current = (always || followed)
             .then(|| claims.unknown("current", super::claims::Measure::Current));
@@ -274,8 +287,8 @@ impl Branch {
             claims.offer(second, current, -1.0);
         }
         Branch {
-            a: claims.terminal(0),
-            b: claims.terminal(1),
+            a: claims.terminal(from),
+            b: claims.terminal(from + 1),
             current,
         }
     }

@@ -4,6 +4,7 @@
 //! unknowns and stamps its share of d/dt q(x) + f(x, t, mode) = 0.
 
 pub mod arc;
+pub mod armature;
 pub mod cable;
 pub mod capacitor;
 pub mod claims;
@@ -25,12 +26,15 @@ pub mod magnetic_circuit;
 pub mod movement;
 pub mod pairs;
 pub mod rebounds;
+pub mod relay;
+pub mod relay_contact;
 pub mod resistor;
 pub mod skin;
 pub mod stamper;
 pub mod suppressor_diode;
 pub mod switch;
 pub mod switch_command;
+pub mod touching;
 pub mod transformer;
 pub mod unknown;
 pub mod voltage_source;
@@ -60,6 +64,7 @@ pub const KINDS: &[ElementKind] = &[
     diode::KIND,
     inductor::KIND,
     magnetic_circuit::KIND,
+    relay::KIND,
     resistor::KIND,
     suppressor_diode::KIND,
     switch::KIND,

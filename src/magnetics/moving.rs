@@ -5,7 +5,8 @@
 //! that of two poles twice as far apart.
 
 use super::MU0;
-use super::fringing::{Fringing, LegGap, Rule, Section};
+use super::fringing::{Fringing, LegGap, RULES, Rule, Section};
+use super::path::Path;
 
 /// A gap that an armature closes. SI units.
 #[derive(Clone, Debug, PartialEq)]
@@ -39,6 +40,25 @@ impl PartialEq for FringingRule {
 }
 
 impl MovingGap {
+    /// A gap of a path's own section without fringing and leakage, beside the air that the path has.
+    pub fn plain(path: &Path) -> Self {
+        MovingGap {
+            area: path.area(),
+            gap: 0.0,
+            residual: 0.0,
+            leakage: 0.0,
+            fixed: path.reluctance_of_air(),
+            pole_diameter: 0.0,
+            pole_height: 0.0,
+            rule: FringingRule(
+                RULES
+                    .iter()
+                    .find(|rule| rule.word == "none")
+                    .expect("no fringing is one of the rules"),
+            ),
+        }
+    }
+
     /// Fringing at a `gap` [m], residual gap included; None for no gap at all.
     pub fn fringing(&self, gap: f64) -> Option<Fringing> {
         let leg = LegGap {
@@ -79,7 +99,6 @@ impl MovingGap {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::magnetics::fringing::RULES;
     use std::f64::consts::FRAC_PI_4;
 
     fn gap(word: &str, residual: f64, leakage: f64) -> MovingGap {

@@ -43,6 +43,22 @@ impl Path {
         })
     }
 
+    /// The path without its air.
+    pub fn without_air(&self) -> Self {
+        Path {
+            air: 0.0,
+            ..self.clone()
+        }
+    }
+
+    /// The path with a gap of its own section and this length [m] more, without fringing.
+    pub fn with_gap(&self, gap: f64) -> Self {
+        Path {
+            air: self.air + gap / MU0,
+            ..self.clone()
+        }
+    }
+
     /// Effective area [m²].
     pub fn area(&self) -> f64 {
         self.area

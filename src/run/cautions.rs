@@ -171,6 +171,13 @@ fn beyond_the_curve(netlist: &Netlist, outcome: &Outcome, cautions: &mut Vec<Dia
     }
 }
 
+/// True where the element that a phrase asks has an armature.
+fn moves(netlist: &Netlist, phrase: &crate::signals::Phrase) -> bool {
+    let owner = phrase.owner();
+    let entry = owner.and_then(|owner| netlist.circuit.find(&owner.element));
+    entry.is_some_and(|entry| entry.kind.word == "relay")
+}
+
 /// A release read from a winding current: an armature moves later than its current falls.
 fn releases_from_current(netlist: &Netlist, cautions: &mut Vec<Diagnostic>) {
     use crate::signals::{Phrase, Quantity};
@@ -180,6 +187,7 @@ fn releases_from_current(netlist: &Netlist, cautions: &mut Vec<Diagnostic>) {
                 reading.signal.phrase,
                 Phrase::Of(Quantity::WindingCurrent, _)
             )
+            && !moves(netlist, &reading.signal.phrase)
     });
     if let Some(reading) = of_current {
         cautions.push(

@@ -8,11 +8,11 @@ use super::repeated::{Figures, RatingFigure};
 use super::results::{Findings, outcome, rating_result};
 use super::watched::{Signals, stressing};
 use crate::analysis::{Analysis, Found as Periodic, Ledger, LedgerKeeper, simulate::Shown};
-use crate::circuit::Circuit;
+use crate::circuit::{Actor, Circuit};
 use crate::dae::{Point, Step};
 use crate::limits::{RatingMeter, RatingUse};
 use crate::readings::{Outcome as Found, Taking};
-use crate::signals::{EventLog, Happening, Owner, Rated, Recorder};
+use crate::signals::{EventLog, Happening, Rated, Recorder};
 
 /// What a run keeps besides readings and ratings.
 #[derive(Clone, Copy, Debug)]
@@ -39,7 +39,7 @@ pub struct Feed {
     /// Signals that are recorded, and the instant [s] from which on.
     recorded: (usize, f64),
     /// Switches whose first opening has been recorded.
-    opened: Vec<usize>,
+    opened: Vec<Actor>,
     accounts: Option<Vec<usize>>,
     keeper: Option<LedgerKeeper>,
     last: Last,
@@ -165,8 +165,8 @@ impl Feed {
                         keeper.impulse(circuit, impulse, after.time);
                     }
                 }
-                for (entry, what) in happened {
-                    self.happened(circuit, *entry, *what, after.time);
+                for (actor, what) in happened {
+                    self.happened(circuit, *actor, *what, after.time);
                 }
                 self.last.keep(after);
             }
@@ -174,9 +174,9 @@ impl Feed {
         self.last.time
     }
 
-    fn happened(&mut self, circuit: &Circuit, entry: usize, what: Happening, time: f64) {
+    fn happened(&mut self, circuit: &Circuit, actor: Actor, what: Happening, time: f64) {
         let ratings = self.ratings.iter_mut();
-        for metered in ratings.filter(|metered| metered.entry == entry) {
+        for metered in ratings.filter(|metered| Actor::whole(metered.entry) == actor) {
             metered.meter.happened(what, time);
         }
         let Some(recorder) = &mut self.recorder else {
@@ -185,13 +185,9 @@ impl Feed {
         if time < self.recorded.1 {
             return;
         }
-        let owner = Owner {
-            element: circuit.entries[entry].name.clone(),
-            winding: None,
-        };
-        self.log.note(&owner, what, time);
-        if what == Happening::Opens && !self.opened.contains(&entry) {
-            self.opened.push(entry);
+        self.log.note(&circuit.owner(actor), what, time);
+        if what == Happening::Opens && !self.opened.contains(&actor) {
+            self.opened.push(actor);
             recorder.look_closely();
         }
     }

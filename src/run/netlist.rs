@@ -303,9 +303,9 @@ fn check_signals(circuit: &Circuit, readings: &[Reading], sink: &Sink) {
                 continue;
             };
             let known = circuit.find(&event.element.element);
-            let switches = known.is_some_and(|entry| {
-                entry.element.switching().is_some()
-                    && matches!(entry.kind.word, "switch" | "contact" | "relay")
+            let switches = known.is_some_and(|entry| match &event.element.winding {
+                None => entry.kind.is_switch(),
+                Some(contact) => entry.kind.word == "relay" && entry.windings.contains(contact),
             });
             if !switches {
                 let words = circuit

@@ -17,7 +17,7 @@ use crate::dae::{Point, Shadows, Step};
 use crate::diag::{Diagnostic, Span};
 use crate::netlist::{Value, nearest};
 use crate::readings::Outcome as Found;
-use crate::signals::{EventLog, Owner};
+use crate::signals::EventLog;
 use crate::units::Kind;
 
 /// How far a neighbour's value lies away, as a share of it: central differences of laws are then exact to some 1e-10,
@@ -238,12 +238,8 @@ impl<'a> Watcher<'a> {
                     for (side, (feed, log)) in feeds.iter_mut().enumerate() {
                         let circuit = &neighbours.netlists[side].circuit;
                         let time = after.time + neighbours.by(side) * shifts[column];
-                        for &(entry, what) in *happened {
-                            let owner = Owner {
-                                element: circuit.entries[entry].name.clone(),
-                                winding: None,
-                            };
-                            log.note(&owner, what, time);
+                        for &(actor, what) in *happened {
+                            log.note(&circuit.owner(actor), what, time);
                         }
                         let after = Point { time, ..*after };
                         let event = Shown::Event {

@@ -11,10 +11,11 @@ use crate::units::Kind;
 const MOST_UNASKED: usize = 24;
 
 /// The waveforms of elements that are recorded unasked, by kind of element.
-const UNASKED: [(&str, &[&str]); 3] = [
+const UNASKED: [(&str, &[&str]); 4] = [
     ("switch", &["voltage across"]),
     ("contact", &["voltage across"]),
     ("inductor", &["current through"]),
+    ("relay", &["position of"]),
 ];
 
 /// The waveforms of windings on cores that are recorded unasked.

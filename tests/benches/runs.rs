@@ -125,5 +125,33 @@ fn nodes(criterion: &mut Criterion) {
     group.finish();
 }
 
-criterion_group!(benches, relay, cases, nodes);
+/// What an armature with its contact costs beside the same coil without one.
+fn armature(criterion: &mut Criterion) {
+    let path = "tests/netlists/relay_by_solver.yaml";
+    let relay = netlist(&input(path));
+    let text = "
+materials:
+  relay_iron: {initial_permeability: 3000, saturation: 1.5 T}
+cores:
+  k1_core: {shape: effective, length: 60 mm, area: 50 mm², gap: 0.05 mm, material: relay_iron}
+elements:
+  supply: {kind: voltage_source, nodes: [drive, ground], voltage: {steps: {at: [[0 s, 0 V], [5 ms, 24 V], [60 ms, 0 V]]}}}
+  k1: {kind: coil, nodes: [drive, ground], core: k1_core, turns: 4000, resistance: 400 Ω, self_capacitance: 0 F}
+analysis: {transient: {duration: 120 ms}}
+";
+    let coil = netlist(&Input::Text {
+        name: "coil".into(),
+        bytes: text.into(),
+        folder: None,
+    });
+    let mut group = criterion.benchmark_group("armature");
+    for (name, netlist) in [("coil", &coil), ("relay", &relay)] {
+        group.bench_function(name, |bench| {
+            bench.iter(|| simulate(black_box(netlist), 1e-4))
+        });
+    }
+    group.finish();
+}
+
+criterion_group!(benches, relay, cases, nodes, armature);
 criterion_main!(benches);

@@ -32,6 +32,7 @@ mod random;
 mod random_circuits;
 mod readme;
 mod record;
+mod relays;
 mod release;
 mod ringing_windings;
 mod rings;

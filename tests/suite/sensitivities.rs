@@ -258,6 +258,20 @@ const SHIPPED: &[Shipped] = &[
             "ambient",
         ],
     },
+    Shipped {
+        name: "relay_armature",
+        accuracy: 1e-7,
+        by: 1e-3,
+        overrides: &[],
+        paths: &["elements.supply.voltage", "parts.k1.armature.preload"],
+    },
+    Shipped {
+        name: "coils_on_ac",
+        accuracy: 1e-7,
+        by: 1e-3,
+        overrides: &[],
+        paths: &["elements.mains.series_resistance", "parts.coil.resistance"],
+    },
     // One period: its crests differ from those of the next by less than a difference moves them.
     Shipped {
         name: "buck_telemetry",

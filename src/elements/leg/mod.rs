@@ -9,9 +9,9 @@
 use super::claims::{Claims, Measure};
 use super::element::{Terms, Unknown, sum};
 use super::stamper::Stamper;
-use crate::magnetics::Path;
 use crate::magnetics::eddy::Shells;
 use crate::magnetics::moving::MovingGap;
+use crate::magnetics::{MU0, Path};
 
 /// A value that hangs on the leg's flux and on few unknowns more.
 #[derive(Clone, Copy, Debug)]
@@ -129,6 +129,12 @@ impl Leg {
             Some((gap, moving)) => moving.reluctance(gap.of(x)),
             None => (self.path().reluctance_of_air(), 0.0),
         }
+    }
+
+    /// The path with the moving gap as it stands.
+    pub fn path_now(&self, x: &[f64]) -> Path {
+        let path = self.path().without_air();
+        path.with_gap(MU0 * path.area() * self.air(x).0)
     }
 
     /// Magnetomotive force across it [A].

@@ -4,6 +4,7 @@ use crate::circuit::Circuit;
 use crate::dae::{MarchError, StartError, Trouble};
 use crate::diag::Diagnostic;
 use crate::units::{TIME, engineering};
+use std::collections::BTreeSet;
 
 /// Why a simulation could not be completed.
 #[derive(Clone, Debug)]
@@ -29,10 +30,49 @@ impl Failure {
     /// No start was found.
     pub fn start(circuit: &Circuit, error: StartError) -> Self {
         let (whose, span) = blame(circuit, error.unknown, error.cause, "for");
+        let cause = match error.cause {
+            Trouble::Unsettled => "the equations have no solution near any that was tried".into(),
+            cause => cause.to_string(),
+        };
         Failure::Stopped {
-            headline: format!("no starting state was found{whose}: {}", error.cause),
+            headline: format!("no starting state was found{whose}: {cause}"),
             help: remedy(error.cause, &without_start(circuit, error.unknown)),
             span,
+            time: 0.0,
+        }
+    }
+
+    /// No start was found: these guards' switches change one another for ever.
+    pub fn restless(circuit: &Circuit, guards: &BTreeSet<usize>) -> Self {
+        let entries = circuit.entries.iter();
+        let restless: Vec<_> = entries
+            .filter(|entry| guards.range(entry.guards.clone()).next().is_some())
+            .collect();
+        let names: Vec<String> = restless
+            .iter()
+            .map(|entry| format!("`{}`", entry.name))
+            .collect();
+        let (headline, help) = if names.len() == 1 {
+            (
+                format!(
+                    "no starting state was found: what {} watches goes back as soon as it switches",
+                    names[0]
+                ),
+                "widen its thresholds, or begin with `start: zero` and let a capacitance slow the signal",
+            )
+        } else {
+            (
+                format!(
+                    "no starting state was found: {} switch one another for ever",
+                    names.join(", ")
+                ),
+                "an odd number of inversions in a ring has no rest: let capacitances slow the signals and begin with `start: zero`",
+            )
+        };
+        Failure::Stopped {
+            headline,
+            help: help.into(),
+            span: restless.first().map(|entry| entry.span),
             time: 0.0,
         }
     }
@@ -57,7 +97,7 @@ fn without_start(circuit: &Circuit, unknown: Option<usize>) -> String {
         return "try `start: zero` in the transient, or look at the element named".into();
     }
     format!(
-        "at this node meet {}: a current may have no way (a diode that blocks it), or gains may contradict each other; \
+        "here meet {}: a current may have no way (a diode that blocks it), or gains may contradict each other; \
          a large resistor beside what blocks, or `start: zero` in the transient, may help",
         meeting.join(", ")
     )

@@ -10,9 +10,13 @@ use crate::dae::{
 };
 use crate::elements::{Happening, Measure};
 use crate::math::Singular;
+use std::collections::BTreeSet;
 
-/// Rounds in which watches may change their switches at the start before that counts as chattering.
-const MOST_ROUNDS: usize = 32;
+/// Rounds at the start in which all switches follow what they watch at once. Two that hold each other down (a latch) change
+/// together for ever; thereafter they go one at a time, as one of them would be the quicker.
+const TOGETHER: usize = 16;
+/// Rounds one at a time, per switch that watches, before that counts as chattering.
+const IN_TURN: usize = 4;
 
 /// Where a run begins.
 pub struct Begun {
@@ -82,25 +86,19 @@ fn settle_watches(
     state: &mut State,
     tolerances: &Tolerances,
 ) -> Result<(), Failure> {
-    let mut last = None;
-    for _ in 0..MOST_ROUNDS {
+    let mut restless = BTreeSet::new();
+    for round in 0..TOGETHER + IN_TURN * circuit.guard_size().max(1) {
         solve(circuit, from, state, tolerances)?;
-        last = watches_change(circuit, state);
-        if last.is_none() {
-            break;
+        let at_once = if round < TOGETHER { usize::MAX } else { 1 };
+        let changed = watches_change(circuit, state, at_once);
+        if changed.is_empty() {
+            return Ok(());
+        }
+        if round >= TOGETHER {
+            restless.extend(changed);
         }
     }
-    if last.is_some() {
-        let cause = Trouble::Chattering { guard: last };
-        return Err(Failure::start(
-            circuit,
-            crate::dae::StartError {
-                unknown: None,
-                cause,
-            },
-        ));
-    }
-    Ok(())
+    Err(Failure::restless(circuit, &restless))
 }
 
 /// Starts variations where a run begins: at rest the equations themselves tell how the state moves with a parameter, from
@@ -249,18 +247,21 @@ fn fine(circuit: &Circuit) -> Tolerances {
     }
 }
 
-/// Lets every watch whose threshold is passed already change its switch at once; the last guard of one that did.
-fn watches_change(circuit: &Circuit, state: &mut State) -> Option<usize> {
+/// Lets every watch whose threshold is passed already change its switch, the first `most` of them; their guards.
+fn watches_change(circuit: &Circuit, state: &mut State, most: usize) -> Vec<usize> {
     let mut guards = vec![-1.0; circuit.guard_size()];
     circuit.guards(state.point(), &mut guards);
-    let mut changed = None;
+    let mut changed = Vec::new();
     for (which, guard) in guards.iter().enumerate() {
         let cause = Cause::Guard(which);
-        if *guard >= 0.0 && circuit.transition(cause, state.time, &mut state.x, &mut state.mode) {
-            changed = Some(which);
+        if *guard >= 0.0
+            && changed.len() < most
+            && circuit.transition(cause, state.time, &mut state.x, &mut state.mode)
+        {
+            changed.push(which);
         }
     }
-    if changed.is_some() {
+    if !changed.is_empty() {
         // At a start a switch is where it is commanded to be, not on its way.
         for entry in &circuit.entries {
             if let (Some(switching), false) = (entry.element.switching(), entry.guards.is_empty()) {

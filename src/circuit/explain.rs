@@ -1,6 +1,6 @@
 //! From the number of an unknown to the words that a person knows it by.
 
-use super::Circuit;
+use super::{Circuit, GROUND};
 use crate::diag::Span;
 
 /// Most elements named in one message.
@@ -28,12 +28,23 @@ impl Circuit {
         })
     }
 
-    /// The elements that meet at a node, quoted, where the unknown is a node's potential; the first few of many.
+    /// The elements that meet at a node, quoted, where the unknown is a node's potential, or at the nodes of the element
+    /// whose unknown it is (but for ground, where all meet); the first few of many.
     pub fn meeting_at(&self, unknown: usize) -> Vec<String> {
-        let Some(name) = self.node_names.get(unknown) else {
-            return Vec::new();
+        let owner = self.unknowns.get(unknown).and_then(|owned| owned.element);
+        let nodes: Vec<&str> = match (self.node_names.get(unknown), owner) {
+            (Some(name), _) => vec![name],
+            (None, Some(owner)) => {
+                let terminals = self.entries[owner].terminals.iter();
+                let names = terminals.map(|terminal| terminal.node.text.as_str());
+                names.filter(|name| *name != GROUND).collect()
+            }
+            (None, None) => return Vec::new(),
         };
-        let touching = |entry: &&super::Entry| entry.terminals.iter().any(|t| t.node.text == *name);
+        let touching = |entry: &&super::Entry| {
+            let mut terminals = entry.terminals.iter();
+            terminals.any(|terminal| nodes.contains(&terminal.node.text.as_str()))
+        };
         let entries = self.entries.iter().filter(touching).take(MOST_NAMED);
         entries.map(|entry| format!("`{}`", entry.name)).collect()
     }

@@ -40,6 +40,10 @@ pub(crate) struct Rules {
     pub fresh: bool,
 }
 
+/// No step promises that less than this share of it is left: after a limited one comes a huge one that leads back, and
+/// what falls from there says nothing.
+pub(crate) const BEST: f64 = 1e-3;
+
 /// Why the iteration ended without a solution.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub(crate) struct Failure {
@@ -197,7 +201,7 @@ impl Newton {
             };
             if iteration > 0 && rate.is_finite() {
                 eta = if rate < 1.0 {
-                    rate / (1.0 - rate)
+                    f64::max(rate / (1.0 - rate), BEST)
                 } else {
                     f64::INFINITY
                 };

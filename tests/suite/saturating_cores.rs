@@ -22,7 +22,7 @@ fn quadratic(h: f64) -> f64 {
 
 /// The steel straight between its points up to 1.8 T and by the published formula above: each kink is drawn by three
 /// points so close together that the monotone curve is the straight line everywhere else.
-fn straight_steel() -> Vec<(f64, f64)> {
+pub fn straight_steel() -> Vec<(f64, f64)> {
     let table: Vec<(f64, f64)> = steel().into_iter().filter(|&(_, b)| b <= 1.8).collect();
     let mut points = vec![table[0]];
     let near = 1e-6;
@@ -44,7 +44,8 @@ fn straight_steel() -> Vec<(f64, f64)> {
     points
 }
 
-fn curve(points: &[(f64, f64)]) -> String {
+/// The mapping of a material that follows these points.
+pub fn curve(points: &[(f64, f64)]) -> String {
     let pairs: Vec<String> = points
         .iter()
         .map(|(h, b)| format!("[{h} A/m, {b} T]"))

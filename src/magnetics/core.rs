@@ -227,11 +227,11 @@ impl Wound {
     /// The figures over current; `operating_current` [A] where one is known. The curve has `points` points and
     /// reaches beyond the operating current and the knee.
     pub fn figures(&self, operating_current: Option<f64>, points: usize) -> Figures {
-        let knee = self.linkage.current_at_70_percent();
-        let linkage = operating_current.map(|current| self.linkage.linkage_at(current));
-        // Half as far again as what matters; a coil of which nothing is known is shown up to an ampere.
         // The field inside the copper comes on top of the core's flux.
         let inner = self.inside.as_ref().map_or(0.0, |inside| inside.inductance);
+        let knee = self.linkage.current_at_70_percent(inner);
+        let linkage = operating_current.map(|current| self.linkage.linkage_at(current));
+        // Half as far again as what matters; a coil of which nothing is known is shown up to an ampere.
         let reach = 1.5
             * knee
                 .into_iter()

@@ -91,10 +91,12 @@ impl Linkage {
         1.0 - self.inductance(linkage) / self.inductance_at_zero()
     }
 
-    /// The current [A], above the inductance's peak, at which the incremental inductance has fallen to 70 % of that
-    /// at zero; None where it never does.
-    pub fn current_at_70_percent(&self) -> Option<f64> {
-        let flux = self.path.flux_at_inductance_share(0.7)?;
+    /// The current [A], above the inductance's peak, at which the incremental inductance, together with a constant one
+    /// `beside` it [H], has fallen to 70 % of that at zero; None where it never does.
+    pub fn current_at_70_percent(&self, beside: f64) -> Option<f64> {
+        // l + beside = 0.7 (l(0) + beside)
+        let share = 0.7 - 0.3 * beside / self.inductance_at_zero();
+        let flux = (share > 0.0).then(|| self.path.flux_at_inductance_share(share))??;
         Some(self.path.magnetomotive(flux).0 / self.turns)
     }
 
@@ -156,9 +158,15 @@ mod tests {
     #[test]
     fn seventy_per_cent_are_left_at_the_current_told() {
         let relay = relay();
-        let current = relay.current_at_70_percent().unwrap();
-        let left = relay.point(current).inductance / relay.inductance_at_zero();
-        assert!((left - 0.7).abs() < 1e-12);
+        for beside in [0.0, 0.3 * relay.inductance_at_zero()] {
+            let current = relay.current_at_70_percent(beside).unwrap();
+            let left = relay.point(current).inductance + beside;
+            let whole = relay.inductance_at_zero() + beside;
+            assert!((left / whole - 0.7).abs() < 1e-12);
+        }
+        let far = 3.0 * relay.inductance_at_zero();
+        assert_eq!(relay.current_at_70_percent(far), None);
+        let current = relay.current_at_70_percent(0.0).unwrap();
         assert!((relay.saturation(relay.linkage_at(current)) - 0.3).abs() < 1e-12);
     }
 

@@ -207,7 +207,7 @@ fn a_saturated_slug_leaves_the_coil_in_air_and_its_polarization() {
     // A core of the first magnetization gives as much again as an open one can: far below its own permeability.
     let gain = slug.inductance_at_zero() / air.inductance_at_zero();
     assert!(gain > 3.0 && gain < 20.0, "{gain}");
-    let knee = slug.current_at_70_percent().expect("it saturates");
+    let knee = slug.current_at_70_percent(0.0).expect("it saturates");
     let left = slug.inductance(slug.linkage_at(knee)) / slug.inductance_at_zero();
     check(
         "slug, knee",

@@ -32,7 +32,7 @@ fn inductance_rolls_off_by_the_fit() {
     }
     // 70 % are left where (H/Hh)^n is such that 1 + 59/(1 + y) = 42.
     let field = 8e3 * (59.0f64 / 41.0 - 1.0).powf(1.0 / 1.6);
-    let reached = linkage.current_at_70_percent().expect("it rolls off");
+    let reached = linkage.current_at_70_percent(0.0).expect("it rolls off");
     check(
         "inductance of a powder",
         source,

@@ -57,7 +57,7 @@ fn a_ring_has_the_effective_figures_of_iec_60205() {
             row.get("L_exact_H"),
             Bound::Relative(1e-9),
         );
-        assert_eq!(wound.linkage.current_at_70_percent(), None);
+        assert_eq!(wound.linkage.current_at_70_percent(0.0), None);
     }
 }
 

@@ -220,7 +220,7 @@ fn the_smooth_curve_keeps_its_law_under_a_gap() {
     let b = MU0 * h + 1.5 * h / (h + ha);
     let current = (h * 0.06 + b / MU0 * 0.15e-3) / 4000.0;
     let reached = linkage
-        .current_at_70_percent()
+        .current_at_70_percent(0.0)
         .expect("a saturating core has one");
     check(
         "current at 70 % inductance",

@@ -8,8 +8,7 @@ use super::arc::{self, Arc};
 use super::claims::Claims;
 use super::contact_pair::{self, Gap, Pair};
 use super::element::{
-    Branch, Element, Energy, Follower, Happening, Path, PathKind, Point, Rhythm, Switching, Terms,
-    Unsound, sum,
+    Branch, Element, Energy, Follower, Happening, Path, PathKind, Point, Rhythm, Switching, Unsound,
 };
 use super::kind::{ElementKind, Made, NODES, Surroundings, pair};
 use super::movement::{CLOSED_RESISTANCE, Movement, OPEN_RESISTANCE, TRANSITION};
@@ -20,7 +19,6 @@ use super::switch_command::{
 };
 use super::touching::{self, Touching};
 use crate::netlist::{Fields, Key, Takes, Value, Values};
-use crate::signals::Phrase;
 use crate::units;
 
 /// The kind.
@@ -112,7 +110,6 @@ struct Contact {
     command: Command,
     initially_closed: bool,
     branch: Branch,
-    watched: Terms,
 }
 
 fn read(fields: &Fields<'_>, around: &Surroundings<'_>) -> Option<Made> {
@@ -141,7 +138,6 @@ fn read(fields: &Fields<'_>, around: &Surroundings<'_>) -> Option<Made> {
         command,
         initially_closed,
         branch: Branch::default(),
-        watched: Terms::new(),
     };
     Some(Made::new(terminals?, element))
 }
@@ -289,11 +285,7 @@ impl Element for Contact {
     }
 
     fn follower(&mut self) -> Option<&mut dyn Follower> {
-        if self.command.watch().is_some() {
-            Some(self)
-        } else {
-            None
-        }
+        self.command.follower()
     }
 
     fn paths(&self) -> Vec<Path> {
@@ -323,20 +315,6 @@ impl Energy for Contact {
 
     fn stored(&self, at: Point<'_>) -> f64 {
         self.touching.pair.stored(&self.branch, at)
-    }
-}
-
-impl Follower for Contact {
-    fn follows(&self) -> Vec<&Phrase> {
-        self.command
-            .watch()
-            .map(|watch| &watch.phrase)
-            .into_iter()
-            .collect()
-    }
-
-    fn connect(&mut self, terms: Vec<Terms>) {
-        self.watched = terms.into_iter().next().unwrap_or_default();
     }
 }
 
@@ -398,7 +376,7 @@ impl Switching for Contact {
             self.touching.pair.guards(&self.branch, at, gap, out);
         }
         if let (Some(watch), Some(last)) = (self.command.watch(), out.last_mut()) {
-            *last = watch.guard(sum(&self.watched, at.x), at.mode[COMMANDED] != 0.0);
+            *last = watch.guard(at.x, at.mode[COMMANDED] != 0.0);
         }
     }
 

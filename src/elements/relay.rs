@@ -9,8 +9,8 @@ use super::armature::{self, Armature};
 use super::claims::{Claims, Wanted};
 use super::coil::{Coil, SELF_CAPACITANCE};
 use super::element::{
-    Element, Energy, Follower, Happening, Path, PathKind, Point, Quantity, Switching, Unknown,
-    Unsound, WindingFigures,
+    Element, Energy, Happening, Path, PathKind, Point, Quantity, Switching, Unknown, Unsound,
+    WindingFigures,
 };
 use super::kind::{ElementKind, Made, NODES, Surroundings};
 use super::relay_contact::{self, RelayContact};
@@ -173,10 +173,6 @@ impl Element for Relay {
 
     fn switching(&self) -> Option<&dyn Switching> {
         Some(self)
-    }
-
-    fn follower(&mut self) -> Option<&mut dyn Follower> {
-        None
     }
 
     fn quantity(&self, quantity: Quantity, winding: usize, at: Point<'_>) -> Option<f64> {

@@ -2,8 +2,7 @@
 
 use super::claims::Claims;
 use super::element::{
-    Branch, Element, Energy, Follower, Happening, Path, PathKind, Point, Rhythm, Switching, Terms,
-    Unsound, sum,
+    Branch, Element, Energy, Follower, Happening, Path, PathKind, Point, Rhythm, Switching, Unsound,
 };
 use super::junction::{Breakdown, REACH, VOLTS_PER_KELVIN};
 use super::kind::{ElementKind, Made, NODES, Surroundings, pair};
@@ -15,7 +14,6 @@ use super::switch_command::{
     CLOSES_AT, Command, INITIALLY, OPENS_AT, SQUARE, WATCHES, read_command,
 };
 use crate::netlist::{Fields, Key, Takes, Value, Values};
-use crate::signals::Phrase;
 use crate::units;
 
 /// The kind.
@@ -62,7 +60,6 @@ struct Switch {
     movement: Movement,
     breakdown: Option<Breakdown>,
     branch: Branch,
-    watched: Terms,
 }
 
 fn read(fields: &Fields<'_>, around: &Surroundings<'_>) -> Option<Made> {
@@ -90,7 +87,6 @@ fn read(fields: &Fields<'_>, around: &Surroundings<'_>) -> Option<Made> {
         movement: movement?,
         breakdown: None,
         branch: Branch::default(),
-        watched: Terms::new(),
     };
     Some(Made::new(terminals?, element))
 }
@@ -159,11 +155,7 @@ impl Element for Switch {
     }
 
     fn follower(&mut self) -> Option<&mut dyn Follower> {
-        if self.command.watch().is_some() {
-            Some(self)
-        } else {
-            None
-        }
+        self.command.follower()
     }
 
     fn limit(&self, x: &[f64], dx: &mut [f64]) -> bool {
@@ -199,20 +191,6 @@ impl Energy for Switch {
 
     fn stored(&self, _at: Point<'_>) -> f64 {
         0.0
-    }
-}
-
-impl Follower for Switch {
-    fn follows(&self) -> Vec<&Phrase> {
-        self.command
-            .watch()
-            .map(|watch| &watch.phrase)
-            .into_iter()
-            .collect()
-    }
-
-    fn connect(&mut self, terms: Vec<Terms>) {
-        self.watched = terms.into_iter().next().unwrap_or_default();
     }
 }
 
@@ -265,7 +243,7 @@ impl Switching for Switch {
 
     fn guards(&self, at: Point<'_>, out: &mut [f64]) {
         if let Some(watch) = self.command.watch() {
-            out[0] = watch.guard(sum(&self.watched, at.x), is_or_gets_closed(at.mode));
+            out[0] = watch.guard(at.x, is_or_gets_closed(at.mode));
         }
     }
 

@@ -1,6 +1,6 @@
 //! What moves a switch: lists of instants, a square wave, or a watched signal with hysteresis.
 
-use super::element::{Rhythm, Unsound};
+use super::element::{Follower, Rhythm, Terms, Unsound, sum};
 use crate::netlist::{Fields, Key, Takes, Value, Values};
 use crate::signals::{Phrase, read_phrase};
 use crate::units;
@@ -109,8 +109,9 @@ pub enum Command {
 
 /// A watched signal with its thresholds.
 pub struct Watch {
-    /// The signal.
-    pub phrase: Phrase,
+    phrase: Phrase,
+    /// The signal in unknowns.
+    terms: Terms,
     high_key: Value,
     low_key: Value,
     /// True where it closes above and opens below.
@@ -121,12 +122,23 @@ pub struct Watch {
 
 impl Watch {
     /// Negative until the switch must change: the distance to the threshold that matters now.
-    pub fn guard(&self, signal: f64, closed: bool) -> f64 {
+    pub fn guard(&self, x: &[f64], closed: bool) -> f64 {
+        let signal = sum(&self.terms, x);
         if closed == self.closes_above {
             self.low - signal
         } else {
             signal - self.high
         }
+    }
+}
+
+impl Follower for Watch {
+    fn follows(&self) -> Vec<&Phrase> {
+        vec![&self.phrase]
+    }
+
+    fn connect(&mut self, terms: Vec<Terms>) {
+        self.terms = terms.into_iter().next().unwrap_or_default();
     }
 }
 
@@ -208,6 +220,7 @@ fn read_watch(fields: &Fields<'_>) -> Option<Command> {
     watches.finish();
     let watch = Watch {
         phrase: phrase?,
+        terms: Terms::new(),
         high_key: high?,
         low_key: low?,
         closes_above: direct,
@@ -237,6 +250,14 @@ fn read_instants(fields: &Fields<'_>) -> Option<Command> {
 impl Command {
     /// The watch, where it is one.
     pub fn watch(&self) -> Option<&Watch> {
+        match self {
+            Command::Watch(watch) => Some(watch),
+            _ => None,
+        }
+    }
+
+    /// The watch as what follows a signal, where it is one.
+    pub fn follower(&mut self) -> Option<&mut dyn Follower> {
         match self {
             Command::Watch(watch) => Some(watch),
             _ => None,
